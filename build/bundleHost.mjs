@@ -1,0 +1,48 @@
+// Bundles everything that runs in Node into dist/main: command line, paint worker, shells.
+
+import { existsSync } from 'node:fs';
+import { cp, mkdir } from 'node:fs/promises';
+import { dirname, join } from 'node:path';
+import { fileURLToPath } from 'node:url';
+import { build } from 'vite';
+
+const root = join(dirname(fileURLToPath(import.meta.url)), '..');
+
+/** Entry name in dist/main → source file. Each is a program or a worker of its own. */
+const entries = {
+  commandLine: 'main/commandLine/commandLine.ts',
+  paintWorker: 'main/engine/paintWorker.ts',
+  loopbackShell: 'main/shells/loopbackShell.ts',
+  electronShell: 'main/shells/electronShell.ts',
+  electronPreload: 'main/shells/electronPreload.ts',
+  bench: 'test/benchmarks/bench.ts',
+};
+
+export async function buildHost() {
+  const input = Object.fromEntries(
+    Object.entries(entries)
+      .filter(([, file]) => existsSync(join(root, file)))
+      .map(([name, file]) => [name, join(root, file)]),
+  );
+  await build({
+    root,
+    configFile: false,
+    logLevel: 'warn',
+    publicDir: false,
+    build: {
+      ssr: true,
+      target: 'node20',
+      outDir: join(root, 'dist/main'),
+      emptyOutDir: true,
+      minify: false,
+      rollupOptions: {
+        input,
+        external: ['sharp', 'electron'],
+        output: { entryFileNames: '[name].js', chunkFileNames: 'chunks/[name]-[hash].js', format: 'es' },
+      },
+    },
+    ssr: { noExternal: true, external: ['sharp', 'electron'] },
+  });
+  await mkdir(join(root, 'dist/presets'), { recursive: true });
+  await cp(join(root, 'presets'), join(root, 'dist/presets'), { recursive: true });
+}

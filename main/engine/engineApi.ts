@@ -1,0 +1,60 @@
+import type { Parameters } from '../../core/parameters/table.ts';
+import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
+
+/** Milliseconds spent in each part of a painting. */
+export interface StageTimes {
+  grainMs: number;
+  bodyMs: number;
+  lineMs: number;
+  composeMs: number;
+}
+
+/** A piece of long work reports how far it is, 0…1, and in which stage. */
+export type OnProgress = (fraction01: number, stage: 'grain' | 'body' | 'line' | 'compose') => void;
+
+export interface PaintOptions {
+  /** Long edge of the print; 300 mm unless given. */
+  printLongEdgeMm?: number;
+  signal?: AbortSignal;
+  onProgress?: OnProgress;
+}
+
+/**
+ * A photo held by the engine, with its halving pyramid and the noise measured at full resolution.
+ * Level 0 is the full photo; level k is 2^k times smaller on each edge (rounded up).
+ */
+export interface EnginePhoto {
+  readonly widthPx: number;
+  readonly heightPx: number;
+  readonly depth: 8 | 16;
+  readonly channels: 3 | 4;
+  readonly levels: readonly { widthPx: number; heightPx: number }[];
+  /** The measured noise floor at full resolution, encoded units 0…1. */
+  readonly noiseFloor: number;
+  /** Gives the memory back. */
+  close(): void;
+}
+
+/** Paints photos on a pool of worker threads; the calling thread never loops over pixels. */
+export interface Engine {
+  readonly workers: number;
+  /** Takes the pixels in (copied), builds the pyramid, measures the noise. */
+  open(photo: DecodedPhoto, options?: { signal?: AbortSignal }): Promise<EnginePhoto>;
+  /**
+   * Paints one pyramid level, or a region of it, as strata. At level 0 the pixels equal the file's. Coarse
+   * levels are kept with the photo, so that moving to another region of the same parameters is quick.
+   */
+  paintStrata(
+    photo: EnginePhoto,
+    parameters: Parameters,
+    where: { level: number; region?: Rect },
+    options?: PaintOptions,
+  ): Promise<{ strata: Strata; times: StageTimes }>;
+  /** Paints at full resolution and composes. Pixels: interleaved, the photo's channels, at the asked depth. */
+  paintPicture(
+    photo: EnginePhoto,
+    parameters: Parameters,
+    options?: PaintOptions & { depth?: 8 | 16 },
+  ): Promise<{ pixels: Uint8Array | Uint16Array; times: StageTimes }>;
+  close(): Promise<void>;
+}

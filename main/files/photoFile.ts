@@ -1,0 +1,27 @@
+import type { DecodedPhoto } from '../../core/pixels/photo.ts';
+
+/** A photo read from a file, with what has to travel on to the painted file. */
+export interface PhotoFile extends DecodedPhoto {
+  path: string;
+  format: 'jpeg' | 'png' | 'tiff' | 'webp' | 'avif' | 'gif' | 'heif';
+  depth: 8 | 16;
+  /** The embedded profile, unchanged, where the pixels are still in it. */
+  iccProfile?: Uint8Array;
+  /** Pixels per inch written in the file. */
+  densityPpi?: number;
+  exif?: Uint8Array;
+  /** What was assumed or converted while reading, in plain sentences; usually empty. */
+  remarks: string[];
+}
+
+export type OutputFormat = 'jpeg' | 'png' | 'tiff' | 'webp';
+
+/** What a painted file is made of. */
+export interface PictureFile extends DecodedPhoto {
+  format: OutputFormat;
+  iccProfile?: Uint8Array;
+  densityPpi?: number;
+  exif?: Uint8Array;
+  /** 1…100, for JPEG and WebP. */
+  quality?: number;
+}
