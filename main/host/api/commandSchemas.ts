@@ -1,0 +1,102 @@
+import { z } from 'zod';
+import type { HostCommands } from './hostCommands.ts';
+
+/**
+ * What each command takes, checked on entry. Paths are only ever used after the host's own list of what
+ * the user chose has been asked; sizes are bounded here so that no request can make the host hold more
+ * than it means to.
+ */
+
+const path = z.string().min(1).max(4096);
+const photoId = z.string().min(1).max(64);
+const callId = z.string().min(1).max(64);
+
+/** Key → value; the values themselves are checked against the parameter table. */
+const parameters = z
+  .record(z.string().max(40), z.union([z.string().max(64), z.number()]))
+  .refine((values) => Object.keys(values).length <= 128, 'at most 128 parameters');
+
+const pixelCount = z.int().min(0).max(1_000_000);
+
+const region = z.strictObject({
+  xPx: pixelCount,
+  yPx: pixelCount,
+  widthPx: pixelCount.min(1),
+  heightPx: pixelCount.min(1),
+});
+
+const printLongEdgeMm = z.number().min(10).max(10_000).optional();
+
+const outputFormat = z.enum(['jpeg', 'png', 'tiff', 'webp']);
+
+/** Anything the interface wants back after a crash, as long as it stays small (see the host's body limit). */
+const draft = z.strictObject({
+  parameters,
+  presetName: z.string().max(120).nullable(),
+  /** The interface's own notes: zoom, cut, chosen stratum. Kept as they are. */
+  view: z.record(z.string().max(40), z.union([z.string().max(200), z.number(), z.boolean(), z.null()])),
+});
+
+export const commandSchemas = {
+  startSession: z.strictObject({}),
+  openPhoto: z.strictObject({ path }),
+  awaitPhoto: z.strictObject({ photoId }),
+  closePhoto: z.strictObject({ photoId }),
+  paintStrata: z.strictObject({
+    photoId,
+    parameters,
+    level: z.int().min(0).max(16),
+    region: region.optional(),
+    /** Names the place on the screen; a newer call for the same photo and view takes an older one's place. */
+    view: z.string().min(1).max(40),
+    /** Strata the interface already holds. */
+    omit: z
+      .array(z.enum(['ground', 'body', 'line']))
+      .max(3)
+      .optional(),
+    /** Quick and coarse: the host chooses a coarser level and says which. */
+    rough: z.boolean().optional(),
+    printLongEdgeMm,
+  }),
+  paintSmallPicture: z.strictObject({
+    photoId,
+    parameters,
+    /** About how long the long edge shall be; the host takes the nearest level that is no smaller. */
+    longEdgePx: z.int().min(16).max(512),
+    /** Names the place on the screen, as for paintStrata; small pictures without a view never displace one another. */
+    view: z.string().min(1).max(40).optional(),
+    printLongEdgeMm,
+  }),
+  savePainting: z.strictObject({
+    photoId,
+    parameters,
+    /** A folder the user chose or opened a photo from, and a file name without folders. */
+    folder: path,
+    name: z.string().min(1).max(200),
+    format: outputFormat,
+    depth: z.union([z.literal(8), z.literal(16)]).optional(),
+    quality: z.int().min(1).max(100).optional(),
+    /** `number` (the default) writes beside a file of that name; `replace` is for a file the user agreed to replace. */
+    whenTaken: z.enum(['number', 'replace']).optional(),
+    printLongEdgeMm,
+  }),
+  listFolder: z.strictObject({ path: path.optional() }),
+  chooseWithDialog: z.strictObject({
+    kind: z.enum(['photo', 'folder', 'save']),
+    /** Where the dialog starts; only for `save`. */
+    folder: path.optional(),
+    name: z.string().min(1).max(200).optional(),
+    format: outputFormat.optional(),
+  }),
+  listRecents: z.strictObject({}),
+  forgetRecent: z.strictObject({ path }),
+  keepDraft: z.strictObject({ photoId, draft }),
+  dropDraft: z.strictObject({ path }),
+  openDemo: z.strictObject({}),
+  revealFile: z.strictObject({ path }),
+  cancelCall: z.strictObject({ callId }),
+} as const satisfies { [Name in keyof HostCommands]: z.ZodType<HostCommands[Name]['input']> };
+
+/** Largest body of each command in bytes; what is not named here takes the common limit. */
+export const commonBodyLimitBytes = 64 * 1024;
+export type CheckedInput<Name extends keyof HostCommands> = z.output<(typeof commandSchemas)[Name]>;
