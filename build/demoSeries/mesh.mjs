@@ -1,0 +1,160 @@
+// A growing triangle mesh and the few ways of adding to it that the scene needs.
+
+/** @typedef {[number, number, number]} Triple */
+/** @typedef {{ m: number[], t: Triple }} Placing rotation and scale (row-major 3×3) and shift */
+
+const floatsPerVertex = 13; // position, normal, texture place, colour, openness to the sky
+
+/**
+ * @param {Triple} shift
+ * @param {number} [yawRad] turn about the vertical
+ * @param {number} [scale]
+ * @param {number} [pitchRad] turn about the x axis, before the yaw
+ * @param {number} [rollRad] turn about the z axis, before the pitch
+ * @returns {Placing}
+ */
+export function placing(shift, yawRad = 0, scale = 1, pitchRad = 0, rollRad = 0) {
+  const [cy, sy] = [Math.cos(yawRad), Math.sin(yawRad)];
+  const [cp, sp] = [Math.cos(pitchRad), Math.sin(pitchRad)];
+  const [cr, sr] = [Math.cos(rollRad), Math.sin(rollRad)];
+  const m = [
+    cy * cr + sy * sp * sr,
+    -cy * sr + sy * sp * cr,
+    sy * cp,
+    cp * sr,
+    cp * cr,
+    -sp,
+    -sy * cr + cy * sp * sr,
+    sy * sr + cy * sp * cr,
+    cy * cp,
+  ];
+  return { m: m.map((value) => value * scale), t: shift };
+}
+
+/** Where a placing puts a point. @returns {Triple} */
+export function placePoint({ m, t }, [x, y, z]) {
+  return [
+    m[0] * x + m[1] * y + m[2] * z + t[0],
+    m[3] * x + m[4] * y + m[5] * z + t[1],
+    m[6] * x + m[7] * y + m[8] * z + t[2],
+  ];
+}
+
+/** First `outer`'s placing, applied after `inner`. @returns {Placing} */
+export function placeWithin(outer, inner) {
+  const [a, b] = [outer.m, inner.m];
+  const m = [];
+  for (let row = 0; row < 3; row++)
+    for (let col = 0; col < 3; col++)
+      m.push(a[row * 3] * b[col] + a[row * 3 + 1] * b[3 + col] + a[row * 3 + 2] * b[6 + col]);
+  return { m, t: placePoint(outer, inner.t) };
+}
+
+export class Mesh {
+  vertexCount = 0;
+  triangleCount = 0;
+  vertices = new Float32Array(floatsPerVertex * 4096);
+  corners = new Uint32Array(3 * 8192);
+  materials = new Uint8Array(8192);
+  /** Colour given to vertices that follow. @type {Triple} */
+  colour = [0.5, 0.5, 0.5];
+  openness = 1;
+  /** @type {Placing | null} */
+  place = null;
+
+  /** Adds a vertex; its normal need not be of unit length. @returns {number} its index */
+  vertex(x, y, z, nx, ny, nz, u, v, w) {
+    if ((this.vertexCount + 1) * floatsPerVertex > this.vertices.length)
+      this.#growVertices(this.vertexCount + 1);
+    if (this.place) {
+      const { m, t } = this.place;
+      const [px, py, pz, qx, qy, qz] = [x, y, z, nx, ny, nz];
+      x = m[0] * px + m[1] * py + m[2] * pz + t[0];
+      y = m[3] * px + m[4] * py + m[5] * pz + t[1];
+      z = m[6] * px + m[7] * py + m[8] * pz + t[2];
+      nx = m[0] * qx + m[1] * qy + m[2] * qz;
+      ny = m[3] * qx + m[4] * qy + m[5] * qz;
+      nz = m[6] * qx + m[7] * qy + m[8] * qz;
+    }
+    const length = Math.sqrt(nx * nx + ny * ny + nz * nz) || 1;
+    const at = this.vertexCount * floatsPerVertex;
+    const store = this.vertices;
+    store[at] = x;
+    store[at + 1] = y;
+    store[at + 2] = z;
+    store[at + 3] = nx / length;
+    store[at + 4] = ny / length;
+    store[at + 5] = nz / length;
+    store[at + 6] = u;
+    store[at + 7] = v;
+    store[at + 8] = w;
+    store[at + 9] = this.colour[0];
+    store[at + 10] = this.colour[1];
+    store[at + 11] = this.colour[2];
+    store[at + 12] = this.openness;
+    return this.vertexCount++;
+  }
+
+  #growVertices(count) {
+    const grown = new Float32Array(Math.max(this.vertices.length * 2, count * floatsPerVertex));
+    grown.set(this.vertices);
+    this.vertices = grown;
+  }
+
+  triangle(a, b, c, material) {
+    if (this.triangleCount >= this.materials.length) {
+      const corners = new Uint32Array(this.corners.length * 2);
+      corners.set(this.corners);
+      this.corners = corners;
+      const materials = new Uint8Array(this.materials.length * 2);
+      materials.set(this.materials);
+      this.materials = materials;
+    }
+    const at = this.triangleCount * 3;
+    this.corners[at] = a;
+    this.corners[at + 1] = b;
+    this.corners[at + 2] = c;
+    this.materials[this.triangleCount++] = material;
+  }
+
+  quad(a, b, c, d, material) {
+    this.triangle(a, b, c, material);
+    this.triangle(a, c, d, material);
+  }
+
+  /**
+   * Adds another mesh's triangles, placed anew.
+   * @param {Mesh} other
+   * @param {Placing} [where]
+   * @param {Triple} [tint] multiplies the colours
+   */
+  add(other, where, tint = [1, 1, 1]) {
+    const place = this.place && where ? placeWithin(this.place, where) : (where ?? this.place);
+    const [held, colour, openness] = [this.place, this.colour, this.openness];
+    const first = this.vertexCount;
+    const from = other.vertices;
+    this.place = place;
+    for (let i = 0, at = 0; i < other.vertexCount; i++, at += floatsPerVertex) {
+      this.colour = [from[at + 9] * tint[0], from[at + 10] * tint[1], from[at + 11] * tint[2]];
+      this.openness = from[at + 12];
+      this.vertex(
+        from[at],
+        from[at + 1],
+        from[at + 2],
+        from[at + 3],
+        from[at + 4],
+        from[at + 5],
+        from[at + 6],
+        from[at + 7],
+        from[at + 8],
+      );
+    }
+    for (let i = 0; i < other.triangleCount; i++) {
+      const c = other.corners;
+      this.triangle(first + c[i * 3], first + c[i * 3 + 1], first + c[i * 3 + 2], other.materials[i]);
+    }
+    [this.place, this.colour, this.openness] = [held, colour, openness];
+  }
+}
+
+export { floatsPerVertex };

@@ -1,0 +1,133 @@
+// Lays the strata over one another: ground, body at strength, line at strength and blend.
+
+// Blend modes, numbered as in core/composition/blendModes.ts. Formulas: W3C Compositing and Blending Level 1,
+// section 10; `b` is the backdrop (the paint), `s` the source (the ink).
+
+// @ts-ignore: decorator
+@inline
+function screen(b: v128, s: v128): v128 {
+  return f32x4.sub(f32x4.add(b, s), f32x4.mul(b, s));
+}
+
+// @ts-ignore: decorator
+@inline
+function hardLight(b: v128, s: v128): v128 {
+  const twice = f32x4.add(s, s);
+  return v128.bitselect(
+    f32x4.mul(b, twice), screen(b, f32x4.sub(twice, f32x4.splat(1))), f32x4.le(s, f32x4.splat(0.5)));
+}
+
+// @ts-ignore: decorator
+@inline
+function colourBurn(b: v128, s: v128): v128 {
+  const one = f32x4.splat(1);
+  const burnt = f32x4.sub(one, f32x4.min(one, f32x4.div(f32x4.sub(one, b), s)));
+  const orBlack = v128.bitselect(f32x4.splat(0), burnt, f32x4.le(s, f32x4.splat(0)));
+  return v128.bitselect(one, orBlack, f32x4.ge(b, one));
+}
+
+// @ts-ignore: decorator
+@inline
+function softLight(b: v128, s: v128): v128 {
+  const one = f32x4.splat(1);
+  const twice = f32x4.add(s, s);
+  const darker = f32x4.sub(b, f32x4.mul(f32x4.mul(f32x4.sub(one, twice), b), f32x4.sub(one, b)));
+  const curve = f32x4.mul(
+    f32x4.add(f32x4.mul(f32x4.sub(f32x4.mul(f32x4.splat(16), b), f32x4.splat(12)), b), f32x4.splat(4)), b);
+  const d = v128.bitselect(curve, f32x4.sqrt(b), f32x4.le(b, f32x4.splat(0.25)));
+  const lighter = f32x4.add(b, f32x4.mul(f32x4.sub(twice, one), f32x4.sub(d, b)));
+  return v128.bitselect(darker, lighter, f32x4.le(s, f32x4.splat(0.5)));
+}
+
+// @ts-ignore: decorator
+@inline
+function blended(mode: i32, b: v128, s: v128): v128 {
+  switch (mode) {
+    case 1: return f32x4.mul(b, s);
+    case 2: return screen(b, s);
+    case 3: return hardLight(s, b);
+    case 4: return f32x4.min(b, s);
+    case 5: return f32x4.max(b, s);
+    case 6: return colourBurn(b, s);
+    case 7: return hardLight(b, s);
+    case 8: return softLight(b, s);
+    default: return s;
+  }
+}
+
+// @ts-ignore: decorator
+@inline
+function loadSamples(at: usize, bytesPerSample: i32): v128 {
+  if (bytesPerSample == 1) {
+    const ints = i32x4.extend_low_i16x8_u(i16x8.extend_low_i8x16_u(v128.load32_zero(at)));
+    return f32x4.div(f32x4.convert_i32x4_s(ints), f32x4.splat(255));
+  }
+  const ints = i32x4.extend_low_i16x8_u(v128.load64_zero(at));
+  return f32x4.div(f32x4.convert_i32x4_s(ints), f32x4.splat(65535));
+}
+
+/**
+ * Composes `count` pixels that follow one another.
+ * @param ground interleaved, 3 or 4 channels of 1 or 2 bytes; four bytes past the end must be readable
+ * @param body R, G, B of 2 bytes, or 0 where body strength is 0
+ * @param line ink coverage, 1 byte, or 0 where line strength is 0
+ * @param settings 12 float32: paper R, G, B, paper strength; ink R, G, B, line strength; body strength
+ * @param out 3 or 4 channels of 1 or 2 bytes; the ground's alpha is carried over, or opaque
+ */
+export function compose(
+  ground: usize, groundBytes: i32, groundChannels: i32, body: usize, line: usize, count: i32, settings: usize,
+  mode: i32, out: usize, outBytes: i32, outChannels: i32,
+): void {
+  const paper = v128.load(settings);
+  const paperStrength = v128.load32_splat(settings, 12);
+  const ink = v128.load(settings, 16);
+  const lineStrength = load<f32>(settings, 28) / 255;
+  const bodyStrength = v128.load32_splat(settings, 32);
+  const zero = f32x4.splat(0), one = f32x4.splat(1);
+  const scale = f32x4.splat(outBytes == 1 ? 255 : 65535);
+  const groundStep = <usize>(groundBytes * groundChannels);
+  const outStep = <usize>(outBytes * outChannels);
+  for (let i = 0; i < count; i++, ground += groundStep, out += outStep) {
+    const source = loadSamples(ground, groundBytes);
+    let x = f32x4.add(source, f32x4.mul(paperStrength, f32x4.sub(paper, source)));
+    if (body != 0) {
+      x = f32x4.add(x, f32x4.mul(bodyStrength, f32x4.sub(loadSamples(body, 2), x)));
+      body += 6;
+    }
+    if (line != 0) {
+      const coverage = load<u8>(line);
+      line += 1;
+      if (coverage != 0) {
+        const alpha = f32x4.splat(lineStrength * <f32>coverage);
+        x = f32x4.add(x, f32x4.mul(alpha, f32x4.sub(blended(mode, x, ink), x)));
+      }
+    }
+    x = f32x4.min(f32x4.max(x, zero), one);
+    const alpha = groundChannels == 4 ? source : one;
+    x = v128.shuffle<i32>(x, alpha, 0, 1, 2, 7);
+    const whole = i32x4.trunc_sat_f32x4_s(f32x4.add(f32x4.mul(x, scale), f32x4.splat(0.5)));
+    storeSamples(out, whole, outBytes, outChannels);
+  }
+}
+
+// @ts-ignore: decorator
+@inline
+function storeSamples(out: usize, whole: v128, outBytes: i32, outChannels: i32): void {
+  const words = i16x8.narrow_i32x4_u(whole, whole);
+  if (outBytes == 2) {
+    if (outChannels == 4) {
+      store<u64>(out, i64x2.extract_lane(words, 0));
+    } else {
+      store<u32>(out, i32x4.extract_lane(words, 0));
+      store<u16>(out, i16x8.extract_lane_u(words, 2), 4);
+    }
+    return;
+  }
+  const bytes = i32x4.extract_lane(i8x16.narrow_i16x8_u(words, words), 0);
+  if (outChannels == 4) {
+    store<u32>(out, bytes);
+  } else {
+    store<u16>(out, <u16>bytes);
+    store<u8>(out, <u8>(bytes >>> 16), 2);
+  }
+}

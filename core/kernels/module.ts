@@ -1,0 +1,189 @@
+/**
+ * The kernels' module, loaded over a memory that its users share. Names and argument orders are those of
+ * core/kernels/assembly; pointers are byte offsets into the memory.
+ */
+export interface Kernels {
+  photoToQuads(
+    src: number,
+    pictureWidth: number,
+    pictureHeight: number,
+    channels: number,
+    bytesPerSample: number,
+    x0: number,
+    y0: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  quadsToTile(
+    src: number,
+    pictureWidth: number,
+    pictureHeight: number,
+    x0: number,
+    y0: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  repeatEdges(
+    tile: number,
+    stride: number,
+    x0: number,
+    y0: number,
+    width: number,
+    height: number,
+    pictureWidth: number,
+    pictureHeight: number,
+  ): void;
+  tileToQuads(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  tileToBody(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  halveQuads(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  gaussianTable(sigmaPx: number, radiusPx: number, table: number): void;
+  gaussianColumns(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    table: number,
+    radiusPx: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  gaussianRows(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    table: number,
+    radiusPx: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  blockTensor(
+    src: number,
+    srcStride: number,
+    blocksX: number,
+    blocksY: number,
+    e: number,
+    f: number,
+    g: number,
+    dstStride: number,
+  ): void;
+  addCoarseTensor(
+    e: number,
+    f: number,
+    g: number,
+    stride: number,
+    blocksX: number,
+    blocksY: number,
+    coarse: number,
+    coarseWidth: number,
+    coarseHeight: number,
+    x0: number,
+    y0: number,
+  ): void;
+  grainNumbers(
+    e: number,
+    f: number,
+    g: number,
+    stride: number,
+    blocksX: number,
+    blocksY: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  bankReachPx(radiusPx: number, pull: number): number;
+  bankBytes(radiusPx: number, pull: number): number;
+  bankScratchBytes(radiusPx: number, pull: number): number;
+  buildBank(radiusPx: number, pull: number, strideElements: number, bank: number, scratch: number): number;
+  sectorWeights(vx: number, vy: number, weights: number): number;
+  grainWise(
+    src: number,
+    srcStride: number,
+    blocksX: number,
+    blocksY: number,
+    numbers: number,
+    numbersStride: number,
+    bank: number,
+    noiseFloor: number,
+    crispness: number,
+    scratch: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  mergeTable(table: number): void;
+  merge(
+    fine: number,
+    fineStride: number,
+    coarse: number,
+    coarseStride: number,
+    blocksX: number,
+    blocksY: number,
+    table: number,
+    rangeSigma: number,
+    hold: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  compose(
+    ground: number,
+    groundBytes: number,
+    groundChannels: number,
+    body: number,
+    line: number,
+    count: number,
+    settings: number,
+    mode: number,
+    out: number,
+    outBytes: number,
+    outChannels: number,
+  ): void;
+}
+
+/** Bytes of one page of WebAssembly memory. */
+export const pageBytes = 65536;
+/** 4 GiB: the most that the module can address; declared in the module, so memories must say the same. */
+export const maximumPages = 65536;
+
+/** A fresh memory that threads can share, ready for the module. */
+export function createKernelMemory(initialPages = 64): WebAssembly.Memory {
+  return new WebAssembly.Memory({ initial: initialPages, maximum: maximumPages, shared: true });
+}
+
+/**
+ * Puts the compiled module over a memory. Each thread has its own instance over the shared memory.
+ * @throws Error with the kernel's message where a kernel meets an impossible argument
+ */
+export async function instantiateKernels(
+  module: WebAssembly.Module,
+  memory: WebAssembly.Memory,
+): Promise<Kernels> {
+  const abort = (): never => {
+    throw new Error('A kernel was called with arguments it cannot take');
+  };
+  const instance = await WebAssembly.instantiate(module, { env: { memory, abort } });
+  return instance.exports as unknown as Kernels;
+}
