@@ -61,6 +61,68 @@ export interface Kernels {
     dst: number,
     dstStride: number,
   ): void;
+  quadsToGround(
+    src: number,
+    srcWidth: number,
+    x0: number,
+    y0: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+    photo: number,
+    photoWidth: number,
+    photoHeight: number,
+    channels: number,
+    bytesPerSample: number,
+    level: number,
+  ): void;
+  copyPlane(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  quadrant(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    radiusPx: number,
+    scratch: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  quadrantScratchBytes(width: number, height: number, radiusPx: number): number;
+  bilateral(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    radiusPx: number,
+    sigmaRange: number,
+    table: number,
+    entryCount: number,
+    scratch: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  bilateralTable(radiusPx: number, table: number): number;
+  bilateralTableBytes(radiusPx: number): number;
+  bilateralScratchBytes(width: number, height: number, radiusPx: number): number;
+  noiseHistogram(
+    pixels: number,
+    width: number,
+    height: number,
+    channels: number,
+    bytesPerSample: number,
+    fromRow: number,
+    toRow: number,
+    record: number,
+  ): void;
+  noiseRecordBytes(): number;
   gaussianTable(sigmaPx: number, radiusPx: number, table: number): void;
   gaussianColumns(
     src: number,
@@ -134,6 +196,7 @@ export interface Kernels {
     dst: number,
     dstStride: number,
   ): void;
+  clearNumbers(numbers: number, count: number): void;
   mergeTable(table: number): void;
   merge(
     fine: number,

@@ -3,6 +3,7 @@ import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
 
 /** Milliseconds spent in each part of a painting. */
 export interface StageTimes {
+  /** Noise, pyramid, structure tensor and choice of kernels. */
   grainMs: number;
   bodyMs: number;
   lineMs: number;
@@ -29,20 +30,30 @@ export interface EnginePhoto {
   readonly depth: 8 | 16;
   readonly channels: 3 | 4;
   readonly levels: readonly { widthPx: number; heightPx: number }[];
-  /** The measured noise floor at full resolution, encoded units 0…1. */
+  /** The noise floor that `auto` stands for, measured at full resolution, encoded units 0…1. */
   readonly noiseFloor: number;
-  /** Gives the memory back. */
+  /** Gives the memory back; safe while a painting of it is under way, and more than once. */
   close(): void;
+}
+
+/** A composed picture in the shared memory. */
+export interface ComposedPicture {
+  /** Interleaved, the photo's channels. A view of shared memory: read it or write it to a file, then release it. */
+  pixels: Uint8Array | Uint16Array;
+  times: StageTimes;
+  /** Gives the memory back; the pixels must not be touched afterwards. */
+  release(): void;
 }
 
 /** Paints photos on a pool of worker threads; the calling thread never loops over pixels. */
 export interface Engine {
   readonly workers: number;
-  /** Takes the pixels in (copied), builds the pyramid, measures the noise. */
+  /** Takes the pixels in (copied) and measures the noise; the pyramid is built when first needed. */
   open(photo: DecodedPhoto, options?: { signal?: AbortSignal }): Promise<EnginePhoto>;
   /**
    * Paints one pyramid level, or a region of it, as strata. At level 0 the pixels equal the file's. Coarse
    * levels are kept with the photo, so that moving to another region of the same parameters is quick.
+   * Strata of a level above 0 have an 8-bit ground.
    */
   paintStrata(
     photo: EnginePhoto,
@@ -50,11 +61,11 @@ export interface Engine {
     where: { level: number; region?: Rect },
     options?: PaintOptions,
   ): Promise<{ strata: Strata; times: StageTimes }>;
-  /** Paints at full resolution and composes. Pixels: interleaved, the photo's channels, at the asked depth. */
+  /** Paints at full resolution and composes, at the asked depth (the photo's own unless given). */
   paintPicture(
     photo: EnginePhoto,
     parameters: Parameters,
     options?: PaintOptions & { depth?: 8 | 16 },
-  ): Promise<{ pixels: Uint8Array | Uint16Array; times: StageTimes }>;
+  ): Promise<ComposedPicture>;
   close(): Promise<void>;
 }

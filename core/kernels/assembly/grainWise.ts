@@ -63,3 +63,8 @@ function colourFrom(sums: usize, floorSquared: f32, crispness: i32): v128 {
     channelOf4(e, f, g, h, 0), channelOf4(e, f, g, h, 1), channelOf4(e, f, g, h, 2), channelOf4(e, f, g, h, 3),
     floorSquared, crispness);
 }
+
+/** Sets block numbers to 0, the round kernel. */
+export function clearNumbers(numbers: usize, count: i32): void {
+  memory.fill(numbers, 0, <usize>count << 1);
+}

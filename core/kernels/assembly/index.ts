@@ -1,7 +1,7 @@
 export * from './bank';
 export * from './bilateral';
 export * from './compose';
-export * from './exponential';
+export { expOfMinus } from './exponential';
 export * from './gaussian';
 export * from './grain';
 export * from './grainWise';

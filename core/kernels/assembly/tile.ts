@@ -127,3 +127,37 @@ export function halveQuads(src: usize, srcStride: i32, width: i32, height: i32, 
     }
   }
 }
+
+/** Plane of float32 → plane. */
+export function copyPlane(src: usize, srcStride: i32, width: i32, height: i32, dst: usize, dstStride: i32): void {
+  for (let y = 0; y < height; y++) {
+    memory.copy(dst + (<usize>(y * dstStride) << 2), src + (<usize>(y * srcStride) << 2), <usize>width << 2);
+  }
+}
+
+/**
+ * Stored quad picture of level `level` → ground stratum of 8 bits; alpha is taken from the photo, from the pixel
+ * nearest to the middle of what the level's pixel stands for.
+ */
+export function quadsToGround(
+  src: usize, srcWidth: i32, x0: i32, y0: i32, width: i32, height: i32, dst: usize, dstStride: i32,
+  photo: usize, photoWidth: i32, photoHeight: i32, channels: i32, bytesPerSample: i32, level: i32,
+): void {
+  const middle = (1 << level) >> 1;
+  for (let y = 0; y < height; y++) {
+    const row = src + ((<usize>(y0 + y) * <usize>srcWidth + <usize>x0) << 4);
+    const photoRow = photo + <usize>min(((y0 + y) << level) + middle, photoHeight - 1) * <usize>(photoWidth * channels * bytesPerSample);
+    let out = dst + <usize>(y * dstStride * channels);
+    for (let x = 0; x < width; x++, out += channels) {
+      const v = f32x4.min(f32x4.max(v128.load(row + (<usize>x << 4)), f32x4.splat(0)), f32x4.splat(1));
+      const whole = i32x4.trunc_sat_f32x4_s(f32x4.add(f32x4.mul(v, f32x4.splat(255)), f32x4.splat(0.5)));
+      store<u8>(out, i32x4.extract_lane(whole, 0));
+      store<u8>(out, i32x4.extract_lane(whole, 1), 1);
+      store<u8>(out, i32x4.extract_lane(whole, 2), 2);
+      if (channels == 4) {
+        const at = photoRow + <usize>(min(((x0 + x) << level) + middle, photoWidth - 1) * 4 * bytesPerSample);
+        store<u8>(out, bytesPerSample == 1 ? load<u8>(at, 3) : <u8>(load<u16>(at, 6) >>> 8), 3);
+      }
+    }
+  }
+}

@@ -1,0 +1,237 @@
+import type { Kernels } from '../../core/kernels/module.ts';
+import { type BodyPlan, passHaloPx } from '../../core/pipeline/bodyPlan.ts';
+import {
+  type Destination,
+  evenUp,
+  type PaintJob,
+  type SourcePicture,
+  type TileGrid,
+} from '../../core/pipeline/jobs.ts';
+import { layOutScratch } from '../../core/pipeline/scratch.ts';
+import type { Rect } from '../../core/pixels/photo.ts';
+import { CoarseLevel } from './coarseLevel.ts';
+import type { HeldPhoto } from './heldPhoto.ts';
+import type { SharedHeap } from './sharedHeap.ts';
+import type { TableStore, Tables } from './tableStore.ts';
+import type { WorkerPool } from './workerPool.ts';
+
+/** How pictures are cut. Even numbers; any give the same pixels. */
+export interface TileSize {
+  widthPx: number;
+  heightPx: number;
+}
+
+/** Milliseconds, summed over the workers. */
+export interface PassTimes {
+  grainMs: number;
+  totalMs: number;
+}
+
+export interface BodyOptions {
+  signal?: AbortSignal;
+  onProgress?: (fraction01: number) => void;
+}
+
+/**
+ * Paints bodies: coarse levels first, each merged into the next finer one. The pixels of a level depend only on
+ * the photo and the plan, so a region of the finest level equals the same region of the whole.
+ */
+export class BodyPainter {
+  constructor(
+    readonly pool: WorkerPool,
+    readonly heap: SharedHeap,
+    readonly kernels: Kernels,
+    readonly tables: TableStore,
+    readonly tileSize: TileSize,
+  ) {}
+
+  /**
+   * Paints a region of `level` into a body stratum.
+   * @param region even corner, inside the level
+   * @param body pointer to u16 × 3 for region.widthPx × region.heightPx
+   */
+  async paint(
+    photo: HeldPhoto,
+    plan: BodyPlan,
+    level: number,
+    region: Rect,
+    body: number,
+    options: BodyOptions = {},
+  ): Promise<PassTimes> {
+    const times: PassTimes = { grainMs: 0, totalMs: 0 };
+    const progress = weighProgress(photo, plan, level, region, options.onProgress);
+    const coarse = await this.#coarseLevelFor(
+      photo,
+      plan,
+      level,
+      { ...options, onProgress: progress.coarse },
+      times,
+    );
+    try {
+      const destination: Destination = {
+        kind: 'body',
+        pointer: body,
+        strideElements: region.widthPx,
+        originX: region.xPx,
+        originY: region.yPx,
+      };
+      const source = await photo.level(level, this.pool, options.signal);
+      const finest = { ...options, onProgress: progress.finest };
+      await this.#pass(plan, 0, source, region, destination, coarse, null, finest, times);
+    } finally {
+      coarse?.letGo();
+    }
+    return times;
+  }
+
+  /** The level just above the finest, from what is kept or painted anew; null for a single level. */
+  async #coarseLevelFor(
+    photo: HeldPhoto,
+    plan: BodyPlan,
+    level: number,
+    options: BodyOptions,
+    times: PassTimes,
+  ): Promise<CoarseLevel | null> {
+    const levelCount = Math.min(plan.levelCount, photo.levels.length - level);
+    if (levelCount < 2) return null;
+    const key = JSON.stringify([plan, level]);
+    if (photo.kept?.key === key) return photo.kept.coarse.hold();
+    let coarse: CoarseLevel | null = null;
+    for (let depth = levelCount - 1; depth >= 1; depth--) {
+      const finer = await this.#paintCoarse(photo, plan, level, depth, coarse, options, times).finally(() =>
+        coarse?.letGo(),
+      );
+      coarse = finer;
+    }
+    photo.dropKept();
+    photo.kept = { key, coarse: coarse!.hold() };
+    return coarse;
+  }
+
+  /** One level, all its coats, with its tensor. `depth` counts from the finest level of this painting. */
+  async #paintCoarse(
+    photo: HeldPhoto,
+    plan: BodyPlan,
+    level: number,
+    depth: number,
+    coarse: CoarseLevel | null,
+    options: BodyOptions,
+    times: PassTimes,
+  ): Promise<CoarseLevel> {
+    const source = await photo.level(level + depth, this.pool, options.signal);
+    const { widthPx, heightPx } = source;
+    const whole: Rect = { xPx: 0, yPx: 0, widthPx, heightPx };
+    const [widthBlocks, heightBlocks] = [evenUp(widthPx) / 2, evenUp(heightPx) / 2];
+    const tensor = {
+      pointer: this.heap.allocate(widthBlocks * heightBlocks * 12),
+      widthBlocks,
+      heightBlocks,
+    };
+    let [to, spare] = [this.heap.allocate(widthPx * heightPx * 16), 0];
+    try {
+      if (plan.coats > 0) spare = this.heap.allocate(widthPx * heightPx * 16);
+      const into = (pointer: number): Destination => ({
+        kind: 'quads',
+        pointer,
+        strideElements: widthPx,
+        originX: 0,
+        originY: 0,
+      });
+      await this.#pass(plan, depth, source, whole, into(to), coarse, tensor, options, times);
+      for (let coat = 0; coat < plan.coats; coat++) {
+        const paint: SourcePicture = { pointer: to, widthPx, heightPx, bytesPerSample: 0, channels: 4 };
+        await this.#pass(plan, depth, paint, whole, into(spare), null, tensor, options, times, coarse);
+        [to, spare] = [spare, to];
+      }
+      this.heap.free(spare);
+      return new CoarseLevel(
+        { pointer: to, widthPx, heightPx, bytesPerSample: 0, channels: 4 },
+        tensor,
+        this.heap,
+      );
+    } catch (error) {
+      for (const pointer of [to, spare, tensor.pointer]) this.heap.free(pointer);
+      throw error;
+    }
+  }
+
+  /** One pass over a region. Coats take their orientation from `orientation` without merging with it. */
+  async #pass(
+    plan: BodyPlan,
+    depth: number,
+    source: SourcePicture,
+    region: Rect,
+    destination: Destination,
+    coarse: CoarseLevel | null,
+    tensorOut: CoarseLevel['tensor'] | null,
+    options: BodyOptions,
+    times: PassTimes,
+    orientation: CoarseLevel | null = coarse,
+  ): Promise<void> {
+    const grid = cutIntoTiles(region, this.tileSize);
+    const haloPx =
+      plan.method === 'quadrant' || plan.method === 'bilateral'
+        ? evenUp(Math.ceil(plan.radiusPx))
+        : passHaloPx(plan);
+    // One stride for every pass of a plan: the bank's distances hold for it.
+    const strideElements = this.tileSize.widthPx + 4 * haloPx;
+    const tables: Tables = await this.tables.get(plan, strideElements, options.signal);
+    const job: PaintJob = {
+      kind: 'paint',
+      grid,
+      source,
+      destination,
+      method: plan.method === 'multi-scale' ? 'grain-wise' : plan.method,
+      coarse: coarse?.picture ?? null,
+      coarseTensor: orientation?.tensor ?? null,
+      tensorOut,
+      haloPx,
+      strideElements,
+      bank: tables.bank,
+      mergeTable: tables.mergeTable,
+      gaussianTable: tables.gaussianTable,
+      radiusPx: plan.radiusPx,
+      noiseFloor: plan.noiseFloor / 2 ** depth,
+      crispness: plan.crispness,
+      hold: plan.hold,
+    };
+    const scratchBytes = layOutScratch(this.kernels, job, 0).endBytes;
+    const pass = await this.pool.run(job, {
+      signal: options.signal,
+      scratchBytes,
+      onProgress: options.onProgress,
+    });
+    times.grainMs += pass.grainMs;
+    times.totalMs += pass.totalMs;
+  }
+}
+
+function cutIntoTiles(region: Rect, size: TileSize): TileGrid {
+  return { ...region, tileWidthPx: size.widthPx, tileHeightPx: size.heightPx };
+}
+
+/** Shares the progress between the coarse levels, pass by pass, and the finest. */
+function weighProgress(
+  photo: HeldPhoto,
+  plan: BodyPlan,
+  level: number,
+  region: Rect,
+  report?: (fraction01: number) => void,
+): { coarse?: (fraction01: number) => void; finest?: (fraction01: number) => void } {
+  if (!report) return {};
+  const { widthPx, heightPx } = photo.levels[level];
+  const finestCost = 2 * region.widthPx * region.heightPx;
+  const coarseCost = plan.levelCount > 1 ? ((widthPx * heightPx) / 3) * (2 + plan.coats) : 0;
+  const share = coarseCost / (coarseCost + finestCost);
+  let done = 0;
+  let last = 0;
+  return {
+    coarse: (fraction01) => {
+      // Passes follow one another; each starts at 0 again. Coarse passes are short, the first finer one dominates.
+      if (fraction01 < last) done += (1 - done) * 0.4;
+      last = fraction01;
+      report(share * Math.min(1, done + (1 - done) * 0.4 * fraction01));
+    },
+    finest: (fraction01) => report(share + (1 - share) * fraction01),
+  };
+}
