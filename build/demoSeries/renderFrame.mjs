@@ -1,0 +1,25 @@
+// One plate, from scene to developed pixels.
+
+import { makeCamera } from './camera.mjs';
+import { exposePicture } from './exposePicture.mjs';
+import { applyDepthOfField, applyFlareAndFalloff } from './lens.mjs';
+import { lights } from './lights.mjs';
+import { develop } from './sensor.mjs';
+import { Sky } from './sky.mjs';
+
+/**
+ * @param {import('./frames.mjs').frames[number]} frame @param {number} scale of the full size, 0…1
+ * @returns {{ pixels: Uint8Array, widthPx: number, heightPx: number }} upright, encoded sRGB
+ */
+export function renderFrame(frame, scale) {
+  const widthPx = Math.max(16, Math.round(frame.widthPx * scale));
+  const heightPx = Math.max(16, Math.round(frame.heightPx * scale));
+  const camera = makeCamera(frame.view, widthPx, heightPx);
+  const light = lights[frame.light];
+  const setting = frame.scene({ eye: camera.eye, pixelAngle: 1 / camera.focalPx });
+  const scene = { ...setting, sky: new Sky(light.sky), air: setting.air ?? light.air };
+  const picture = exposePicture(scene, camera);
+  applyDepthOfField(picture, widthPx, heightPx, frame.lens);
+  applyFlareAndFalloff(picture.rgb, widthPx, heightPx, frame.lens);
+  return { pixels: develop(picture.rgb, widthPx * heightPx, frame.sensor), widthPx, heightPx };
+}
