@@ -4,6 +4,7 @@ import type { DecodedPhoto } from '../../core/pixels/photo.ts';
 export interface PhotoFile extends DecodedPhoto {
   path: string;
   format: 'jpeg' | 'png' | 'tiff' | 'webp' | 'avif' | 'gif' | 'heif';
+  /** Of the samples in `pixels`; a photo of fewer bits is spread to 8. */
   depth: 8 | 16;
   /** The embedded profile, unchanged, where the pixels are still in it. */
   iccProfile?: Uint8Array;
@@ -21,7 +22,10 @@ export interface PictureFile extends DecodedPhoto {
   format: OutputFormat;
   iccProfile?: Uint8Array;
   densityPpi?: number;
+  /** The photo's EXIF; size, density and orientation in it are set right while writing. Not kept in TIFF. */
   exif?: Uint8Array;
+  /** Keeps the GPS data of the EXIF, which stays out otherwise. */
+  keepLocation?: boolean;
   /** 1…100, for JPEG and WebP. */
   quality?: number;
 }

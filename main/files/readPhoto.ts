@@ -1,0 +1,162 @@
+import type { Metadata, Sharp } from 'sharp';
+import { whyUndecodable } from './decodeFaults.ts';
+import { FileError } from './fileError.ts';
+import { sharp } from './imageLibrary.ts';
+import { profileSpace } from './inputProfile.ts';
+import { unlessAborted } from './interruption.ts';
+import { turnUpright } from './orientation.ts';
+import type { PhotoFile } from './photoFile.ts';
+import { openPhoto, type PhotoHeader, readHeader } from './photoHeader.ts';
+
+/** What becomes of the colours while reading. */
+interface ColourPlan {
+  /** Numbers kept as stored, or converted by the library through the embedded profile to sRGB. */
+  convert: boolean;
+  iccProfile?: Uint8Array;
+  remarks: string[];
+}
+
+type Strictness = 'warning' | 'truncated';
+
+/**
+ * Reads a photo: upright, full resolution, the numbers of the file (8 or 16 bits), straight alpha.
+ * The embedded profile comes along unchanged; only what is not RGB is converted, and the remarks say so.
+ * @throws FileError naming the file, what is wrong with it and what to do
+ * @throws the signal's reason when it is aborted
+ */
+export async function readPhoto(path: string, options: { signal?: AbortSignal } = {}): Promise<PhotoFile> {
+  const { signal } = options;
+  signal?.throwIfAborted();
+  const opened = await openPhoto(path, { wholeFile: true, signal });
+  const header = await readHeader(path, opened, signal);
+  const colours = planColours(header.metadata);
+  const decoded = await decode(path, opened.source, header, colours, signal);
+  const upright = await turnUpright(decoded, header.orientation, signal);
+  return {
+    path,
+    format: header.format,
+    depth: header.depth,
+    widthPx: upright.widthPx,
+    heightPx: upright.heightPx,
+    channels: decoded.channels,
+    pixels: upright.pixels,
+    iccProfile: colours.iccProfile,
+    densityPpi: writtenDensity(header.metadata),
+    exif: header.metadata.exif && asPlainBytes(header.metadata.exif),
+    remarks: [...colours.remarks, ...decoded.remarks, ...pageRemarks(header.metadata)],
+  };
+}
+
+function planColours(metadata: Metadata): ColourPlan {
+  const embedded = metadata.icc && asPlainBytes(metadata.icc);
+  const space = metadata.space;
+  const described = embedded && profileSpace(embedded);
+  if (space === 'cmyk') {
+    const through =
+      described === 'CMYK'
+        ? 'its embedded profile'
+        : 'a general printing profile, as it carries none of its own';
+    return { convert: true, remarks: [`The photo is CMYK: converted to sRGB through ${through}.`] };
+  }
+  if (space === 'lab' || space === 'labs')
+    return { convert: true, remarks: ['The photo is in Lab colours: converted to sRGB.'] };
+  if (space === 'b-w' || space === 'grey16') {
+    const remarks = ['The photo is grey: painted as RGB with equal red, green and blue.'];
+    if (embedded)
+      remarks.push('Its grey profile does not fit RGB and is not carried on; the numbers are kept.');
+    return { convert: false, remarks };
+  }
+  if (embedded && described !== 'RGB ')
+    return {
+      convert: false,
+      remarks: [
+        described
+          ? `The embedded profile is for ${described.trim()}, not for RGB: left out, sRGB assumed.`
+          : 'The embedded colour profile is damaged: left out, sRGB assumed.',
+      ],
+    };
+  return { convert: false, iccProfile: embedded || undefined, remarks: [] };
+}
+
+function pageRemarks(metadata: Metadata): string[] {
+  const pages = metadata.pages ?? 1;
+  return pages > 1 ? [`The file holds ${pages} pictures: the first one is used.`] : [];
+}
+
+/** The library reports 72 where a file says nothing, so 72 counts as unsaid; nothing is printed at 72. */
+function writtenDensity(metadata: Metadata): number | undefined {
+  return metadata.density && metadata.density !== 72 ? metadata.density : undefined;
+}
+
+function pipeline(
+  source: Buffer | string,
+  header: PhotoHeader,
+  colours: ColourPlan,
+  failOn: Strictness,
+): Sharp {
+  const image = sharp(source, {
+    failOn,
+    limitInputPixels: false, // The header was held against our own limit.
+    ignoreIcc: !colours.convert,
+    sequentialRead: true,
+  });
+  // Asking for 16-bit output alone silently gives 8-bit values: the working space must be 16-bit too.
+  return header.depth === 16 ? image.toColourspace('rgb16').raw({ depth: 'ushort' }) : image.raw();
+}
+
+/**
+ * Decodes strictly first. A file that only drew warnings is decoded again without minding them, with a remark;
+ * one that is cut off, or breaks the decoder, is refused.
+ */
+async function decode(
+  path: string,
+  source: Buffer | string,
+  header: PhotoHeader,
+  colours: ColourPlan,
+  signal?: AbortSignal,
+) {
+  const remarks: string[] = [];
+  const attempt = async (failOn: Strictness) =>
+    unlessAborted(pipeline(source, header, colours, failOn).toBuffer({ resolveWithObject: true }), signal);
+  let result: Awaited<ReturnType<typeof attempt>>;
+  try {
+    result = await attempt('warning');
+  } catch (strictFailure) {
+    signal?.throwIfAborted();
+    const fault = whyUndecodable(path, strictFailure);
+    try {
+      result = await attempt('truncated');
+    } catch (failure) {
+      signal?.throwIfAborted();
+      throw whyUndecodable(path, failure);
+    }
+    remarks.push(`The file ${fault.problem}: parts of the picture may look wrong.`);
+  }
+  const { data, info } = result;
+  if (info.channels !== 3 && info.channels !== 4)
+    throw new FileError(
+      path,
+      `holds ${info.channels} channels`,
+      'Export it as an RGB picture and open that.',
+    );
+  const channels: 3 | 4 = info.channels;
+  const pixels = header.depth === 16 ? asSamples16(data) : asPlainBytes(data);
+  if (pixels.length !== info.width * info.height * channels)
+    throw new FileError(
+      path,
+      'decodes to a wrong number of samples',
+      'Export it again as RGB and open that.',
+    );
+  return { pixels, widthPx: info.width, heightPx: info.height, channels, remarks };
+}
+
+/** The same memory without Buffer's own methods, which differ from those of a plain array (`slice`). */
+function asPlainBytes(bytes: Buffer): Uint8Array {
+  return new Uint8Array(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+}
+
+function asSamples16(bytes: Buffer): Uint16Array {
+  if (bytes.byteOffset % 2 === 0)
+    return new Uint16Array(bytes.buffer, bytes.byteOffset, bytes.byteLength / 2);
+  return new Uint16Array(new Uint8Array(bytes).buffer);
+}
