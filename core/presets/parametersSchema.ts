@@ -22,6 +22,7 @@ export type StoredParameters = Partial<Parameters> & Record<string, unknown>;
 export const storedParametersSchema = z
   .looseObject(Object.fromEntries(parameterKeys.map((key) => [key, valueSchema(key).optional()])))
   .meta({
+    id: 'parameters',
     description: 'Parameter values by key. A missing key stands for its default.',
   }) as unknown as z.ZodType<StoredParameters>;
 
