@@ -75,7 +75,10 @@ export interface Session {
 }
 
 export interface PresetOffer {
+  /** What recipes call it. */
   name: string;
+  /** As people read it. */
+  title: string;
   /** One plain sentence. */
   description: string;
   parameters: Parameters;

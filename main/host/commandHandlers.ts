@@ -1,0 +1,141 @@
+import { homedir } from 'node:os';
+import { basename, dirname } from 'node:path';
+import { engineVersion } from '../../core/engineVersion.ts';
+import type { CheckedInput } from './api/commandSchemas.ts';
+import type { Choice, CommandName, HostCommands, OpenedPhoto, Session } from './api/hostCommands.ts';
+import { allowOpening, type HostState } from './host.ts';
+import { listFolder, listPlaces } from './listFolder.ts';
+import type { OpenPhoto } from './openPhoto.ts';
+import { PaintCommands } from './paintCommands.ts';
+import { Refusal } from './refusal.ts';
+import type { RunningCall } from './runningCalls.ts';
+import { savePainting } from './savePainting.ts';
+
+type Answer<Command> = Command extends { output: infer Output } ? Output : Uint8Array<ArrayBuffer>;
+
+/** One handler for each command of the contract. */
+export type CommandHandlers = {
+  [Name in CommandName]: (
+    input: CheckedInput<Name>,
+    call: RunningCall,
+  ) => Promise<Answer<HostCommands[Name]>>;
+};
+
+/** Binds the commands to what they share; each is described where the contract lists it. */
+export function createCommandHandlers(state: HostState): CommandHandlers {
+  const { photos, drafts, recents, grants, parts, calls } = state;
+  const paint = new PaintCommands(parts, calls);
+  return {
+    startSession: () => startSession(state),
+    openPhoto: ({ path }, call) => openPhoto(state, path, call),
+    awaitPhoto: async ({ photoId }, call) => {
+      const photo = photos.find(photoId);
+      await photo.whole(AbortSignal.any([call.signal, photo.closingSignal]));
+      return present(state, photo);
+    },
+    closePhoto: async ({ photoId }) => {
+      await photos.close(photoId, 'asked');
+      return {};
+    },
+    paintStrata: (input, call) => paint.paintStrata(photos.find(input.photoId), input, call),
+    paintSmallPicture: (input, call) => paint.paintSmallPicture(photos.find(input.photoId), input, call),
+    savePainting: (input, call) =>
+      savePainting(photos.find(input.photoId), input, call, {
+        loadEngine: () => parts.loadEngine(),
+        loadFiles: () => parts.loadFiles(),
+        grants,
+        events: state.events,
+        openPaths: () => photos.all.map((photo) => photo.path),
+      }),
+    listFolder: async ({ path }) => {
+      const places = await listPlaces();
+      for (const place of places) grants.offerFolder(place.path);
+      const folder = grants.checkListing(path ?? homedir());
+      const listing = await listFolder(folder);
+      grants.folderWasListed(folder);
+      return { ...listing, places };
+    },
+    chooseWithDialog: (input) => chooseWithDialog(state, input),
+    listRecents: async () => ({ recents: await recents.list() }),
+    forgetRecent: async ({ path }) => {
+      await recents.forget(path);
+      return { recents: await recents.list() };
+    },
+    keepDraft: async ({ photoId, draft }) => {
+      const { path } = photos.find(photoId);
+      return { keptAt: await drafts.keep(path, draft as Parameters<typeof drafts.keep>[1]) };
+    },
+    dropDraft: async ({ path }) => {
+      await drafts.drop(grants.checkPhoto(path));
+      return {};
+    },
+    openDemo: async () => {
+      if (!parts.demo) throw new Refusal('NotFound', 'The demo plates are not installed.');
+      const series = await parts.demo.prepare();
+      for (const { path } of series.photos) allowOpening(state, path);
+      return series;
+    },
+    revealFile: async ({ path }) => {
+      if (!parts.desktop.reveal) throw new Refusal('NotFound', 'This window cannot show files elsewhere.');
+      grants.checkWriting(dirname(path));
+      await parts.desktop.reveal(path);
+      return {};
+    },
+    cancelCall: async ({ callId }) => ({ cancelled: calls.cancel(callId) }),
+  };
+}
+
+async function startSession(state: HostState): Promise<Session> {
+  const { parts, recents, drafts } = state;
+  const [presets, recentList, draftList] = await Promise.all([
+    parts.loadPresets(),
+    recents.list(),
+    drafts.list(),
+  ]);
+  // What the user opened in an earlier session counts as chosen.
+  for (const { path } of [...recentList, ...draftList]) allowOpening(state, path);
+  const { opening } = state;
+  state.opening = null;
+  return {
+    appVersion: parts.appVersion,
+    engineVersion: String(engineVersion),
+    shell: parts.shell,
+    platform: process.platform,
+    workers: parts.workers,
+    desktop: parts.desktop.capabilities,
+    presets,
+    recents: recentList,
+    drafts: draftList,
+    demo: { available: parts.demo !== null, title: parts.demo?.title ?? '' },
+    opening,
+    homePath: homedir(),
+  };
+}
+
+async function openPhoto(state: HostState, given: string, call: RunningCall): Promise<OpenedPhoto> {
+  const path = state.grants.checkPhoto(given);
+  const photo = await state.photos.open(path, call.signal);
+  allowOpening(state, path);
+  const opened = await present(state, photo);
+  void state.recents.add(opened).then(() => state.events.send('recentsChanged', {}));
+  return opened;
+}
+
+async function present(state: HostState, photo: OpenPhoto): Promise<OpenedPhoto> {
+  return { ...photo.describe(), draft: await state.drafts.read(photo.path) };
+}
+
+async function chooseWithDialog(state: HostState, input: CheckedInput<'chooseWithDialog'>): Promise<Choice> {
+  const { desktop } = state.parts;
+  if (!desktop.choose)
+    throw new Refusal('NotFound', 'This window has no system dialogs.', 'Use the list of folders.');
+  const path = await desktop.choose(input);
+  if (!path) return { path: null, folder: null, name: null };
+  if (input.kind === 'photo') allowOpening(state, path);
+  if (input.kind === 'folder') {
+    state.grants.offerFolder(path);
+    state.grants.allowWriting(path);
+  }
+  if (input.kind === 'save') state.grants.allowReplacing(path);
+  return { path, folder: dirname(path), name: basename(path) };
+}

@@ -1,0 +1,56 @@
+import type { Parameters } from '../../core/parameters/table.ts';
+import type { DecodedPhoto, Strata } from '../../core/pixels/photo.ts';
+import type { Engine } from '../engine/engineApi.ts';
+import type { PhotoFile, PictureFile } from '../files/photoFile.ts';
+import type { ChooseInput, DemoSeries, DesktopCapabilities, PresetOffer } from './api/hostCommands.ts';
+
+/** Reads and writes pictures. */
+export interface HostFiles {
+  readPhoto(path: string, options?: { signal?: AbortSignal }): Promise<PhotoFile>;
+  /** Writes `path`, which must not appear half-written whatever happens. */
+  writePicture(path: string, picture: PictureFile, options?: { signal?: AbortSignal }): Promise<unknown>;
+  /** Size and kind without decoding; null where only decoding can tell. */
+  readFacts(path: string): Promise<PhotoFacts | null>;
+  /** A quick decode at 1/2^`level` of the size; null where the format has no short cut. */
+  readQuick(path: string, facts: PhotoFacts, level: number): Promise<DecodedPhoto | null>;
+}
+
+/** What a photo's header says; width and height upright. */
+export interface PhotoFacts {
+  widthPx: number;
+  heightPx: number;
+  format: string;
+  depth: 8 | 16;
+  channels: 3 | 4;
+  densityPpi: number | null;
+  /** A decoder can give this photo at a half, a quarter, an eighth of its size for less work. */
+  shrinksOnLoad: boolean;
+}
+
+/** What only a native shell can do. */
+export interface Desktop {
+  capabilities: DesktopCapabilities;
+  /** @returns the chosen path, or null where the dialog was dismissed */
+  choose?(input: ChooseInput): Promise<string | null>;
+  reveal?(path: string): Promise<void>;
+}
+
+/** Composes strata to 8-bit R, G, B, alpha. */
+export type ComposeSmall = (strata: Strata, parameters: Parameters) => Promise<Uint8Array>;
+
+/** What a host is made of; each heavy part is loaded when first asked for, so that the window comes up fast. */
+export interface HostParts {
+  shell: 'electron' | 'loopback';
+  appVersion: string;
+  workers: number;
+  loadEngine(): Promise<Engine>;
+  loadFiles(): Promise<HostFiles>;
+  loadPresets(): Promise<PresetOffer[]>;
+  loadComposeSmall(): Promise<ComposeSmall>;
+  demo: { title: string; prepare(): Promise<DemoSeries> } | null;
+  desktop: Desktop;
+  /** Where recents and drafts are kept. */
+  dataFolder: string;
+  /** How many photos stay open; 3 unless given. */
+  maximumOpenPhotos?: number;
+}

@@ -1,0 +1,131 @@
+import { stat } from 'node:fs/promises';
+import { basename, dirname, extname, join } from 'node:path';
+import { parseParameters } from '../../core/parameters/parse.ts';
+import type { Engine } from '../engine/engineApi.ts';
+import { outputDepth } from '../files/outputFormat.ts';
+import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
+import type { CheckedInput } from './api/commandSchemas.ts';
+import type { OutputFormatName, SavedPainting } from './api/hostCommands.ts';
+import type { EventHub } from './eventHub.ts';
+import type { HostFiles } from './hostParts.ts';
+import type { OpenPhoto } from './openPhoto.ts';
+import type { PathGrants } from './pathGrants.ts';
+import { firstFree, placeNew, placeOver } from './placeFile.ts';
+import { Refusal } from './refusal.ts';
+import type { RunningCall } from './runningCalls.ts';
+
+const extensions: Record<OutputFormatName, readonly string[]> = {
+  jpeg: ['.jpg', '.jpeg'],
+  png: ['.png'],
+  tiff: ['.tif', '.tiff'],
+  webp: ['.webp'],
+};
+
+/** Names that Windows keeps for devices: a file of that name could never be opened there. */
+const deviceName = /^(con|prn|aux|nul|com\d|lpt\d)(\.|$)/i;
+// biome-ignore lint/suspicious/noControlCharactersInRegex: control characters are what is looked for.
+const forbiddenInName = /[\\/:*?"<>|\u0000-\u001f]/;
+
+export interface SaveParts {
+  loadEngine(): Promise<Engine>;
+  loadFiles(): Promise<HostFiles>;
+  grants: PathGrants;
+  events: EventHub;
+  /** Every open photo: none of their files is ever written over. */
+  openPaths(): string[];
+}
+
+/**
+ * Paints a photo at full resolution and writes it; a file of that name that is there already stays.
+ * @throws Refusal where the folder was not chosen or the name cannot be used
+ * @throws FileError where the file cannot be written
+ */
+export async function savePainting(
+  photo: OpenPhoto,
+  input: CheckedInput<'savePainting'>,
+  call: RunningCall,
+  parts: SaveParts,
+): Promise<SavedPainting> {
+  const started = performance.now();
+  const parameters = parseParameters(input.parameters);
+  const target = join(parts.grants.checkWriting(input.folder), checkName(input.name, input.format));
+  const replace = input.whenTaken === 'replace';
+  if (replace) await checkReplacing(target, parts);
+  const report = progressReporter(call.id, parts.events);
+  // Found out before the painting, not after it.
+  await assertWritable(replace ? target : await firstFree(target));
+  report(0, 'opening');
+  const [engine, files] = await Promise.all([parts.loadEngine(), parts.loadFiles()]);
+  const { file } = await photo.whole(call.signal);
+  const depth = outputDepth(input.format, input.depth ?? file.depth);
+  const { widthPx, heightPx, channels, iccProfile, densityPpi, exif } = file;
+  const path = await photo.paint(0, call.signal, async ({ enginePhoto }, signal) => {
+    const painted = await engine.paintPicture(enginePhoto, parameters, {
+      depth,
+      signal,
+      printLongEdgeMm: input.printLongEdgeMm,
+      onProgress: (fraction01, stage) => report(fraction01 * paintShare01, stage),
+    });
+    try {
+      signal.throwIfAborted();
+      report(paintShare01, 'writing');
+      const picture = { widthPx, heightPx, channels, pixels: painted.pixels, iccProfile, densityPpi, exif };
+      const write = (path: string) =>
+        files.writePicture(path, { ...picture, format: input.format, quality: input.quality }, { signal });
+      return await (replace ? placeOver(target, write) : placeNew(target, write, signal));
+    } finally {
+      painted.release();
+    }
+  });
+  report(1, 'writing');
+  const { size } = await stat(path);
+  return {
+    path,
+    name: basename(path),
+    folder: dirname(path),
+    widthPx,
+    heightPx,
+    sizeBytes: size,
+    tookMs: Math.round(performance.now() - started),
+  };
+}
+
+/** Painting is most of a save; the rest is encoding and writing, which report nothing in between. */
+const paintShare01 = 0.9;
+const reportEveryMs = 100;
+
+function progressReporter(callId: string, events: EventHub): (fraction01: number, stage: string) => void {
+  let lastMs = Number.NEGATIVE_INFINITY;
+  let lastStage = '';
+  return (fraction01, stage) => {
+    const nowMs = performance.now();
+    if (stage === lastStage && nowMs - lastMs < reportEveryMs && fraction01 < 1) return;
+    lastMs = nowMs;
+    lastStage = stage;
+    events.send('progress', { callId, fraction01, stage });
+  };
+}
+
+/** The name with the format's extension; one that is not a plain file name is refused. */
+export function checkName(name: string, format: OutputFormatName): string {
+  const trimmed = name.trim();
+  const fault = forbiddenInName.exec(trimmed);
+  if (fault || trimmed.startsWith('.') || trimmed.endsWith('.') || deviceName.test(trimmed) || !trimmed)
+    throw new Refusal(
+      'BadRequest',
+      `${JSON.stringify(name)} cannot be a file name.`,
+      'Use letters, figures, spaces and hyphens; choose the folder separately.',
+    );
+  const fits = extensions[format].includes(extname(trimmed).toLowerCase());
+  return fits ? trimmed : `${trimmed}${extensions[format][0]}`;
+}
+
+async function checkReplacing(target: string, parts: SaveParts): Promise<void> {
+  if (!parts.grants.mayReplace(target))
+    throw new Refusal(
+      'NotAllowed',
+      `Nobody agreed to replace ${target}.`,
+      'Choose the file in the save dialog, or save under a name of its own.',
+    );
+  for (const path of parts.openPaths()) await refuseOverwritingOriginal(path, target);
+}
