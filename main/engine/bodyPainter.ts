@@ -5,6 +5,7 @@ import {
   evenUp,
   type PaintJob,
   type SourcePicture,
+  type TensorPlanes,
   type TileGrid,
 } from '../../core/pipeline/jobs.ts';
 import { layOutScratch } from '../../core/pipeline/scratch.ts';
@@ -31,6 +32,26 @@ export interface BodyOptions {
   signal?: AbortSignal;
   onProgress?: (fraction01: number) => void;
 }
+
+/** One pass over a region of a level. */
+interface Pass {
+  source: SourcePicture;
+  region: Rect;
+  destination: Destination;
+  /** Coarser level to merge with; coats go over finished paint and have none. */
+  coarse: CoarseLevel | null;
+  /** The coarser level's tensor, which flat areas take their orientation from. */
+  orientation: TensorPlanes | null;
+  /** Receives the tensor for the finer level. */
+  tensorOut: TensorPlanes | null;
+  noiseFloor: number;
+}
+
+/**
+ * Noise floor of the coats as a factor of their level's: a coat is to join what lies close together. On six
+ * photographs at 64 px it raised the share of flat pixels by .003 to .007.
+ */
+const coatFloorFactor = 1.5;
 
 /**
  * Paints bodies: coarse levels first, each merged into the next finer one. The pixels of a level depend only on
@@ -77,7 +98,10 @@ export class BodyPainter {
       };
       const source = await photo.level(level, this.pool, options.signal);
       const finest = { ...options, onProgress: progress.finest };
-      await this.#pass(plan, 0, source, region, destination, coarse, null, finest, times);
+      const orientation = coarse?.tensor ?? null;
+      const { noiseFloor } = plan;
+      const pass: Pass = { source, region, destination, coarse, orientation, tensorOut: null, noiseFloor };
+      await this.#run(plan, pass, finest, times);
     } finally {
       coarse?.letGo();
     }
@@ -137,10 +161,15 @@ export class BodyPainter {
         originX: 0,
         originY: 0,
       });
-      await this.#pass(plan, depth, source, whole, into(to), coarse, tensor, options, times);
+      const common = { region: whole, orientation: coarse?.tensor ?? null, tensorOut: tensor };
+      const levelFloor = plan.noiseFloor / 2 ** depth;
+      const first = { ...common, source, destination: into(to), coarse, noiseFloor: levelFloor };
+      await this.#run(plan, first, options, times);
       for (let coat = 0; coat < plan.coats; coat++) {
         const paint: SourcePicture = { pointer: to, widthPx, heightPx, bytesPerSample: 0, channels: 4 };
-        await this.#pass(plan, depth, paint, whole, into(spare), null, tensor, options, times, coarse);
+        const noiseFloor = levelFloor * coatFloorFactor;
+        const again = { ...common, source: paint, destination: into(spare), coarse: null, noiseFloor };
+        await this.#run(plan, again, options, times);
         [to, spare] = [spare, to];
       }
       this.heap.free(spare);
@@ -155,20 +184,8 @@ export class BodyPainter {
     }
   }
 
-  /** One pass over a region. Coats take their orientation from `orientation` without merging with it. */
-  async #pass(
-    plan: BodyPlan,
-    depth: number,
-    source: SourcePicture,
-    region: Rect,
-    destination: Destination,
-    coarse: CoarseLevel | null,
-    tensorOut: CoarseLevel['tensor'] | null,
-    options: BodyOptions,
-    times: PassTimes,
-    orientation: CoarseLevel | null = coarse,
-  ): Promise<void> {
-    const grid = cutIntoTiles(region, this.tileSize);
+  async #run(plan: BodyPlan, pass: Pass, options: BodyOptions, times: PassTimes): Promise<void> {
+    const grid = cutIntoTiles(pass.region, this.tileSize);
     const haloPx =
       plan.method === 'quadrant' || plan.method === 'bilateral'
         ? evenUp(Math.ceil(plan.radiusPx))
@@ -179,30 +196,30 @@ export class BodyPainter {
     const job: PaintJob = {
       kind: 'paint',
       grid,
-      source,
-      destination,
+      source: pass.source,
+      destination: pass.destination,
       method: plan.method === 'multi-scale' ? 'grain-wise' : plan.method,
-      coarse: coarse?.picture ?? null,
-      coarseTensor: orientation?.tensor ?? null,
-      tensorOut,
+      coarse: pass.coarse?.picture ?? null,
+      coarseTensor: pass.orientation,
+      tensorOut: pass.tensorOut,
       haloPx,
       strideElements,
       bank: tables.bank,
       mergeTable: tables.mergeTable,
       gaussianTable: tables.gaussianTable,
       radiusPx: plan.radiusPx,
-      noiseFloor: plan.noiseFloor / 2 ** depth,
+      noiseFloor: pass.noiseFloor,
       crispness: plan.crispness,
       hold: plan.hold,
     };
     const scratchBytes = layOutScratch(this.kernels, job, 0).endBytes;
-    const pass = await this.pool.run(job, {
+    const spent = await this.pool.run(job, {
       signal: options.signal,
       scratchBytes,
       onProgress: options.onProgress,
     });
-    times.grainMs += pass.grainMs;
-    times.totalMs += pass.totalMs;
+    times.grainMs += spent.grainMs;
+    times.totalMs += spent.totalMs;
   }
 }
 

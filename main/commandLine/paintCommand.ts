@@ -1,0 +1,176 @@
+import { createHash } from 'node:crypto';
+import { engineVersion } from '../../core/engineVersion.ts';
+import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
+import { planBody } from '../../core/pipeline/bodyPlan.ts';
+import { createEngine } from '../engine/paintEngine.ts';
+import { outputDepth, outputFormatFor } from '../files/outputFormat.ts';
+import { assertWritable, defaultOutputPath, refuseOverwritingOriginal } from '../files/outputPath.ts';
+import { readPhoto } from '../files/readPhoto.ts';
+import { writePicture } from '../files/writePicture.ts';
+import { chosenParameters } from './chosenParameters.ts';
+import { ProgressLine } from './progressLine.ts';
+import { readNumber, readWhole, readWords } from './readWords.ts';
+import { type Command, exitCode, UsageError } from './usage.ts';
+
+const options = {
+  preset: { type: 'string' },
+  set: { type: 'string', multiple: true },
+  out: { type: 'string' },
+  depth: { type: 'string' },
+  'print-long-edge': { type: 'string' },
+  workers: { type: 'string' },
+  json: { type: 'boolean' },
+} as const;
+
+/** Share of the work that painting is, for the progress line; reading and writing are the rest. */
+const paintingShare = 0.85;
+
+export const paintCommand: Command = {
+  name: 'paint',
+  usage: 'paint PHOTO [--preset NAME] [--set KEY=VALUE]… [--out FILE]',
+  summary: 'Paints one photo to a file.',
+  options: [
+    ['--preset NAME', 'The preset to paint with; oxgall presets lists them.'],
+    ['--set KEY=VALUE', 'Changes one parameter, as often as needed; oxgall params lists them.'],
+    ['--out FILE', 'The painted file: .png, .jpg, .tif or .webp. Beside the photo unless given.'],
+    ['--depth 8|16', "Bits a sample; the photo's own unless given."],
+    [
+      '--print-long-edge MM',
+      `Long edge of the print, for lengths in mm; ${defaultPrintLongEdgeMm} unless given.`,
+    ],
+    ['--workers N', 'Worker threads; one for each processor unless given.'],
+    ['--json', 'Prints one JSON object with everything that was done.'],
+  ],
+  run: paint,
+};
+
+async function paint(words: string[]): Promise<number> {
+  const read = readWords(words, options, { least: 1, most: 1, what: 'one photo' });
+  const photoPath = read.positionals[0];
+  const { preset, parameters } = await chosenParameters(read.values.preset, read.values.set ?? []);
+  const workers =
+    read.values.workers === undefined ? undefined : readWhole(read.values.workers, '--workers', 1, 64);
+  const printLongEdgeMm = readNumber(
+    read.values['print-long-edge'] ?? String(defaultPrintLongEdgeMm),
+    '--print-long-edge',
+    10,
+    20_000,
+  );
+  const askedDepth = readDepth(read.values.depth);
+  const named = read.values.out;
+  const out = named ?? (await defaultOutputPath(photoPath, 'png'));
+  const format = outputFormatFor(out);
+
+  const startMs = performance.now();
+  await refuseOverwritingOriginal(photoPath, out);
+  const progress = new ProgressLine();
+  // The workers start while the photo is being read.
+  const starting = createEngine({ workers });
+  starting.catch(() => undefined);
+  try {
+    const photo = await readPhoto(photoPath);
+    // Checked once there is something to paint: a bad photo must leave no trace of a trial file.
+    await assertWritable(out);
+    const decodeMs = performance.now() - startMs;
+    const engine = await starting;
+    const { widthPx, heightPx, channels, iccProfile, densityPpi, exif, remarks } = photo;
+    const depth = outputDepth(format, askedDepth ?? photo.depth);
+    const openMs = performance.now();
+    const held = await engine.open(photo);
+    const noiseMs = performance.now() - openMs;
+    const scale = { longEdgePx: Math.max(widthPx, heightPx), printLongEdgeMm };
+    const { noiseFloor } = planBody(parameters, scale, 0, held.noiseFloor);
+    const picture = await engine.paintPicture(held, parameters, {
+      depth,
+      printLongEdgeMm,
+      onProgress: (fraction01, stage) =>
+        progress.update(0.05 + paintingShare * stageEnd(stage, fraction01), stage),
+    });
+    held.close();
+    const pixelsSha256 = createHash('sha256').update(bytesOf(picture.pixels)).digest('hex');
+    const encodeStartMs = performance.now();
+    progress.update(0.05 + paintingShare, 'encode');
+    const written = await writePicture(out, {
+      widthPx,
+      heightPx,
+      channels,
+      iccProfile,
+      densityPpi,
+      exif,
+      format,
+      pixels: picture.pixels,
+    });
+    picture.release();
+    const endMs = performance.now();
+    await engine.close();
+    progress.clear();
+    report(read.values.json === true, {
+      photo: photoPath,
+      output: out,
+      width: widthPx,
+      height: heightPx,
+      depth,
+      engineVersion,
+      preset,
+      parameters,
+      printLongEdgeMm,
+      noiseFloor,
+      workers: engine.workers,
+      milliseconds: roundAll({
+        decode: decodeMs,
+        grain: noiseMs + picture.times.grainMs,
+        body: picture.times.bodyMs,
+        line: picture.times.lineMs,
+        compose: picture.times.composeMs,
+        encode: endMs - encodeStartMs,
+        total: endMs - startMs,
+      }),
+      peakMemoryBytes: process.resourceUsage().maxRSS * 1024,
+      pixelsSha256,
+      remarks: [...remarks, ...written.remarks],
+    });
+    return exitCode.done;
+  } finally {
+    progress.clear();
+    await (await starting.catch(() => null))?.close();
+  }
+}
+
+function readDepth(text: string | undefined): 8 | 16 | undefined {
+  if (text === undefined) return undefined;
+  if (text !== '8' && text !== '16') throw new UsageError(`Expected 8 or 16 for --depth, received ${text}`);
+  return text === '8' ? 8 : 16;
+}
+
+/** How far the whole painting is when a stage is at `fraction01`. */
+function stageEnd(stage: 'grain' | 'body' | 'line' | 'compose', fraction01: number): number {
+  const [from, to] = { grain: [0, 0.05], body: [0.05, 0.75], line: [0.75, 0.97], compose: [0.97, 1] }[stage];
+  return from + (to - from) * fraction01;
+}
+
+function bytesOf(pixels: Uint8Array | Uint16Array): Uint8Array {
+  return new Uint8Array(pixels.buffer, pixels.byteOffset, pixels.byteLength);
+}
+
+function roundAll<T extends Record<string, number>>(times: T): T {
+  return Object.fromEntries(Object.entries(times).map(([key, ms]) => [key, Math.round(ms * 10) / 10])) as T;
+}
+
+interface PaintReport {
+  photo: string;
+  output: string;
+  width: number;
+  height: number;
+  milliseconds: { total: number };
+  remarks: string[];
+}
+
+function report(asJson: boolean, painted: PaintReport): void {
+  if (asJson) {
+    process.stdout.write(`${JSON.stringify(painted, null, 2)}\n`);
+    return;
+  }
+  for (const remark of painted.remarks) process.stderr.write(`${remark}\n`);
+  const seconds = (painted.milliseconds.total / 1000).toFixed(1);
+  process.stdout.write(`${painted.output}  ${painted.width} × ${painted.height} px in ${seconds} s\n`);
+}
