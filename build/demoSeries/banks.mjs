@@ -13,13 +13,13 @@ export function groundHeight(x, z) {
   const inland = -(z + wander);
   if (z < farShoreZ * 0.5) {
     if (inland < 0) return Math.max(-2.6, inland * 0.13);
-    const slope = inland < 8 ? inland * 0.085 : inland < 13 ? 0.68 + (inland - 8) * 0.27 : 2.03 + (inland - 13) * 0.02;
+    const slope = inland < 8 ? inland * 0.085 : inland < 13 ? 0.68 + (inland - 8) * 0.3 : 2.18 + (inland - 13) * 0.02;
     return slope + fbm2(x * 0.9, z * 0.9, 3) * 0.16 * smoothStep(0.5, 3, inland);
   }
   const beyond = z - farShoreZ + wander * 2;
   if (beyond < 0) return Math.max(-2.6, beyond * 0.14);
   const shore = Math.min(beyond * 0.22, 1.3) + Math.min(beyond, 300) * 0.012;
-  const hill = smoothStep(150, 760, beyond) * (34 + 46 * fbm2(x * 0.0021 + 5, z * 0.0016, 4) + 26 * noise2(x * 0.0011 + 2.2, 4.1));
+  const hill = smoothStep(90, 620, beyond) * (62 + 60 * fbm2(x * 0.0021 + 5, z * 0.0016, 4) + 26 * noise2(x * 0.0011 + 2.2, 4.1));
   return shore + Math.max(0, hill) + fbm2(x * 0.07, z * 0.07, 3) * 0.5;
 }
 
@@ -34,10 +34,10 @@ function addGround(mesh, x0, x1, z0, z1, step, pick) {
   const part = new Mesh();
   addSheet(part, columns, rows, (s, t) => {
     const x = mix(x0, x1, s);
-    const z = mix(z1, z0, t);
+    const z = mix(z0, z1, t);
     return [x, groundHeight(x, z), z];
   }, material.mud, {
-    place: (s, t) => [mix(x0, x1, s), mix(z1, z0, t), 0],
+    place: (s, t) => [mix(x0, x1, s), mix(z0, z1, t), 0],
     colour: (_s, _t, p) => (pick(p) === material.mud ? mudTone : pick(p) === material.forest ? hillTone : meadowTone),
   });
   const [p, c] = [part.vertices, part.corners];
@@ -87,7 +87,7 @@ export function addPebbles(mesh, seed, centreX, centreZ, radiusM, count) {
     if (fbm2(x * 0.8 + 7, z * 0.8, 3) < -0.05 && next() < 0.8) continue;
     const y = groundHeight(x, z);
     if (y < -0.05 || y > 1.1) continue;
-    const size = 0.012 + 0.06 * next() ** 4 + 0.02 * next();
+    const size = 0.006 + 0.05 * next() ** 6 + 0.014 * next();
     const tone = 0.1 + 0.2 * next();
     const wet = y < 0.15 ? 0.55 : 1;
     const yaw = next() * 6.3;

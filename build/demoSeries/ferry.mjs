@@ -230,7 +230,7 @@ export function addRope(mesh, from, to, sag, radius, sides = 10) {
     const t = i / count;
     path.push([from[0] + (to[0] - from[0]) * t, from[1] + (to[1] - from[1]) * t - sag * 4 * t * (1 - t), from[2] + (to[2] - from[2]) * t]);
   }
-  mesh.colour = [0.36, 0.28, 0.16];
+  mesh.colour = [0.31, 0.26, 0.18];
   addTube(mesh, path, (_t, a) => radius * (1 + 0.06 * Math.sin(a * 3)), sides, material.rope);
 }
 

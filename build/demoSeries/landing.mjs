@@ -6,7 +6,7 @@ import { material } from './materials.mjs';
 import { noise2, randomStream } from './seededNoise.mjs';
 import { addBox, addTube } from './solids.mjs';
 
-const postTone = [0.17, 0.14, 0.115];
+const postTone = [0.135, 0.122, 0.108];
 
 /** A post driven into the ground, leaning a little. @returns {number[]} its top */
 export function addPost(mesh, next, x, z, top, radius = 0.13) {
@@ -33,7 +33,7 @@ export function addStage(mesh, { x, z0, z1, width = 2.2, y = 1.15, seed = 71 }) 
   for (let z = z0; z < z1; z += 0.185) {
     if (next() < 0.025) continue;
     const tone = 0.7 + 0.55 * next();
-    mesh.colour = [0.3 * tone, 0.265 * tone, 0.22 * tone];
+    mesh.colour = [0.25 * tone, 0.232 * tone, 0.205 * tone];
     const skew = (next() - 0.5) * 0.09;
     addBox(mesh, [x - width / 2 + skew, y + next() * 0.012, z], [x + width / 2 + skew * 1.4, y + 0.055 + next() * 0.012, z + 0.168], material.deck, next() * 60);
   }
@@ -62,7 +62,7 @@ export function addCoil(mesh, x, y, z, turns = 5, radius = 0.3, thick = 0.018) {
     const r = radius * (1 - (0.5 * i) / count) + 0.01 * Math.sin(a * 2.3);
     path.push([x + Math.cos(a) * r, y + thick + (i / count) * 0.06 + 0.006 * Math.sin(a * 3.1), z + Math.sin(a) * r]);
   }
-  mesh.colour = [0.4, 0.31, 0.18];
+  mesh.colour = [0.34, 0.28, 0.19];
   addTube(mesh, path, thick, 10, material.rope);
 }
 

@@ -68,13 +68,16 @@ export class Mesh {
       this.#growVertices(this.vertexCount + 1);
     if (this.place) {
       const { m, t } = this.place;
-      const [px, py, pz, qx, qy, qz] = [x, y, z, nx, ny, nz];
-      x = m[0] * px + m[1] * py + m[2] * pz + t[0];
-      y = m[3] * px + m[4] * py + m[5] * pz + t[1];
-      z = m[6] * px + m[7] * py + m[8] * pz + t[2];
-      nx = m[0] * qx + m[1] * qy + m[2] * qz;
-      ny = m[3] * qx + m[4] * qy + m[5] * qz;
-      nz = m[6] * qx + m[7] * qy + m[8] * qz;
+      const px = x;
+      const py = y;
+      const qx = nx;
+      const qy = ny;
+      x = m[0] * px + m[1] * py + m[2] * z + t[0];
+      y = m[3] * px + m[4] * py + m[5] * z + t[1];
+      z = m[6] * px + m[7] * py + m[8] * z + t[2];
+      nx = m[0] * qx + m[1] * qy + m[2] * nz;
+      ny = m[3] * qx + m[4] * qy + m[5] * nz;
+      nz = m[6] * qx + m[7] * qy + m[8] * nz;
     }
     const length = Math.sqrt(nx * nx + ny * ny + nz * nz) || 1;
     const at = this.vertexCount * floatsPerVertex;
@@ -96,6 +99,7 @@ export class Mesh {
   }
 
   #growVertices(count) {
+    if (count * floatsPerVertex <= this.vertices.length) return;
     const grown = new Float32Array(Math.max(this.vertices.length * 2, count * floatsPerVertex));
     grown.set(this.vertices);
     this.vertices = grown;
@@ -130,30 +134,38 @@ export class Mesh {
    */
   add(other, where, tint = [1, 1, 1]) {
     const place = this.place && where ? placeWithin(this.place, where) : (where ?? this.place);
-    const [held, colour, openness] = [this.place, this.colour, this.openness];
     const first = this.vertexCount;
-    const from = other.vertices;
-    this.place = place;
-    for (let i = 0, at = 0; i < other.vertexCount; i++, at += floatsPerVertex) {
-      this.colour = [from[at + 9] * tint[0], from[at + 10] * tint[1], from[at + 11] * tint[2]];
-      this.openness = from[at + 12];
-      this.vertex(
-        from[at],
-        from[at + 1],
-        from[at + 2],
-        from[at + 3],
-        from[at + 4],
-        from[at + 5],
-        from[at + 6],
-        from[at + 7],
-        from[at + 8],
-      );
+    const floats = other.vertexCount * floatsPerVertex;
+    this.#growVertices(first + other.vertexCount);
+    const to = this.vertices.subarray(first * floatsPerVertex, first * floatsPerVertex + floats);
+    to.set(other.vertices.subarray(0, floats));
+    this.vertexCount += other.vertexCount;
+    for (let at = 0; at < floats; at += floatsPerVertex) {
+      to[at + 9] *= tint[0];
+      to[at + 10] *= tint[1];
+      to[at + 11] *= tint[2];
     }
-    for (let i = 0; i < other.triangleCount; i++) {
-      const c = other.corners;
+    if (place) placeVertices(to, place);
+    const c = other.corners;
+    for (let i = 0; i < other.triangleCount; i++)
       this.triangle(first + c[i * 3], first + c[i * 3 + 1], first + c[i * 3 + 2], other.materials[i]);
-    }
-    [this.place, this.colour, this.openness] = [held, colour, openness];
+  }
+}
+
+/** Places and turns a run of vertices; the scale goes out of the normals again. */
+function placeVertices(v, { m, t }) {
+  for (let at = 0; at < v.length; at += floatsPerVertex) {
+    const [x, y, z] = [v[at], v[at + 1], v[at + 2]];
+    v[at] = m[0] * x + m[1] * y + m[2] * z + t[0];
+    v[at + 1] = m[3] * x + m[4] * y + m[5] * z + t[1];
+    v[at + 2] = m[6] * x + m[7] * y + m[8] * z + t[2];
+    const nx = m[0] * v[at + 3] + m[1] * v[at + 4] + m[2] * v[at + 5];
+    const ny = m[3] * v[at + 3] + m[4] * v[at + 4] + m[5] * v[at + 5];
+    const nz = m[6] * v[at + 3] + m[7] * v[at + 4] + m[8] * v[at + 5];
+    const length = Math.sqrt(nx * nx + ny * ny + nz * nz) || 1;
+    v[at + 3] = nx / length;
+    v[at + 4] = ny / length;
+    v[at + 5] = nz / length;
   }
 }
 

@@ -42,7 +42,7 @@ export function addGrass(mesh, { seed, x0, x1, z0, z1, count, heightM = 0.45, ey
     const y = groundHeight(x, z);
     const clump = fbm2(x * 0.9, z * 0.9, 3);
     const chance = next();
-    if (y < 0.85 + clump * 0.3 || chance < -clump * 1.2) continue;
+    if (y < 0.66 + clump * 0.3 || chance < -clump * 1.2) continue;
     const away = Math.hypot(x - eye[0], y - eye[1], z - eye[2]);
     if (away < 0.7) continue;
     const tones = clump > 0.05 ? strawGrass : greenGrass;
@@ -100,7 +100,7 @@ function addPlume(mesh, next, top, windAngle, half) {
 }
 
 /** A tree with leaves gathered in clumps about its limbs. @returns {Mesh} about 10 m tall */
-export function growTree(seed, { leaves = 2600, leafM = 0.34, tone = [0.07, 0.1, 0.03], spread = 3.6, tall = 9, trunkM = 0.28 } = {}) {
+export function growTree(seed, { leaves = 4200, leafM = 0.5, tone = [0.07, 0.1, 0.03], spread = 3.6, tall = 9, trunkM = 0.28 } = {}) {
   const next = randomStream(seed);
   const mesh = new Mesh();
   mesh.colour = [0.13, 0.105, 0.08];

@@ -134,9 +134,10 @@ export function cellValue(x, y) {
   return heights[shuffled[shuffled[Math.floor(x) & tableMask] + (Math.floor(y) & tableMask)]] * 0.5 + 0.5;
 }
 
-/** Smooth step from 0 at `low` to 1 at `high`. */
-export function smoothStep(low, high, x) {
-  const t = x <= low ? 0 : x >= high ? 1 : (x - low) / (high - low);
+/** Smooth step from 0 at `from` to 1 at `to`, whichever is the larger. */
+export function smoothStep(from, to, x) {
+  let t = (x - from) / (to - from);
+  t = t < 0 ? 0 : t > 1 ? 1 : t;
   return t * t * (3 - 2 * t);
 }
 

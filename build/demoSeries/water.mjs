@@ -18,7 +18,7 @@ function rippleSlope(settings, x, z, fp) {
   let sz = 0;
   let left = 0;
   let length = 2.1;
-  let steep = 0.045 + settings.ripple * 0.075;
+  let steep = 0.02 + settings.ripple * 0.05;
   let c = 0.94;
   let s = 0.34;
   for (let i = 0; i < 6; i++) {
@@ -84,8 +84,8 @@ export function waterColour(scene, at) {
   const grazing = Math.max(0.03, -dy);
   const left = rippleSlope(scene.water, px, pz, at.footprint / Math.sqrt(grazing));
   const jitter = (at.noise - 0.5) * 2;
-  let nx = -slope[0] + left * 0.25 * jitter * dx;
-  let nz = -slope[1] + left * 0.6 * (jitter * 0.5 + 0.2) * dz;
+  let nx = -slope[0] + left * 0.12 * jitter * dx;
+  let nz = -slope[1] + left * 0.35 * (jitter * 0.45 + 0.25) * dz;
   const damp = Math.min(1, grazing * 6 + 0.25);
   nx *= damp;
   nz *= damp;
