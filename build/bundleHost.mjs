@@ -14,9 +14,33 @@ const entries = {
   paintWorker: 'main/engine/paintWorker.ts',
   loopbackShell: 'main/shells/loopbackShell.ts',
   electronShell: 'main/shells/electronShell.ts',
-  electronPreload: 'main/shells/electronPreload.ts',
   bench: 'test/benchmarks/bench.ts',
 };
+
+/** A sandboxed preload cannot be a module: it is built on its own, as CommonJS. */
+async function buildPreload() {
+  const file = join(root, 'main/shells/electronPreload.ts');
+  if (!existsSync(file)) return;
+  await build({
+    root,
+    configFile: false,
+    logLevel: 'warn',
+    publicDir: false,
+    build: {
+      ssr: true,
+      target: 'node20',
+      outDir: join(root, 'dist/main'),
+      emptyOutDir: false,
+      minify: false,
+      rollupOptions: {
+        input: { electronPreload: file },
+        external: ['electron'],
+        output: { entryFileNames: '[name].cjs', format: 'cjs' },
+      },
+    },
+    ssr: { noExternal: true, external: ['electron'] },
+  });
+}
 
 export async function buildHost() {
   const input = Object.fromEntries(
@@ -43,6 +67,7 @@ export async function buildHost() {
     },
     ssr: { noExternal: true, external: ['sharp', 'electron'] },
   });
+  await buildPreload();
   await mkdir(join(root, 'dist/presets'), { recursive: true });
   await cp(join(root, 'presets'), join(root, 'dist/presets'), { recursive: true });
 }
