@@ -23,7 +23,7 @@ export function groundHeight(x, z) {
   return shore + Math.max(0, hill) + fbm2(x * 0.07, z * 0.07, 3) * 0.5;
 }
 
-const mudTone = [0.2, 0.165, 0.115];
+const mudTone = [0.165, 0.145, 0.115];
 const meadowTone = [0.115, 0.15, 0.045];
 const hillTone = [0.06, 0.085, 0.032];
 
@@ -34,10 +34,10 @@ function addGround(mesh, x0, x1, z0, z1, step, pick) {
   const part = new Mesh();
   addSheet(part, columns, rows, (s, t) => {
     const x = mix(x0, x1, s);
-    const z = mix(z0, z1, t);
+    const z = mix(z1, z0, t);
     return [x, groundHeight(x, z), z];
   }, material.mud, {
-    place: (s, t) => [mix(x0, x1, s), mix(z0, z1, t), 0],
+    place: (s, t) => [mix(x0, x1, s), mix(z1, z0, t), 0],
     colour: (_s, _t, p) => (pick(p) === material.mud ? mudTone : pick(p) === material.forest ? hillTone : meadowTone),
   });
   const [p, c] = [part.vertices, part.corners];

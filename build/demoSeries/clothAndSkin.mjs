@@ -4,7 +4,7 @@ import { fbm2, fbm3, mix, noise2, noise3, smoothStep } from './seededNoise.mjs';
 
 export function clothRelief(u, v, w, fp) {
   const crease = fbm3(u * 7, v * 7, w * 7, 4, fp * 7) * 0.005;
-  const thread = fp < 0.0008 ? (Math.sin(u * 3800) + Math.sin(v * 3800 + w * 900)) * 0.00006 : 0;
+  const thread = fp < 0.0003 ? (Math.sin(u * 3800) + Math.sin(v * 3800 + w * 900)) * 0.00006 : 0;
   return crease + Math.abs(noise3(u * 19, v * 13, w * 19)) * -0.0012 + thread;
 }
 
@@ -13,7 +13,7 @@ export function clothColour(s) {
   const { u, v, w, footprint: fp } = s;
   const stain = fbm3(u * 1.7, v * 1.7, w * 1.7, 5, fp * 2);
   const slub = fbm2(u * 420 + w * 90, v * 60, 2, fp * 300) + fbm2(u * 60, v * 420 + w * 90, 2, fp * 300);
-  const k = 0.94 + 0.38 * stain + 0.14 * slub;
+  const k = 0.94 + 0.38 * stain + 0.1 * slub;
   s.r *= k;
   s.g *= k * (1 - 0.05 * stain);
   s.b *= k * (1 - 0.12 * stain);

@@ -3,6 +3,7 @@
 
 import { addLettering, textWidth } from './lettering.mjs';
 import { material } from './materials.mjs';
+import { toned } from './mesh.mjs';
 import { fbm2, noise2, randomStream, smoothStep } from './seededNoise.mjs';
 import { addBox, addSheet, addTube, curveThrough } from './solids.mjs';
 
@@ -166,7 +167,7 @@ function addRamp(mesh, end, raise) {
   const held = mesh.place;
   for (let k = 0; k < 9; k++) {
     const z = -1.17 + k * 0.262;
-    mesh.colour = ferryTones.wood.map((c) => c * (0.7 + 0.4 * next()));
+    mesh.colour = toned(ferryTones.wood, 0.7 + 0.4 * next());
     const base = mesh.vertexCount;
     addBox(mesh, [0, -0.03, z], [1.75, 0.03, z + 0.25], material.deck, next() * 20);
     tilt(mesh, base, end, raise);
@@ -258,14 +259,14 @@ function addFender(mesh, next, x, side) {
   const z = side * (beamAt(x) + 0.12);
   const top = sheerAt(x) - 0.08;
   addRope(mesh, [x, top, side * (beamAt(x) + 0.02)], [x, top - 0.2, z], 0, 0.014, 6);
-  mesh.colour = [0.2, 0.15, 0.09].map((c) => c * (0.8 + 0.5 * next()));
+  mesh.colour = toned([0.2, 0.15, 0.09], 0.8 + 0.5 * next());
   addTube(mesh, curveThrough([[x, top - 0.18, z], [x, top - 0.3, z], [x, top - 0.55, z], [x, top - 0.66, z]], 4), (t) => 0.045 + 0.065 * Math.sin(Math.PI * t) ** 0.6, 14, material.rope);
 }
 
 function addCrates(mesh, next) {
   for (const [x, z, size, turnBy] of [[2.6, 0.75, 0.5, 0.1], [3.25, 0.85, 0.42, -0.2], [-3.4, 0.6, 0.55, 0.3]]) {
     for (let k = 0; k < 4; k++) {
-      mesh.colour = [0.36, 0.27, 0.16].map((c) => c * (0.7 + 0.5 * next()));
+      mesh.colour = toned([0.36, 0.27, 0.16], 0.7 + 0.5 * next());
       const y = deckY + (k * size) / 4;
       addBox(mesh, [x - size / 2 + turnBy * 0.05 * k, y + 0.008, z - size / 2], [x + size / 2, y + size / 4 - 0.008, z + size / 2], material.wood, next() * 40);
     }

@@ -6,7 +6,7 @@ import { addCoil, addOldPosts, addPost, addStage } from './landing.mjs';
 import { buildHeron } from './heron.mjs';
 import { buildBust, buildFigure, buildHand } from './keeper.mjs';
 import { material } from './materials.mjs';
-import { Mesh, placing } from './mesh.mjs';
+import { Mesh, placing, toned } from './mesh.mjs';
 import { addBox, addTube } from './solids.mjs';
 import { addGrass, addReeds, addTrees, growTree } from './plants.mjs';
 import { randomStream } from './seededNoise.mjs';
@@ -25,8 +25,34 @@ const treeKinds = () =>
     growTree(201),
     growTree(202, { spread: 4.4, tall: 8 }),
     growTree(203, { tone: [0.1, 0.11, 0.035], spread: 3 }),
-    growTree(204, { tall: 12, spread: 2.2, tone: [0.065, 0.1, 0.04] }),
+    growTree(204, { tall: 12, spread: 2.6, tone: [0.065, 0.1, 0.04] }),
+    growTree(205, { tall: 3.6, spread: 2.4, low: 0.15, leaves: 2200, leafM: 0.34, trunkM: 0.12 }),
+    growTree(206, { tall: 2.6, spread: 3, low: 0.1, leaves: 2000, leafM: 0.34, trunkM: 0.1, tone: [0.09, 0.11, 0.04] }),
   ]);
+
+/** Trees too far off to tell their leaves. */
+const farKinds = () =>
+  once('farTrees', () =>
+    [211, 212, 213].map((seed) => growTree(seed, { leaves: 150, leafM: 1.9, spread: 3.4, tall: 8, low: 0.15 })),
+  );
+
+/** Hedges along the fields and woods on the hills. */
+function hillPlaces(next) {
+  const places = [];
+  for (let line = 0; line < 26; line++) {
+    const x = -420 + 840 * next();
+    const z = farShoreZ + 70 + 420 * next() ** 1.4;
+    const across = next() < 0.6;
+    const count = 8 + Math.floor(next() * 14);
+    for (let i = 0; i < count; i++)
+      places.push([x + (across ? i * 5.5 : i * 2) + next() * 3, z + (across ? i * 1.2 : i * 6) + next() * 3, 0.45 + 0.6 * next()]);
+  }
+  for (let wood = 0; wood < 12; wood++) {
+    const [x, z] = [-460 + 920 * next(), farShoreZ + 170 + 330 * next()];
+    for (let i = 0; i < 26; i++) places.push([x + (next() - 0.5) * 90, z + (next() - 0.5) * 40, 0.9 + 0.6 * next()]);
+  }
+  return places;
+}
 
 /** Far bank with its village, trees and hills. */
 function addFarSide(mesh) {
@@ -44,6 +70,7 @@ function addFarSide(mesh) {
       places.push([x, z, 0.75 + 0.5 * next()]);
     }
     addTrees(part, places, 302, treeKinds());
+    addTrees(part, hillPlaces(next), 303, farKinds());
     return part;
   });
   mesh.add(far);
@@ -67,12 +94,13 @@ export function landingScene({ eye, pixelAngle }) {
   mesh.place = placing([6.2, 0, 5.6], 0.32);
   addFerry(mesh);
   mesh.place = null;
+  addKeeper(mesh, placing([0.95, 1.21, 2.4], 2.5));
   addRope(mesh, [1.8, 1.5, 4.6], [1.3, 0.9, 6.9], 0.15, 0.02);
   addOldPosts(mesh, [[-5, 5, 1.5], [-6.3, 7.2, 1.1], [-4, 8.8, 1.7], [-7.8, 10, 0.8], [11.5, 1.5, 1.3], [13.4, 2.4, 1.6]]);
   addPebbles(mesh, 303, -3, -4, 7, 3000);
-  addGrass(mesh, { seed: 304, x0: -16, x1: 14, z0: -14, z1: -3, count: 26000, eye, pixelAngle });
-  addReeds(mesh, { seed: 305, centre: [-11, -0.5], radius: [3.4, 2.2], count: 750, eye, pixelAngle });
-  addReeds(mesh, { seed: 306, centre: [14, -2.5], radius: [4, 2], count: 650, eye, pixelAngle });
+  addGrass(mesh, { seed: 304, x0: -16, x1: 14, z0: -14, z1: -3, count: 42000, eye, pixelAngle });
+  addReeds(mesh, { seed: 305, centre: [-8.4, 1.2], radius: [2.2, 1.4], count: 520, eye, pixelAngle });
+  addReeds(mesh, { seed: 306, centre: [11.5, -0.5], radius: [2.6, 1.2], count: 520, eye, pixelAngle });
   return { mesh, water: { ripple: 0.45, body: [0.045, 0.05, 0.03] }, ...bank, centre: [2, 1, 2], reachM: 15, penumbra: 2.2 };
 }
 
@@ -116,7 +144,7 @@ export function handsScene({ eye, pixelAngle }) {
   const next = randomStream(331);
   mesh.colour = [0.25, 0.22, 0.185];
   for (let i = 0; i < 4; i++) {
-    mesh.colour = [0.25, 0.222, 0.185].map((c) => c * (0.8 + 0.4 * next()));
+    mesh.colour = toned([0.25, 0.222, 0.185], 0.8 + 0.4 * next());
     addBox(mesh, [-1.4, 1.2 + next() * 0.004, 3.05 + i * 0.152], [1.4, 1.26 + next() * 0.006, 3.197 + i * 0.152], material.wood, 11 + i * 7);
   }
   mesh.colour = [0.18, 0.15, 0.12];
@@ -136,10 +164,10 @@ export function handsScene({ eye, pixelAngle }) {
     mesh.colour = [0.4, 0.33, 0.23];
     addTube(mesh, path, (_t, a) => grip * (1 + 0.05 * Math.sin(a * 3)), 20, material.rope);
   }
-  const left = buildHand(0.0014, grip, false);
-  const right = buildHand(0.0014, grip, true);
-  mesh.add(left, placing([-0.15, 1.379, 3.162], 0.12, 1, -0.35));
-  mesh.add(right, placing([-0.4, 1.387, 3.16], -0.2, 1, -0.3));
+  const left = buildHand(0.0014, grip, true);
+  const right = buildHand(0.0014, grip, false);
+  mesh.add(left, placing([-0.17, 1.379, 3.162], Math.PI + 0.14, 1, -0.42));
+  mesh.add(right, placing([-0.36, 1.387, 3.16], Math.PI - 0.2, 1, -0.36));
   addCoil(mesh, 0.55, 1.262, 3.32, 4, 0.17, grip);
   return { mesh, water: { ripple: 0.5, body: [0.045, 0.05, 0.03] }, ...bank, centre: [-0.1, 1.35, 3.2], reachM: 0.85, penumbra: 6, overheadSpreadM: 0.1, hollowM: 0.06 };
 }

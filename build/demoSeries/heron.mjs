@@ -1,7 +1,7 @@
 // A grey heron, standing. Its own axes in metres: x ahead (the way it looks), y up, feet at y = 0.
 
 import { material } from './materials.mjs';
-import { Mesh } from './mesh.mjs';
+import { Mesh, toned } from './mesh.mjs';
 import { fbm3, noise2, randomStream, smoothStep } from './seededNoise.mjs';
 import { addRibbon, addTube, addTurned, curveThrough } from './solids.mjs';
 import { blend, egg, meshOfSurface, rod } from './roundedShapes.mjs';
@@ -53,7 +53,7 @@ function addWing(mesh, next, side, pixelM) {
       const long = 0.075 + 0.016 * row;
       const path = [0, 0.35, 0.7, 1].map((s) => [start[0] - long * 0.8 * s, start[1] - long * 0.62 * s, side * (out - 0.022 * s * s + 0.005 * Math.sin(s * 3))]);
       const quill = row > 5 && t > 0.5;
-      const tone = quill ? [0.045, 0.05, 0.06] : [0.27, 0.31, 0.36].map((c) => c * (0.85 + 0.3 * next() - 0.02 * row));
+      const tone = quill ? [0.045, 0.05, 0.06] : toned([0.27, 0.31, 0.36], 0.85 + 0.3 * next() - 0.02 * row);
       addRibbon(mesh, path, [0.58, -0.78, side * 0.25], (s) => (0.019 + 0.001 * row) * Math.sqrt(Math.max(0, Math.sin(Math.min(1, s * 0.8 + 0.2) * Math.PI))) + 0.001, material.feather, {
         seed: next() * 20,
         tint: (s) => [tone.map((c) => c * (1 + 0.25 * smoothStep(0.6, 1, s))), 0.75 + 0.25 * s],

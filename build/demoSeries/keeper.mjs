@@ -13,7 +13,8 @@ const coatTone = [0.055, 0.075, 0.085];
 /** Folds of heavy cloth, metres. */
 function folds(x, y, z) {
   const pull = Math.sin((y * 22 + Math.abs(x) * 26 + noise3(x * 6, y * 5, z * 6) * 3.2)) * 0.5 + 0.5;
-  return 0.012 * pull ** 2 * (0.4 + 0.6 * noise3(x * 3.1, y * 3.7, z * 3)) + 0.012 * fbm3(x * 7, y * 4, z * 7, 3);
+  const drag = Math.max(0, 1 - Math.abs(noise3(x * 5 + y * 4, y * 3.2 - x * 5, z * 4) * 3.4));
+  return -0.005 * drag + 0.012 * pull ** 2 * (0.4 + 0.6 * noise3(x * 3.1, y * 3.7, z * 3)) + 0.012 * fbm3(x * 7, y * 4, z * 7, 3);
 }
 
 /** Shoulders and chest below the head, whose middle is the origin. */
@@ -30,8 +31,8 @@ function addCollar(mesh) {
   for (const side of [-1, 1])
     addSheet(mesh, 40, 14, (s, t) => {
       const a = side * (0.42 + s * 2.75);
-      const r = 0.088 + 0.03 * t + 0.008 * noise2(s * 6, side);
-      const y = -0.2 + 0.055 * (1 - s * 0.2) * Math.sin(Math.min(1, t * 1.3) * Math.PI * 0.75) - 0.085 * t * t - 0.075 * (1 - s) ** 3;
+      const r = 0.1 + 0.045 * t + 0.008 * noise2(s * 6, side);
+      const y = -0.19 + 0.06 * (1 - s * 0.2) * Math.sin(Math.min(1, t * 1.3) * Math.PI * 0.75) - 0.085 * t * t - 0.075 * (1 - s) ** 3;
       return [Math.sin(a) * r * 1.05, y, Math.cos(a) * r * 0.9 - 0.035 + 0.035 * (1 - s) ** 2];
     }, material.cloth, { place: (s, t) => [s * 0.3, t * 0.1, side] });
 }

@@ -9,33 +9,60 @@ import { ball, blend, carve, egg, meshOfSurface, rod } from './roundedShapes.mjs
 
 const cm = 0.01;
 
+/** Lines and hollows of the face as seen from the front: from, to, width, depth (cm). */
+const creases = [
+  [[-0.1, -6.08], [1.3, -6.12], 0.13, 0.3],
+  [[1.3, -6.12], [2.5, -5.78], 0.13, 0.24],
+  [[1.75, -3], [2.75, -4.5], 0.34, 0.16],
+  [[2.75, -4.5], [3.1, -6.2], 0.36, 0.12],
+  [[0, -4.1], [0, -4.9], 0.2, 0.1],
+  [[0, -7.75], [1.3, -7.55], 0.5, 0.2],
+  [[1.7, -0.35], [3.2, -0.75], 0.2, 0.09],
+  [[3.2, -0.75], [4.6, -0.45], 0.2, 0.07],
+  [[1.6, 1.8], [3.2, 2.2], 0.16, 0.06],
+  [[3.2, 2.2], [4.8, 1.6], 0.16, 0.05],
+  [[4.9, 0.9], [6, 1.3], 0.09, 0.06],
+  [[4.9, 0.6], [6.1, 0.4], 0.09, 0.06],
+  [[4.8, 0.3], [5.8, -0.4], 0.09, 0.05],
+  [[0.5, 3.3], [0.42, 2.2], 0.14, 0.08],
+  [[0, 4.9], [3.6, 5], 0.12, 0.05],
+  [[0, 5.7], [3.9, 5.9], 0.12, 0.05],
+];
+
+function creaseDepth(x, y, z) {
+  if (z < 2.5) return 0;
+  let depth = 0;
+  for (const [a, b, width, deep] of creases) {
+    const bx = b[0] - a[0];
+    const by = b[1] - a[1];
+    let t = ((x - a[0]) * bx + (y - a[1]) * by) / (bx * bx + by * by);
+    t = t < 0 ? 0 : t > 1 ? 1 : t;
+    const away = ((x - a[0] - bx * t) ** 2 + (y - a[1] - by * t) ** 2) / (width * width);
+    if (away < 6) depth += deep * Math.exp(-away);
+  }
+  return depth;
+}
+
 /** Distance to the skin, in centimetres; the face is the same on both sides but for a slight leaning. */
 function faceDistance(px, y, z) {
-  const lean = px * 0.02;
   const x = Math.abs(px + 0.08 * noise2(y * 0.2, z * 0.2));
-  let d = egg(x, y, z, 0, 3.2, -1.2, 7.5, 9.4, 9.4);
-  d = blend(d, egg(x, y, z, 0, -4.2, 1.9, 6, 7.8, 6.4), 3);
-  d = blend(d, egg(x, y, z, 0, -9.9 + lean, 5.5, 2.5, 2, 2.1), 2.6);
-  d = blend(d, rod(x, y, z, [5.6, -5.5, 0.2], [2, -9.8, 4.6], 1.5, 1.3), 2.4);
-  d = blend(d, egg(x, y, z, 4.3, -1.9, 5.6, 2.3, 1.9, 2), 2.2);
-  d = blend(d, rod(x, y, z, [0.9, 2.9, 7.6], [4.9, 3, 5.4], 0.95, 0.9), 1.5);
-  d = carve(d, egg(x, y, z, 3.15, 0.95, 8.6, 2.05, 1.35, 2), 1.3);
-  d = blend(d, rod(x, y, z, [0, 2.3, 7.7], [0, -2.3, 10], 0.62, 0.85), 1.25);
-  d = blend(d, ball(x, y, z, 0, -2.6, 9.7, 1.12), 0.7);
-  d = blend(d, egg(x, y, z, 1.2, -2.85, 8.9, 0.75, 0.72, 1), 0.55);
-  d = carve(d, egg(x, y, z, 0.62, -3.5, 9.4, 0.34, 0.3, 0.55), 0.3);
-  d = blend(d, egg(x, y, z, 0, -5.6, 7.1, 2.9, 1.9, 1.8), 1.6);
-  d = blend(d, rod(x, y, z, [0, -5.3, 8.75], [2.15, -5.95, 7.5], 0.5, 0.2), 0.5);
-  d = blend(d, rod(x, y, z, [0, -6.75, 8.55], [1.9, -6.2, 7.55], 0.62, 0.25), 0.55);
-  d = carve(d, rod(x, y, z, [0, -6.02, 9.2], [2.35, -6.08, 7.75], 0.16, 0.1), 0.25);
-  d = carve(d, rod(x, y, z, [0, -3.9, 9], [0, -4.8, 9.2], 0.2, 0.25), 0.4);
-  d = carve(d, rod(x, y, z, [1.75, -3.1, 8.75], [2.95, -6, 7.6], 0.14, 0.2), 0.9);
-  d = carve(d, rod(x, y, z, [0, -7.95, 8.1], [1.2, -7.8, 7.9], 0.3, 0.2), 0.9);
-  d = carve(d, rod(x, y, z, [1.9, -0.55, 7.9], [4.2, -0.75, 6.6], 0.1, 0.12), 0.8);
-  d = carve(d, rod(x, y, z, [0.35, 3.5, 8.75], [0.3, 2.5, 8.8], 0.07, 0.07), 0.5);
+  let d = egg(x, y, z, 0, 3.2, -1.2, 7.2, 9.4, 9.4);
+  d = blend(d, egg(x, y, z, 0, -4, 2, 5.35, 7.6, 6.2), 3);
+  d = blend(d, egg(x, y, z, 0, -9.6, 5.6, 2.1, 1.9, 2), 2.6);
+  d = blend(d, rod(x, y, z, [5.3, -5, 0], [1.6, -9.6, 4.8], 1.2, 1.1), 2.4);
+  d = blend(d, egg(x, y, z, 4, -1.9, 5.5, 2.2, 1.8, 2), 2.2);
+  d = blend(d, rod(x, y, z, [0.9, 2.75, 7.4], [4.7, 2.8, 5.3], 0.85, 0.8), 1.6);
+  d = carve(d, egg(x, y, z, 3.15, 0.95, 8.6, 2.05, 1.3, 2), 1.3);
+  d = blend(d, rod(x, y, z, [0, 2.3, 7.6], [0, -2.3, 9.8], 0.55, 0.72), 1.25);
+  d = blend(d, ball(x, y, z, 0, -2.55, 9.55, 1), 0.7);
+  d = blend(d, egg(x, y, z, 1.08, -2.8, 8.8, 0.68, 0.66, 1), 0.55);
+  d = carve(d, egg(x, y, z, 0.58, -3.4, 9.3, 0.3, 0.26, 0.5), 0.3);
+  d = blend(d, egg(x, y, z, 0, -5.6, 7, 2.8, 1.9, 1.7), 1.6);
+  d = blend(d, rod(x, y, z, [0.25, -5.5, 8.6], [2.25, -5.72, 7.4], 0.52, 0.2), 0.5);
+  d = blend(d, rod(x, y, z, [0, -6.7, 8.45], [1.9, -6.1, 7.5], 0.66, 0.25), 0.55);
   d = blend(d, lids(x, y, z), 0.28);
-  d = blend(d, rod(x, y, z, [0, -8, -2.6], [0.2, -20, -3.8], 5, 5.6), 2.6);
-  d = carve(d, rod(x, y, z, [1.4, -12, 2.6], [2.6, -19, 2], 0.15, 0.4), 1.4);
+  d = blend(d, rod(x, y, z, [0, -8, -2.6], [0.2, -20, -3.8], 4.6, 5.2), 2.6);
+  d += creaseDepth(x, y, z) + 0.05 * noise3(px * 0.9, y * 0.9, z * 0.9);
   return blend(d, ear(x, y, z), 0.5);
 }
 
@@ -43,10 +70,10 @@ function faceDistance(px, y, z) {
 function lids(x, y, z) {
   const px = x - 3.15;
   const py = y - 0.95;
-  const shell = Math.abs(Math.sqrt(px * px + py * py + (z - 6.55) ** 2) - 1.36) - 0.16;
-  const bow = 1 - (px / 1.45) ** 2;
-  const top = 0.1 + 0.4 * Math.max(-0.3, bow) + 0.04 * px;
-  const bottom = -0.12 - 0.34 * Math.max(-0.3, bow) + 0.04 * px;
+  const shell = Math.abs(Math.sqrt(px * px + py * py + (z - 6.55) ** 2) - 1.4) - 0.2;
+  const bow = 1 - (px / 1.5) ** 2;
+  const top = 0.06 + 0.27 * Math.max(-0.3, bow) + 0.05 * px;
+  const bottom = -0.16 - 0.27 * Math.max(-0.3, bow) + 0.05 * px;
   const slit = Math.max(py - top, bottom - py);
   return Math.max(Math.max(shell, -slit), -(z - 5.9));
 }
@@ -56,19 +83,19 @@ function ear(x, y, z) {
   return carve(shell, egg(x, y, z, 8.2, 0.1, -0.9, 0.7, 2, 1.1), 0.5);
 }
 
-const skinTone = [0.44, 0.245, 0.165];
+const skinTone = [0.43, 0.265, 0.19];
 
 /** Colour of the skin by place: lips, flushed cheeks and nose, darker about the eyes. */
 function dressSkin(px, py, pz, mesh) {
   const [x, y, z] = [Math.abs(px) / cm, py / cm, pz / cm];
   const lip = smoothStep(0.75, 0.25, Math.min(
-    rod(x, y, z, [0, -5.45, 8.9], [2.1, -5.98, 7.6], 0.2, 0.02),
+    rod(x, y, z, [0, -5.55, 8.9], [2.2, -5.8, 7.5], 0.22, 0.03),
     rod(x, y, z, [0, -6.65, 8.8], [1.9, -6.2, 7.6], 0.35, 0.05),
   ) * 1.6);
   const flush = smoothStep(3.4, 0.6, ball(x, y, z, 4.2, -2.2, 6.8, 0.8)) * 0.65 + smoothStep(1.7, 0.2, ball(x, y, z, 0, -2.7, 10, 0.7)) * 0.6;
   const hollow = smoothStep(1.5, 0.1, egg(x, y, z, 3.15, 0.6, 7.4, 1.5, 1, 1)) * 0.75;
   const rim = smoothStep(0.32, 0.05, Math.abs(ball(x, y, z, 3.15, 0.95, 6.55, 1.4))) * smoothStep(1, 0.4, Math.abs(y - 0.9)) * (z > 6.9 ? 1 : 0);
-  const crease = smoothStep(0.4, 0.1, rod(x, y, z, [0, -6.02, 8.9], [2.4, -6.1, 7.7], 0.02, 0.02));
+  const crease = smoothStep(0.34, 0.06, rod(x, y, z, [0, -6.08, 9], [2.4, -5.85, 7.6], 0.02, 0.02));
   const mottle = fbm3(x * 0.7, y * 0.7, z * 0.7, 4);
   const weather = 1 + 0.12 * mottle;
   let r = skinTone[0] * weather;
@@ -110,21 +137,21 @@ function addEyes(mesh) {
 /** Fine hairs set along the brow and the lids. */
 function addBrows(mesh, next, across) {
   for (const side of [-1, 1]) {
-    for (let i = 0; i < 330; i++) {
+    for (let i = 0; i < 420; i++) {
       const t = next();
       const x = 1.1 + 3.9 * t;
-      const y = 2.75 + 0.75 * Math.sin(Math.min(1, t * 1.25) * Math.PI * 0.62) - 0.9 * Math.max(0, t - 0.6) + (next() - 0.5) * (0.75 - 0.4 * t);
+      const y = 2.45 + 0.62 * Math.sin(Math.min(1, t * 1.25) * Math.PI * 0.62) - 0.9 * Math.max(0, t - 0.6) + (next() - 0.5) * (0.85 - 0.45 * t);
       const z = frontOf(x, y) + 0.02;
       const sweep = [0.55 + 0.3 * next(), 0.35 - 0.7 * t + 0.3 * next(), 0.12];
       const length = 0.55 + 0.4 * next();
-      const grey = next() < 0.35 ? 0.22 : 0.06;
+      const grey = next() < 0.45 ? 0.3 : 0.11;
       mesh.colour = [grey * 1.1, grey * 0.95, grey * 0.8];
       const path = [0, 0.5, 1].map((s) => [side * (x + sweep[0] * length * s) * cm, (y + sweep[1] * length * s - 0.1 * s * s) * cm, (z + 0.12 * s - 0.12 * s * s * (1 + t)) * cm]);
       addRibbon(mesh, path, [0.2 * side, 0.95, 0.2], (s) => Math.max(across * 0.4, 0.00022) * (1 - s * 0.7), material.hair, { seed: next() * 9 });
     }
     for (let i = 0; i < 60; i++) {
       const px = -1.25 + (2.5 * i) / 59;
-      const y = 0.95 + 0.16 + 0.4 * (1 - (px / 1.45) ** 2);
+      const y = 0.95 + 0.1 + 0.3 * (1 - (px / 1.5) ** 2);
       const z = 6.55 + Math.sqrt(Math.max(0.05, 1.5 * 1.5 - px * px - 0.2));
       mesh.colour = [0.02, 0.016, 0.013];
       const path = [0, 0.5, 1].map((s) => [side * (3.15 + px * (1 + 0.25 * s)) * cm, (y + 0.1 * s + 0.2 * s * s) * cm, (z + 0.42 * s) * cm]);
@@ -146,14 +173,14 @@ function frontOf(x, y) {
 
 /** Grey-brown hair drawn back under the hat, loose strands about the ears and nape. */
 function addHair(mesh, next, across) {
-  for (let i = 0; i < 5200; i++) {
+  for (let i = 0; i < 7600; i++) {
     const side = next() < 0.5 ? -1 : 1;
     const t = next();
-    const angle = 0.62 + t * 2.3;
-    const start = [side * 7.4 * Math.sin(angle) * (1 + 0.03 * next()), 4.6 - 1.4 * t + next() * 1.2, 8.2 * Math.cos(angle) - 0.6];
+    const angle = 0.72 + t * 2.2;
+    const start = [side * 7.75 * Math.sin(angle) * (1 + 0.03 * next()), 4.6 - 1.4 * t + next() * 1.2, 8.7 * Math.cos(angle) - 0.6];
     const loose = next() < 0.12 ? 1 : 0;
     const drop = 7 + 5 * t + next() * 4 + loose * 3;
-    const back = [side * (7.7 - 1.4 * t), start[1] - drop * 0.45, start[2] - 2.2 - 0.5 * t];
+    const back = [side * (8.35 - 1.5 * t + 0.3 * next()), start[1] - drop * 0.45, start[2] - 2.2 - 0.5 * t];
     const end = [side * (5.6 - 2 * t + next() * 1.2 + loose * 2.4 * next()), start[1] - drop, -5.4 - next() * 3.4 + loose * 3.5 * next()];
     const wave = noise2(i * 0.37, 2) * 0.5;
     const path = curveThrough([start, back, [(back[0] + end[0]) / 2 + side * (0.5 + wave), (back[1] + end[1]) / 2, (back[2] + end[2]) / 2 + wave], end], 3);

@@ -31,7 +31,7 @@ export const lights = {
     air: { density: 0.0009 },
   },
   portrait: {
-    sky: { ...fairSky, sun: sunAt(-152, 30), sunColour: [3, 2.55, 1.95], cover: 0.62, seed: 8, zenith: [0.3, 0.45, 0.75] },
+    sky: { ...fairSky, sun: sunAt(-152, 30), sunColour: [2.9, 2.6, 2.15], cover: 0.62, seed: 8, zenith: [0.3, 0.45, 0.75] },
     air: { density: 0.001 },
   },
   mist: {

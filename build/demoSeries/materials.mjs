@@ -183,12 +183,12 @@ function mudColour(s) {
   const fp = s.footprint;
   const broad = fbm2(s.px * 0.35, s.pz * 0.35, 4, fp * 0.35);
   const fine = fbm2(s.px * 8, s.pz * 12, 4, fp * 10);
-  const wet = smoothStep(0.75, 0.12, s.py + broad * 0.45 + fine * 0.1);
+  const wet = smoothStep(0.85, 0.2, s.py + broad * 0.5 + fine * 0.12);
   const grit = smoothStep(0.25, 0.6, noise2(s.px * 44, s.pz * 44)) * smoothStep(0.03, 0.006, fp);
-  shadeBy(s, (0.95 + 0.55 * broad + 0.5 * fine) * mix(1, 0.48, wet));
+  shadeBy(s, (0.8 + 0.5 * broad + 0.6 * fine) * mix(1, 0.4, wet));
   blendTo(s, 0.25, 0.22, 0.17, grit * 0.5);
   blendTo(s, 0.07, 0.085, 0.025, smoothStep(0.12, 0.45, fbm2(s.px * 0.9 + 50, s.pz * 1.4, 5, fp)) * 0.65 * (1 - wet * 0.5));
-  s.gloss = 0.035 + wet * 0.05 * smoothStep(-0.3, 0.25, -fine);
+  s.gloss = 0.03 + wet * 0.1 * smoothStep(-0.3, 0.25, -fine);
   s.sharpness = mix(8, 90, wet);
 }
 

@@ -50,6 +50,9 @@ export function placeWithin(outer, inner) {
   return { m, t: placePoint(outer, inner.t) };
 }
 
+/** A colour lighter or darker by a factor. @returns {Triple} */
+export const toned = ([r, g, b], factor) => [r * factor, g * factor, b * factor];
+
 export class Mesh {
   vertexCount = 0;
   triangleCount = 0;

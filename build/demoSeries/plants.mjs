@@ -2,7 +2,7 @@
 
 import { groundHeight } from './banks.mjs';
 import { material } from './materials.mjs';
-import { Mesh, placing } from './mesh.mjs';
+import { Mesh, placing, toned } from './mesh.mjs';
 import { fbm2, noise2, randomStream, smoothStep } from './seededNoise.mjs';
 import { addRibbon, addTube, curveThrough } from './solids.mjs';
 
@@ -84,7 +84,7 @@ function addReed(mesh, next, foot, tall, tone, half) {
     const t = 0.25 + 0.6 * next();
     const out = lean * tall * t ** 2.2;
     const at = [foot[0] + Math.cos(windAngle) * out, foot[1] + tall * t, foot[2] + Math.sin(windAngle) * out];
-    const leafTone = tone.map((c, i) => c * (0.75 + 0.5 * next()) * (i === 1 ? 1.08 : 1));
+    const leafTone = toned(tone, 0.75 + 0.5 * next());
     addBlade(mesh, next, at, tall * (0.22 + 0.22 * next()), 0.7 + next() * 0.9, windAngle + (next() - 0.5) * 2.6, half * (1.5 + next() * 1.4), leafTone, 4);
   }
   if (next() < 0.55) addPlume(mesh, next, [foot[0] + Math.cos(windAngle) * lean * tall, foot[1] + tall * (1 - 0.3 * lean), foot[2] + Math.sin(windAngle) * lean * tall], windAngle, half);
@@ -100,20 +100,20 @@ function addPlume(mesh, next, top, windAngle, half) {
 }
 
 /** A tree with leaves gathered in clumps about its limbs. @returns {Mesh} about 10 m tall */
-export function growTree(seed, { leaves = 4200, leafM = 0.5, tone = [0.07, 0.1, 0.03], spread = 3.6, tall = 9, trunkM = 0.28 } = {}) {
+export function growTree(seed, { leaves = 4200, leafM = 0.5, tone = [0.07, 0.1, 0.03], spread = 3.6, tall = 9, trunkM = 0.28, low = 0.28 } = {}) {
   const next = randomStream(seed);
   const mesh = new Mesh();
   mesh.colour = [0.13, 0.105, 0.08];
   const limbs = [];
   const trunkTop = [(next() - 0.5) * 0.8, tall * 0.42, (next() - 0.5) * 0.8];
   addTube(mesh, curveThrough([[0, -0.4, 0], [0.1, tall * 0.2, 0.05], trunkTop], 4), (t) => trunkM * (1.25 - 0.75 * t), 8, material.bark);
-  const count = 8 + Math.floor(next() * 5);
+  const count = 11 + Math.floor(next() * 6);
   for (let i = 0; i < count; i++) {
     const angle = (i / count) * 6.28 + next() * 0.8;
-    const rise = tall * (0.45 + 0.5 * next());
-    const out = spread * (1 - ((rise / tall - 0.62) / 0.5) ** 2) * (0.35 + 0.6 * next());
+    const rise = tall * (low + (0.95 - low) * next());
+    const out = spread * (1 - ((rise / tall - 0.55) / 0.62) ** 2) * (0.35 + 0.6 * next());
     const tip = [trunkTop[0] + Math.cos(angle) * out, rise, trunkTop[2] + Math.sin(angle) * out];
-    addTube(mesh, curveThrough([[trunkTop[0] * 0.7, trunkTop[1] * (0.6 + 0.4 * next()), trunkTop[2] * 0.7], [tip[0] * 0.5, (trunkTop[1] + rise) * 0.52, tip[2] * 0.5], tip], 3), (t) => trunkM * 0.42 * (1.05 - t) + 0.015, 5, material.bark);
+    if (i < 5) addTube(mesh, curveThrough([[trunkTop[0] * 0.7, trunkTop[1] * (0.6 + 0.4 * next()), trunkTop[2] * 0.7], [tip[0] * 0.5, (trunkTop[1] + rise) * 0.52, tip[2] * 0.5], tip], 3), (t) => trunkM * 0.42 * (1.05 - t) + 0.015, 5, material.bark);
     limbs.push({ tip, r: spread * (0.3 + 0.25 * next()) });
   }
   for (let i = 0; i < leaves; i++) addLeaf(mesh, next, limbs[Math.floor(next() * limbs.length)], leafM, tone, tall);

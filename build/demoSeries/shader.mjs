@@ -265,8 +265,8 @@ export class Shader {
     const front = toSun > 0 ? toSun : 0;
     const back = flatToSun < 0 ? -flatToSun * s.through : 0;
     const soft = s.scatter;
-    const r = soft ? softened(toSun, 0.34) : front;
-    const g = soft ? softened(toSun, 0.14) : front;
+    const r = soft ? softened(toSun, 0.25) : front;
+    const g = soft ? softened(toSun, 0.12) : front;
     const b = soft ? softened(toSun, 0.08) : front;
     // light passed on by the surroundings keeps hollows from going grey: a little of the own colour
     const bounce = 1 - skyOpen;

@@ -84,8 +84,8 @@ export function waterColour(scene, at) {
   const grazing = Math.max(0.03, -dy);
   const left = rippleSlope(scene.water, px, pz, at.footprint / Math.sqrt(grazing));
   const jitter = (at.noise - 0.5) * 2;
-  let nx = -slope[0] + left * 0.12 * jitter * dx;
-  let nz = -slope[1] + left * 0.35 * (jitter * 0.45 + 0.25) * dz;
+  let nx = -slope[0] + left * 0.06 * jitter * dx;
+  let nz = -slope[1] + left * (0.12 + 0.08 * jitter) * dz;
   const damp = Math.min(1, grazing * 6 + 0.25);
   nx *= damp;
   nz *= damp;
@@ -100,7 +100,7 @@ export function waterColour(scene, at) {
   let ry = dy + 2 * facing * ny;
   const rz = dz + 2 * facing * nz;
   if (ry < 0.012) ry = 0.012 + (0.012 - ry) * 0.3;
-  scene.reflection.look(at, rx, ry, rz, mirrored);
+  lookSpread(scene.reflection, at, rx, ry, rz, Math.min(0.12, left * 0.7 * damp));
   const depth = scene.bedHeight ? -scene.bedHeight(px, pz) : 5;
   const clear = depth < 2 ? Math.exp(-Math.max(0, depth) * 4.5) : 0;
   const { body, } = scene.water;
@@ -117,6 +117,22 @@ export function waterColour(scene, at) {
     out[c] = under * (1 - fresnel) + mirrored[c] * fresnel + glint * scene.sky.settings.sunColour[c];
   }
 }
+
+/** Ripples too fine to draw tilt the ray both ways: three looks stand for them. */
+function lookSpread(reflection, at, rx, ry, rz, spread) {
+  reflection.look(at, rx, ry, rz, mirrored);
+  if (spread < 0.002) return;
+  for (const side of spreads) {
+    const lifted = Math.max(0.012, ry + side * spread * (0.75 + 0.5 * at.noise));
+    const k = 1 / Math.sqrt(rx * rx + lifted * lifted + rz * rz);
+    reflection.look(at, rx * k, lifted * k, rz * k, aside);
+    for (let c = 0; c < 3; c++) mirrored[c] += aside[c];
+  }
+  for (let c = 0; c < 3; c++) mirrored[c] /= 1 + spreads.length;
+}
+
+const spreads = [-0.8, 0.9, 1.9];
+const aside = [0, 0, 0];
 
 function sunGlint(scene, at, nx, ny, nz, left, facing) {
   const sun = scene.sky.settings.sun;
