@@ -197,6 +197,111 @@ export interface Kernels {
     dstStride: number,
   ): void;
   clearNumbers(numbers: number, count: number): void;
+  lumaFromBody(
+    body: number,
+    windowX: number,
+    windowY: number,
+    windowWidth: number,
+    pictureWidth: number,
+    pictureHeight: number,
+    shift: number,
+    x0: number,
+    y0: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  lumaFromQuads(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  lumaBlockTensor(
+    src: number,
+    srcStride: number,
+    blocksX: number,
+    blocksY: number,
+    e: number,
+    f: number,
+    g: number,
+    dstStride: number,
+  ): void;
+  grainVectors(
+    e: number,
+    f: number,
+    g: number,
+    stride: number,
+    blocksX: number,
+    blocksY: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  dogReachPx(sigmaPx: number): number;
+  dogTableBytes(sigmaPx: number): number;
+  dogTable(sigmaPx: number, p: number, table: number): void;
+  dogAcross(
+    src: number,
+    srcStride: number,
+    blocksX: number,
+    blocksY: number,
+    vectors: number,
+    vectorsStride: number,
+    table: number,
+    reach: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  streamlineSteps(sigmaPx: number, stepPx: number): number;
+  streamlineTable(sigmaPx: number, stepPx: number, steps: number, table: number): void;
+  cellMinima(
+    src: number,
+    srcStride: number,
+    width: number,
+    height: number,
+    cells: number,
+    cellsX: number,
+  ): void;
+  streamlines(
+    src: number,
+    srcStride: number,
+    areaWidth: number,
+    areaHeight: number,
+    margin: number,
+    vectors: number,
+    vectorsStride: number,
+    cells: number,
+    cellsX: number,
+    cellsY: number,
+    cellReach: number,
+    threshold: number,
+    blank: number,
+    stepPx: number,
+    steps: number,
+    table: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  inkCoverage(
+    src: number,
+    srcStride: number,
+    srcWidth: number,
+    srcHeight: number,
+    originX: number,
+    originY: number,
+    shift: number,
+    x0: number,
+    y0: number,
+    width: number,
+    height: number,
+    epsilon: number,
+    phi: number,
+    dst: number,
+    dstStride: number,
+  ): void;
   mergeTable(table: number): void;
   merge(
     fine: number,

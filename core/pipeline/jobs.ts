@@ -1,3 +1,5 @@
+import type { LinePlan } from './linePlan.ts';
+
 /**
  * Jobs are plain numbers that a worker can be sent: one pass over a picture, cut into tiles that any worker may
  * take in any order. Pointers are byte offsets into the shared memory.
@@ -108,6 +110,49 @@ export interface NoiseJob {
   recordBytes: number;
 }
 
+/** A body stratum that covers a window of its level. */
+export interface BodyWindow {
+  pointer: number;
+  xPx: number;
+  yPx: number;
+  widthPx: number;
+}
+
+/** Finds S, the flow-guided difference of Gaussians, at a level that suits the width of the ink. */
+export interface LineJob {
+  kind: 'line';
+  /** In pixels of the line's own, 2^shift times smaller picture. */
+  grid: TileGrid;
+  /** Size of the painted level, before the shift. */
+  pictureWidthPx: number;
+  pictureHeightPx: number;
+  shift: number;
+  /** Drawn from the body, or from the photo's pyramid at the line's own level. */
+  body: BodyWindow | null;
+  photo: SourcePicture | null;
+  plan: LinePlan;
+  /** Gaussian table of the grain, DoG table and streamline table. */
+  tables: { gaussian: number; dog: number; streamline: number };
+  /** Receives S: float32, grid.widthPx a row. */
+  out: number;
+}
+
+/** Turns S into ink coverage. */
+export interface InkJob {
+  kind: 'ink';
+  /** In pixels of the painted level. */
+  grid: TileGrid;
+  source: number;
+  sourceWidthPx: number;
+  sourceHeightPx: number;
+  originX: number;
+  originY: number;
+  shift: number;
+  threshold: number;
+  phi: number;
+  out: number;
+}
+
 /** Makes the 8-bit ground of a coarser level. */
 export interface GroundJob {
   kind: 'ground';
@@ -120,7 +165,7 @@ export interface GroundJob {
   outStride: number;
 }
 
-export type Job = PaintJob | TablesJob | HalveJob | NoiseJob | GroundJob | ComposeJob;
+export type Job = PaintJob | TablesJob | HalveJob | NoiseJob | GroundJob | LineJob | InkJob | ComposeJob;
 
 /** Tiles in a grid. */
 export function tileCount(grid: TileGrid): number {

@@ -9,6 +9,7 @@ import {
   type TablesJob,
   tileRect,
 } from './jobs.ts';
+import { inkTile, lineTile } from './lineTile.ts';
 import { paintTile, readTile } from './paintTile.ts';
 
 /** Runs tile `index` of any job on this thread. Adds the milliseconds of its grain to `times`. */
@@ -32,6 +33,12 @@ export function runTile(
       break;
     case 'ground':
       makeGround(kernels, job, tileRect(job.grid, index));
+      break;
+    case 'line':
+      lineTile(kernels, job, tileRect(job.grid, index), scratch);
+      break;
+    case 'ink':
+      inkTile(kernels, job, tileRect(job.grid, index));
       break;
     case 'tables':
       buildTables(kernels, job, scratch);

@@ -1,8 +1,10 @@
+import { fullParameters } from '../presets/parametersSchema.ts';
 import type { Moment } from '../presets/preset.ts';
 import { mergeThreads, stateById } from '../presets/thread.ts';
 import { canonicalJson } from './canonicalJson.ts';
+import { contentId } from './contentId.ts';
 import type { PresetHistory, Recipe } from './recipe.ts';
-import { byTime, keepState } from './recipeHistory.ts';
+import { byTime, currentParameters, keepState } from './recipeHistory.ts';
 
 /** Said of the other side's unkept work when two versions of a recipe become one. */
 export const otherWorkNote = 'Kept from the other version';
@@ -25,12 +27,28 @@ export function mergeRecipes(ours: Recipe, theirs: Recipe, moment: Moment): Reci
   };
 }
 
-/** Their easel holds something no state of either side holds: unkept changes, or other strokes. */
+/** Their easel holds something that no state of either side holds: unkept changes, or other strokes. */
 function isWorthKeeping(ours: Recipe, theirs: Recipe): boolean {
   const look = ({ work }: Recipe) => canonicalJson([work.preset, work.stateId, work.changes, work.tightness]);
   if (look(ours) === look(theirs)) return false;
   const isUnkept = Object.keys(theirs.work.changes).length > 0;
-  return isUnkept || canonicalJson(ours.work.tightness) !== canonicalJson(theirs.work.tightness);
+  const hasOtherStrokes = canonicalJson(ours.work.tightness) !== canonicalJson(theirs.work.tightness);
+  return (isUnkept || hasOtherStrokes) && !isKeptAlready(ours, theirs);
+}
+
+/** Merging the same version in twice must not keep its easel twice. */
+function isKeptAlready(ours: Recipe, theirs: Recipe): boolean {
+  const { preset, stateId, tightness } = theirs.work;
+  const history = ours.histories.find((candidate) => candidate.preset === preset);
+  if (!history) return false;
+  const tightnessId = tightness.length === 0 ? null : contentId(tightness);
+  const parameters = canonicalJson(currentParameters(theirs));
+  return history.states.some(
+    (state) =>
+      state.parent === stateId &&
+      canonicalJson(fullParameters(state.parameters)) === parameters &&
+      history.uses.some((use) => use.stateId === state.id && use.tightnessId === tightnessId),
+  );
 }
 
 function mergeHistories(ours: PresetHistory | undefined, theirs: PresetHistory | undefined): PresetHistory {

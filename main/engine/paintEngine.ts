@@ -5,11 +5,14 @@ import { instantiateKernels, type Kernels } from '../../core/kernels/module.ts';
 import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import type { Parameters } from '../../core/parameters/table.ts';
 import { planBody } from '../../core/pipeline/bodyPlan.ts';
+import type { BodyWindow } from '../../core/pipeline/jobs.ts';
+import { lineHaloPx, planLine } from '../../core/pipeline/linePlan.ts';
 import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
 import { BodyPainter, type TileSize } from './bodyPainter.ts';
 import type { ComposedPicture, Engine, EnginePhoto, PaintOptions, StageTimes } from './engineApi.ts';
 import { HeldPhoto, rowGrid } from './heldPhoto.ts';
 import { loadKernelModule, paintWorkerUrl } from './kernelFiles.ts';
+import { LinePainter } from './linePainter.ts';
 import { SharedHeap } from './sharedHeap.ts';
 import { TableStore } from './tableStore.ts';
 import { WorkerPool } from './workerPool.ts';
@@ -45,6 +48,7 @@ class PaintEngine implements Engine {
   readonly #heap: SharedHeap;
   readonly #tables: TableStore;
   readonly #body: BodyPainter;
+  readonly #line: LinePainter;
   #paintings = 0;
 
   constructor(pool: WorkerPool, heap: SharedHeap, kernels: Kernels, tileSize: TileSize) {
@@ -52,6 +56,7 @@ class PaintEngine implements Engine {
     this.#heap = heap;
     this.#tables = new TableStore(pool, heap, kernels);
     this.#body = new BodyPainter(pool, heap, kernels, this.#tables, tileSize);
+    this.#line = new LinePainter(pool, heap, kernels, tileSize);
   }
 
   get workers(): number {
@@ -78,43 +83,27 @@ class PaintEngine implements Engine {
     const held = photo as HeldPhoto;
     const { level } = where;
     const size = held.levels[level];
-    const asked = where.region ?? { xPx: 0, yPx: 0, ...size };
-    const region = evenInside(asked, size);
+    const region = insideOrThrow(where.region ?? { xPx: 0, yPx: 0, ...size }, size);
     return this.#painting(held, async (memory) => {
+      const { body, line, times } = await this.#paintLayers(
+        held,
+        parameters,
+        level,
+        region,
+        memory,
+        options,
+        true,
+      );
+      const ground = await this.#ground(held, level, region, memory, options.signal);
+      const { buffer } = this.#heap.memory;
       const count = region.widthPx * region.heightPx;
-      const body = memory.allocate(count * 6);
-      const line = memory.allocate(count);
-      const times = await this.#paintLayers(held, parameters, level, region, { body, line }, options);
-      const groundBytes = level === 0 && held.depth === 16 ? 2 : 1;
-      const ground = memory.allocate(count * held.channels * groundBytes);
-      await this.#makeGround(held, level, region, ground, options.signal);
-      const crop = {
-        x: asked.xPx - region.xPx,
-        y: asked.yPx - region.yPx,
-        width: asked.widthPx,
-        height: asked.heightPx,
-      };
-      const copyU8 = (pointer: number, channels: number) =>
-        cropped(
-          new Uint8Array(this.#heap.memory.buffer, pointer, count * channels),
-          region.widthPx,
-          channels,
-          crop,
-        );
-      const copyU16 = (pointer: number, channels: number) =>
-        cropped(
-          new Uint16Array(this.#heap.memory.buffer, pointer, count * channels),
-          region.widthPx,
-          channels,
-          crop,
-        );
       const strata: Strata = {
-        widthPx: asked.widthPx,
-        heightPx: asked.heightPx,
-        ground: groundBytes === 2 ? copyU16(ground, held.channels) : copyU8(ground, held.channels),
+        widthPx: region.widthPx,
+        heightPx: region.heightPx,
+        ground,
         groundChannels: held.channels,
-        body: copyU16(body, 3),
-        line: copyU8(line, 1),
+        body: croppedBody(buffer, body, region),
+        line: new Uint8Array(buffer, line, count).slice(),
       };
       return { strata, times };
     });
@@ -129,15 +118,15 @@ class PaintEngine implements Engine {
     return this.#painting(held, async (memory) => {
       const region: Rect = { xPx: 0, yPx: 0, widthPx: held.widthPx, heightPx: held.heightPx };
       const count = region.widthPx * region.heightPx;
-      const body = memory.allocate(count * 6);
-      const line = memory.allocate(count);
-      const times = await this.#paintLayers(held, parameters, 0, region, { body, line }, options);
+      const layers = await this.#paintLayers(held, parameters, 0, region, memory, options, false);
+      const { times } = layers;
       const depth = options.depth ?? held.depth;
       const outBytes = depth === 8 ? 1 : 2;
       const out = this.#heap.allocate(count * held.channels * outBytes);
       try {
         const startMs = performance.now();
-        await this.#compose(held, parameters, { body, line }, out, outBytes, memory, options);
+        const strata = { body: layers.body.pointer, line: layers.line };
+        await this.#compose(held, parameters, strata, out, outBytes, memory, options);
         times.composeMs = performance.now() - startMs;
       } catch (error) {
         this.#heap.free(out);
@@ -155,60 +144,81 @@ class PaintEngine implements Engine {
     await this.#pool.close();
   }
 
-  /** Body and line of a region, into memory that is there already. */
+  /**
+   * Body and line of a region. The body covers the line's halo too, where that lies inside the picture.
+   * @param wantsAll also what the parameters' strengths hide: a preview may show it later without asking
+   */
   async #paintLayers(
     held: HeldPhoto,
     parameters: Parameters,
     level: number,
     region: Rect,
-    into: { body: number; line: number },
+    memory: PaintingMemory,
     { signal, onProgress, printLongEdgeMm = defaultPrintLongEdgeMm }: PaintOptions,
-  ): Promise<StageTimes> {
+    wantsAll: boolean,
+  ): Promise<{ body: BodyWindow; line: number; times: StageTimes }> {
     const scale = { longEdgePx: held.longEdgePx, printLongEdgeMm };
-    const plan = planBody(parameters, scale, level, held.noiseFloor);
+    const bodyPlan = planBody(parameters, scale, level, held.noiseFloor);
+    const linePlan = planLine(parameters, scale, level);
+    const wantsLine = wantsAll || parameters['line.strength'] > 0;
+    const isDrawnFromBody = wantsLine && linePlan.source === 'body';
+    const wantsBody = wantsAll || parameters['body.strength'] > 0 || isDrawnFromBody;
+    const around = evenAround(region, isDrawnFromBody ? lineHaloPx(linePlan) : 0, held.levels[level]);
+    const body: BodyWindow = {
+      pointer: wantsBody ? memory.allocate(around.widthPx * around.heightPx * 6) : 0,
+      xPx: around.xPx,
+      yPx: around.yPx,
+      widthPx: around.widthPx,
+    };
+    const line = wantsLine ? memory.allocate(region.widthPx * region.heightPx) : 0;
+    const stage = (name: 'body' | 'line') =>
+      onProgress && ((fraction01: number) => onProgress(fraction01, name));
+
     const startMs = performance.now();
     await held.level(level, this.#pool, signal);
     const bodyStartMs = performance.now();
-    const passes = await this.#body.paint(held, plan, level, region, into.body, {
-      signal,
-      onProgress: onProgress && ((fraction01) => onProgress(fraction01, 'body')),
-    });
+    const passes = wantsBody
+      ? await this.#body.paint(held, bodyPlan, level, around, body.pointer, {
+          signal,
+          onProgress: stage('body'),
+        })
+      : { grainMs: 0, totalMs: 1 };
     const bodyEndMs = performance.now();
+    if (wantsLine) {
+      await this.#line.paint(held, linePlan, level, region, body, line, {
+        signal,
+        onProgress: stage('line'),
+      });
+    }
     // The grain is found inside the painting passes; its share of the workers' time is its share of the clock.
     const grainShare = passes.grainMs / Math.max(1, passes.totalMs);
     const bodyMs = bodyEndMs - bodyStartMs;
-    return {
+    const times: StageTimes = {
       grainMs: bodyStartMs - startMs + bodyMs * grainShare,
       bodyMs: bodyMs * (1 - grainShare),
       lineMs: performance.now() - bodyEndMs,
       composeMs: 0,
     };
+    return { body, line, times };
   }
 
-  async #makeGround(
+  async #ground(
     held: HeldPhoto,
     level: number,
     region: Rect,
-    out: number,
+    memory: PaintingMemory,
     signal?: AbortSignal,
-  ): Promise<void> {
-    if (level === 0) {
-      copyRows(this.#heap.memory.buffer, held, region, out);
-      return;
-    }
+  ): Promise<Uint8Array | Uint16Array> {
+    if (level === 0) return copyOfPhoto(this.#heap.memory.buffer, held, region);
+    const samples = region.widthPx * region.heightPx * held.channels;
+    const out = memory.allocate(samples);
     const source = await held.level(level, this.#pool, signal);
+    const grid = { ...region, tileWidthPx: region.widthPx, tileHeightPx: composeRows };
     await this.#pool.run(
-      {
-        kind: 'ground',
-        grid: { ...region, tileWidthPx: region.widthPx, tileHeightPx: composeRows },
-        source,
-        photo: held.photo,
-        level,
-        out,
-        outStride: region.widthPx,
-      },
+      { kind: 'ground', grid, source, photo: held.photo, level, out, outStride: region.widthPx },
       { signal, scratchBytes: 0 },
     );
+    return new Uint8Array(this.#heap.memory.buffer, out, samples).slice();
   }
 
   async #compose(
@@ -278,48 +288,45 @@ class PaintingMemory {
   }
 }
 
-/** The smallest rectangle around `rect` that starts at even coordinates. */
-function evenInside(rect: Rect, size: { widthPx: number; heightPx: number }): Rect {
-  const xPx = rect.xPx & ~1;
-  const yPx = rect.yPx & ~1;
-  if (
-    rect.xPx < 0 ||
-    rect.yPx < 0 ||
-    rect.xPx + rect.widthPx > size.widthPx ||
-    rect.yPx + rect.heightPx > size.heightPx
-  ) {
+function insideOrThrow(rect: Rect, size: { widthPx: number; heightPx: number }): Rect {
+  const right = rect.xPx + rect.widthPx;
+  const bottom = rect.yPx + rect.heightPx;
+  const isInside = rect.xPx >= 0 && rect.yPx >= 0 && right <= size.widthPx && bottom <= size.heightPx;
+  if (!isInside || rect.widthPx < 1 || rect.heightPx < 1) {
     throw new RangeError(
       `Expected a region inside ${size.widthPx} × ${size.heightPx} px, received ${rect.widthPx} × ${rect.heightPx} px at ${rect.xPx}, ${rect.yPx}`,
     );
   }
-  return { xPx, yPx, widthPx: rect.widthPx + (rect.xPx - xPx), heightPx: rect.heightPx + (rect.yPx - yPx) };
+  return rect;
 }
 
-function cropped<T extends Uint8Array | Uint16Array>(
-  from: T,
-  widthPx: number,
-  channels: number,
-  crop: { x: number; y: number; width: number; height: number },
-): T {
-  const rowSamples = crop.width * channels;
-  const to = (
-    from.BYTES_PER_ELEMENT === 1
-      ? new Uint8Array(rowSamples * crop.height)
-      : new Uint16Array(rowSamples * crop.height)
-  ) as T;
-  for (let y = 0; y < crop.height; y++) {
-    const start = ((crop.y + y) * widthPx + crop.x) * channels;
-    to.set(from.subarray(start, start + rowSamples), y * rowSamples);
+/** A region and `haloPx` around it, inside the picture, with an even corner. */
+function evenAround(region: Rect, haloPx: number, size: { widthPx: number; heightPx: number }): Rect {
+  const xPx = Math.max(0, region.xPx - haloPx) & ~1;
+  const yPx = Math.max(0, region.yPx - haloPx) & ~1;
+  const right = Math.min(size.widthPx, region.xPx + region.widthPx + haloPx);
+  const bottom = Math.min(size.heightPx, region.yPx + region.heightPx + haloPx);
+  return { xPx, yPx, widthPx: right - xPx, heightPx: bottom - yPx };
+}
+
+function croppedBody(buffer: ArrayBufferLike, body: BodyWindow, region: Rect): Uint16Array {
+  const rowSamples = region.widthPx * 3;
+  const to = new Uint16Array(rowSamples * region.heightPx);
+  for (let y = 0; y < region.heightPx; y++) {
+    const first = (region.yPx - body.yPx + y) * body.widthPx + region.xPx - body.xPx;
+    to.set(new Uint16Array(buffer, body.pointer + first * 6, rowSamples), y * rowSamples);
   }
   return to;
 }
 
-function copyRows(buffer: ArrayBufferLike, held: HeldPhoto, region: Rect, out: number): void {
-  const bytes = new Uint8Array(buffer);
-  const pixelBytes = held.channels * (held.depth / 8);
-  const rowBytes = region.widthPx * pixelBytes;
+function copyOfPhoto(buffer: ArrayBuffer, held: HeldPhoto, region: Rect): Uint8Array | Uint16Array {
+  const rowSamples = region.widthPx * held.channels;
+  const Samples = held.depth === 8 ? Uint8Array : Uint16Array;
+  const to = new Samples(rowSamples * region.heightPx);
+  const pixelBytes = held.channels * Samples.BYTES_PER_ELEMENT;
   for (let y = 0; y < region.heightPx; y++) {
     const from = held.photo.pointer + ((region.yPx + y) * held.widthPx + region.xPx) * pixelBytes;
-    bytes.copyWithin(out + y * rowBytes, from, from + rowBytes);
+    to.set(new Samples(buffer, from, rowSamples), y * rowSamples);
   }
+  return to;
 }

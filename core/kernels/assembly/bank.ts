@@ -40,7 +40,8 @@ export function bankBytes(radiusPx: f64, pull: f64): i32 {
  */
 export function sectorWeights(vx: f64, vy: f64, weights: usize): bool {
   const squared = vx * vx + vy * vy;
-  if (squared > 1) return false;
+  // The rim belongs to the window; rounding must not decide that differently for a kernel and its mirror image.
+  if (squared > 1 + 1e-9) return false;
   const e = eta();
   let sum: f64 = 0;
   for (let k = 0; k < sectorCount; k++) {

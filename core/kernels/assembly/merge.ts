@@ -73,8 +73,8 @@ export function merge(
           dg = f32x4.sub(g, cg),
           db = f32x4.sub(b, cb);
         const distance = f32x4.add(f32x4.mul(dr, dr), f32x4.add(f32x4.mul(dg, dg), f32x4.mul(db, db)));
-        least = f32x4.min(least, distance);
-        const exponent = f32x4.max(f32x4.mul(distance, sharpness), f32x4.splat(-120));
+        // Relative to the nearest of the nine, so that the sum never vanishes.
+        const exponent = f32x4.max(f32x4.mul(f32x4.sub(distance, least), sharpness), f32x4.splat(-120));
         const weight = f32x4.mul(exp2x4(exponent), v128.load(table + <usize>(n << 4)));
         weightSum = f32x4.add(weightSum, weight);
         ur = f32x4.add(ur, f32x4.mul(weight, cr));

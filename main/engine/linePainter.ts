@@ -1,0 +1,93 @@
+import type { Kernels } from '../../core/kernels/module.ts';
+import type { BodyWindow, LineJob } from '../../core/pipeline/jobs.ts';
+import { edgeEmphasis, type LinePlan, streamlineStepPx } from '../../core/pipeline/linePlan.ts';
+import { lineGrid, lineRegion, lineScratchBytes } from '../../core/pipeline/lineTile.ts';
+import type { Rect } from '../../core/pixels/photo.ts';
+import type { TileSize } from './bodyPainter.ts';
+import type { HeldPhoto } from './heldPhoto.ts';
+import type { SharedHeap } from './sharedHeap.ts';
+import type { WorkerPool } from './workerPool.ts';
+
+/** Draws ink lines: S at the line's own level, then coverage at the painted one. */
+export class LinePainter {
+  constructor(
+    readonly pool: WorkerPool,
+    readonly heap: SharedHeap,
+    readonly kernels: Kernels,
+    readonly tileSize: TileSize,
+  ) {}
+
+  /**
+   * @param body the painted body, which covers the region and the line's halo around it; not read where the plan
+   *   draws from the photo
+   * @param line receives coverage, one byte a pixel of the region
+   */
+  async paint(
+    photo: HeldPhoto,
+    plan: LinePlan,
+    level: number,
+    region: Rect,
+    body: BodyWindow,
+    line: number,
+    options: { signal?: AbortSignal; onProgress?: (fraction01: number) => void } = {},
+  ): Promise<void> {
+    const picture = photo.levels[level];
+    const shift = Math.min(plan.shift, photo.levels.length - 1 - level);
+    const area = lineRegion(region, shift, picture);
+    const fromPhoto = plan.source === 'photo';
+    const source = fromPhoto ? await photo.level(level + shift, this.pool, options.signal) : null;
+    const tables = this.#makeTables(plan);
+    const field = this.heap.allocate(area.widthPx * area.heightPx * 4);
+    try {
+      const job: LineJob = {
+        kind: 'line',
+        grid: lineGrid(area, this.tileSize.widthPx, this.tileSize.heightPx),
+        pictureWidthPx: picture.widthPx,
+        pictureHeightPx: picture.heightPx,
+        shift,
+        body: fromPhoto ? null : body,
+        photo: source,
+        plan,
+        tables,
+        out: field,
+      };
+      await this.pool.run(job, { ...options, scratchBytes: lineScratchBytes(job) });
+      await this.pool.run(
+        {
+          kind: 'ink',
+          grid: { ...region, tileWidthPx: region.widthPx, tileHeightPx: 64 },
+          source: field,
+          sourceWidthPx: area.widthPx,
+          sourceHeightPx: area.heightPx,
+          originX: area.xPx,
+          originY: area.yPx,
+          shift,
+          threshold: plan.threshold,
+          phi: plan.phi,
+          out: line,
+        },
+        { signal: options.signal, scratchBytes: 0 },
+      );
+    } finally {
+      for (const pointer of [field, tables.gaussian, tables.dog, tables.streamline]) this.heap.free(pointer);
+    }
+  }
+
+  /** A few hundred numbers: made here rather than on a worker. */
+  #makeTables(plan: LinePlan): LineJob['tables'] {
+    const tables = {
+      gaussian: this.heap.allocate((2 * plan.tensorRadiusBlocks + 1) * 4),
+      dog: this.heap.allocate(this.kernels.dogTableBytes(plan.sigmaPx)),
+      streamline: this.heap.allocate((plan.streamlineSteps + 1) * 4),
+    };
+    this.kernels.gaussianTable(plan.tensorSigmaBlocks, plan.tensorRadiusBlocks, tables.gaussian);
+    this.kernels.dogTable(plan.sigmaPx, edgeEmphasis, tables.dog);
+    this.kernels.streamlineTable(
+      plan.alongSigmaPx,
+      streamlineStepPx,
+      plan.streamlineSteps,
+      tables.streamline,
+    );
+    return tables;
+  }
+}
