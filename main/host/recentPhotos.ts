@@ -44,15 +44,16 @@ export class RecentPhotos {
     );
   }
 
-  async add(photo: { path: string; widthPx: number; heightPx: number }): Promise<void> {
+  add(photo: { path: string; widthPx: number; heightPx: number }): Promise<void> {
     const { path, widthPx, heightPx } = photo;
-    const others = (await this.#load()).filter((recent) => recent.path !== path);
     const added = { path, widthPx, heightPx, openedAt: new Date().toISOString() };
-    await this.#replace([added, ...others].slice(0, maximumRecents));
+    return this.#change((recents) =>
+      [added, ...recents.filter((recent) => recent.path !== path)].slice(0, maximumRecents),
+    );
   }
 
-  async forget(path: string): Promise<void> {
-    await this.#replace((await this.#load()).filter((recent) => recent.path !== path));
+  forget(path: string): Promise<void> {
+    return this.#change((recents) => recents.filter((recent) => recent.path !== path));
   }
 
   /** Waits until the list is on the disk. */
@@ -65,11 +66,14 @@ export class RecentPhotos {
     return this.#recents;
   }
 
-  #replace(recents: Stored[]): Promise<void> {
-    this.#recents = Promise.resolve(recents);
-    const file: z.infer<typeof fileSchema> = { format: 'oxgall-recents', schema: 1, recents };
-    // A list that cannot be kept is no reason to stop work.
-    this.#writing = this.#writing.then(() => writeJsonFile(this.#file, file)).catch(() => undefined);
+  #change(change: (recents: Stored[]) => Stored[]): Promise<void> {
+    this.#writing = this.#writing.then(async () => {
+      const recents = change(await this.#load());
+      this.#recents = Promise.resolve(recents);
+      const file: z.infer<typeof fileSchema> = { format: 'oxgall-recents', schema: 1, recents };
+      // A list that cannot be kept is no reason to stop work.
+      await writeJsonFile(this.#file, file).catch(() => undefined);
+    });
     return this.#writing;
   }
 }

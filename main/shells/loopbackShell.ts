@@ -38,7 +38,7 @@ async function main(): Promise<void> {
   };
   for (const signal of ['SIGINT', 'SIGTERM', 'SIGHUP'] as const) process.on(signal, stop);
 
-  const browser = noWindow ? null : findChromium();
+  const browser = noWindow || !hasDisplay() ? null : findChromium();
   if (!browser) return say(`Oxgall is at ${server.oneTimeUrl}`);
   window = await openChromiumWindow(browser, server.oneTimeUrl);
   const { failed } = await window.closed;
@@ -46,6 +46,10 @@ async function main(): Promise<void> {
     return say(`${browser} could not open a window. Open this address instead: ${server.oneTimeUrl}`);
   await end();
   process.exit(0);
+}
+
+function hasDisplay(): boolean {
+  return process.platform !== 'linux' || Boolean(process.env.DISPLAY || process.env.WAYLAND_DISPLAY);
 }
 
 function say(line: string): void {
