@@ -168,6 +168,10 @@ describe('two versions of one recipe', () => {
     expect(last.parameters['body.brush']).toBe('9mm');
   });
 
+  it('do not keep the other easel twice when they meet twice', () => {
+    expect(mergeRecipes(merged, theirs, moment(6)).histories).toEqual(merged.histories);
+  });
+
   it('are unchanged by themselves', () => {
     expect(mergeRecipes(ours, ours, moment(5))).toEqual(ours);
   });

@@ -1,0 +1,139 @@
+import { mkdir, readdir, rename, stat } from 'node:fs/promises';
+import { basename, dirname, join } from 'node:path';
+import { recipeFormat } from '../../core/recipes/documentFormats.ts';
+import { openDocument } from '../../core/recipes/openDocument.ts';
+import type { PhotoFingerprint, Recipe } from '../../core/recipes/recipe.ts';
+import { freePath } from './freePath.ts';
+import { fingerprintPhoto } from './photoFingerprint.ts';
+import { isRecipeName, photoOfRecipe, recipeBeside, recipeInMirror } from './recipePlaces.ts';
+import type { RecipeStore } from './recipeStore.ts';
+import type { SavedRecipe } from './storeResults.ts';
+import { readVersioned } from './versionedFile.ts';
+
+/** A photo without a recipe, and a recipe that was made for a photo of the same bytes. */
+export interface Reunion {
+  photoPath: string;
+  photo: PhotoFingerprint;
+  recipe: Recipe;
+  /** Where the photo was when the recipe was saved. */
+  oldPhotoPath: string;
+  /** `moved`: nothing is at the old place any more. `twin`: the other photo is still there. */
+  kind: 'moved' | 'twin';
+  /** The sidecar that lost its photo, where it lies in the photo's own folder. */
+  orphanPath: string | null;
+}
+
+interface Candidate {
+  recipe: Recipe;
+  photoPath: string;
+  orphanPath: string | null;
+}
+
+/**
+ * Looks for the recipes of photos that have none: among sidecars in their folders that lost their photo, and among
+ * the copies in the data folder.
+ * @param photoPaths photos, such as those of a folder just opened
+ * @returns at most one for each photo; a moved photo's before a twin's
+ * Cost: reads a photo's bytes only where a recipe was made for one of the same size.
+ */
+export async function findMovedPhotos(
+  store: RecipeStore,
+  photoPaths: readonly string[],
+  mirrorFolder: string | null = null,
+  signal?: AbortSignal,
+): Promise<Reunion[]> {
+  const bare: string[] = [];
+  for (const path of photoPaths) if (!(await hasRecipe(path, mirrorFolder))) bare.push(path);
+  if (bare.length === 0) return [];
+  const orphans = await findOrphans(new Set(bare.map((path) => dirname(path))));
+  const knownSizes = await store.copies.knownSizes();
+  const reunions: Reunion[] = [];
+  for (const photoPath of bare) {
+    signal?.throwIfAborted();
+    const sizeBytes = (await stat(photoPath).catch(() => null))?.size ?? -1;
+    const isKnown =
+      knownSizes.has(sizeBytes) || orphans.some(({ recipe }) => recipe.photo.sizeBytes === sizeBytes);
+    if (!isKnown) continue;
+    const photo = await fingerprintPhoto(photoPath, signal);
+    const found = await findFor(photoPath, photo, orphans, store);
+    if (found) reunions.push(found);
+  }
+  return reunions;
+}
+
+async function findFor(
+  photoPath: string,
+  photo: PhotoFingerprint,
+  orphans: readonly Candidate[],
+  store: RecipeStore,
+): Promise<Reunion | null> {
+  const ours = orphans.filter(
+    ({ recipe, orphanPath }) =>
+      recipe.photo.sha256 === photo.sha256 &&
+      orphanPath !== null &&
+      dirname(orphanPath) === dirname(photoPath),
+  );
+  const copies = (await store.copies.forPhoto(photo.sizeBytes, photo.sha256)).map((copy) => ({
+    recipe: copy.recipe,
+    photoPath: copy.photoPath,
+    orphanPath: null,
+  }));
+  const reunions = await Promise.all(
+    [...ours, ...copies].map(async (candidate): Promise<Reunion> => {
+      const kind = (await exists(candidate.photoPath)) ? 'twin' : 'moved';
+      const { recipe, orphanPath } = candidate;
+      return { photoPath, photo, recipe, oldPhotoPath: candidate.photoPath, kind, orphanPath };
+    }),
+  );
+  return reunions.find(({ kind }) => kind === 'moved') ?? reunions[0] ?? null;
+}
+
+async function hasRecipe(photoPath: string, mirrorFolder: string | null): Promise<boolean> {
+  if (await exists(recipeBeside(photoPath))) return true;
+  return mirrorFolder !== null && exists(recipeInMirror(photoPath, mirrorFolder));
+}
+
+async function findOrphans(folders: ReadonlySet<string>): Promise<Candidate[]> {
+  const orphans: Candidate[] = [];
+  for (const folder of folders) {
+    const names = await readdir(folder).catch(() => []);
+    const present = new Set(names);
+    for (const name of names.filter(isRecipeName)) {
+      const orphanPath = join(folder, name);
+      const photoPath = photoOfRecipe(orphanPath);
+      if (present.has(basename(photoPath))) continue;
+      const read = await readVersioned(orphanPath).catch(() => null);
+      const opened = read && openDocument(read.text, recipeFormat);
+      if (opened?.kind === 'usable') orphans.push({ recipe: opened.document, photoPath, orphanPath });
+    }
+  }
+  return orphans;
+}
+
+/**
+ * Gives a photo the recipe that was found for it. A sidecar left behind in the same folder goes to the bin, from
+ * where it can be taken back by hand.
+ * @param binFolder of the data folder
+ */
+export async function reunite(
+  store: RecipeStore,
+  reunion: Reunion,
+  binFolder: string,
+): Promise<{ recipe: Recipe; saved: SavedRecipe }> {
+  const recipe = { ...reunion.recipe, photo: { ...reunion.recipe.photo, ...reunion.photo } };
+  const result = await store.saveKeepingBoth(reunion.photoPath, recipe, { version: null });
+  if (result.saved.kind === 'saved' && reunion.orphanPath && reunion.kind === 'moved') {
+    await mkdir(binFolder, { recursive: true });
+    const inBin = await freePath(join(binFolder, basename(reunion.orphanPath)));
+    // Another disk refuses the rename; then the sidecar simply stays where it is.
+    await rename(reunion.orphanPath, inBin).catch(() => {});
+  }
+  return result;
+}
+
+async function exists(path: string): Promise<boolean> {
+  return stat(path).then(
+    () => true,
+    () => false,
+  );
+}
