@@ -24,16 +24,23 @@ export function clothColour(s) {
 
 /** Stitches, as a height. */
 export function knitRelief(u, v) {
-  const column = ((u / 0.006) % 1 + 1) % 1;
+  const column = (((u / 0.006) % 1) + 1) % 1;
   const lean = Math.abs(column - 0.5) * 0.006;
-  const row = (((v + lean * 1.3) / 0.005) % 1 + 1) % 1;
-  return 0.0011 * Math.sin(row * Math.PI) * (0.35 + Math.sin(column * 2 * Math.PI) ** 2) + noise2(u * 300, v * 300) * 0.0002;
+  const row = ((((v + lean * 1.3) / 0.005) % 1) + 1) % 1;
+  return (
+    0.0011 * Math.sin(row * Math.PI) * (0.35 + Math.sin(column * 2 * Math.PI) ** 2) +
+    noise2(u * 300, v * 300) * 0.0002
+  );
 }
 
 export function skinRelief(u, v, w, fp) {
   const pores = fp < 0.001 ? fbm3(u * 900, v * 900, w * 900, 2, fp * 700) * 0.00009 : 0;
   const lines = noise3(u * 90, v * 330, w * 90);
-  return pores - smoothStep(0.22, 0, Math.abs(lines)) * 0.00013 + fbm3(u * 130, v * 130, w * 130, 3, fp * 130) * 0.0005;
+  return (
+    pores -
+    smoothStep(0.22, 0, Math.abs(lines)) * 0.00013 +
+    fbm3(u * 130, v * 130, w * 130, 3, fp * 130) * 0.0005
+  );
 }
 
 /** @param {import('./materials.mjs').Sample} s */
@@ -41,9 +48,9 @@ export function skinColour(s) {
   const { u, v, w, footprint: fp } = s;
   const blotch = fbm3(u * 38, v * 38, w * 38, 4, fp * 40);
   const fleck = smoothStep(0.36, 0.62, noise3(u * 210, v * 210, w * 210)) * smoothStep(0.0012, 0.0004, fp);
-  s.r *= 1 + 0.12 * blotch - fleck * 0.12;
-  s.g *= 1 - 0.12 * blotch - fleck * 0.24;
-  s.b *= 1 - 0.16 * blotch - fleck * 0.28;
+  s.r *= 1 + 0.08 * blotch - fleck * 0.12;
+  s.g *= 1 - 0.06 * blotch - fleck * 0.2;
+  s.b *= 1 - 0.08 * blotch - fleck * 0.22;
   s.gloss = 0.035;
   s.sharpness = 15 + 8 * blotch;
   s.scatter = 1;
@@ -83,7 +90,12 @@ export function featherColour(s) {
   const fp = s.footprint;
   const barbs = noise2((s.u + Math.abs(s.v) * 0.012) * 900, s.w * 31) * smoothStep(0.0022, 0.0006, fp);
   const shaft = smoothStep(0.12, 0.04, Math.abs(s.v)) * smoothStep(0.004, 0.001, fp);
-  const k = 0.92 + 0.22 * barbs + 0.25 * fbm2(s.u * 30, s.v * 3 + s.w * 17, 3, fp * 30) + 0.2 * shaft - 0.22 * smoothStep(0.55, 1, Math.abs(s.v));
+  const k =
+    0.92 +
+    0.22 * barbs +
+    0.25 * fbm2(s.u * 30, s.v * 3 + s.w * 17, 3, fp * 30) +
+    0.2 * shaft -
+    0.22 * smoothStep(0.55, 1, Math.abs(s.v));
   s.r *= k;
   s.g *= k;
   s.b *= k;

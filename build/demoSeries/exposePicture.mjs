@@ -4,19 +4,21 @@
 
 import { mirroredCamera, resizedCamera } from './camera.mjs';
 import { castsShadow } from './materials.mjs';
-import { Shader, pixelNoise } from './shader.mjs';
+import { pixelNoise, Shader } from './shader.mjs';
+import { SkyView } from './skyView.mjs';
 import { DepthMap } from './sunlight.mjs';
 import { Visibility } from './visibility.mjs';
 import { Reflection } from './water.mjs';
 
 /**
- * @param {import('./shader.mjs').LitScene & { centre: number[], reachM: number, overheadSpreadM?: number, shadowPx?: number }} scene
+ * @param {import('./shader.mjs').LitScene & { centre: number[], reachM: number, overheadSpreadM?: number }} scene
  * @param {import('./camera.mjs').Camera} camera
  * @returns {{ rgb: Float32Array, depth: Float32Array }} radiance, and distance along the view axis (0: sky)
  */
 export function exposePicture(scene, camera) {
-  addLightMaps(scene);
+  addLightMaps(scene, Math.max(camera.widthPx, camera.heightPx) < 1500 ? 1024 : 2048);
   if (scene.water) addReflection(scene, camera);
+  scene.skyView = new SkyView(scene.sky.settings, camera);
   scene.occlusion = new Occlusion(scene, camera);
   const { widthPx, heightPx } = camera;
   const rgb = new Float32Array(widthPx * heightPx * 3);
@@ -72,14 +74,24 @@ function shadeRow(shader, target, row, rgb, depth, widthPx) {
   }
 }
 
-function addLightMaps(scene) {
-  const { mesh, centre, reachM, shadowPx = 2048 } = scene;
+/** Penumbras are given for maps of 2048 texels; smaller pictures make do with smaller maps. */
+function addLightMaps(scene, sizePx) {
+  const { mesh, centre, reachM } = scene;
+  scene.penumbra *= sizePx / 2048;
   const { sun } = scene.sky.settings;
   scene.shadows = [
-    new DepthMap(mesh, sun, centre, reachM, shadowPx, castsShadow),
-    new DepthMap(mesh, sun, centre, reachM * 7, 1536, castsShadow),
+    new DepthMap(mesh, sun, centre, reachM, sizePx, castsShadow, reachM < 20),
+    new DepthMap(mesh, sun, centre, reachM * 7, (sizePx * 3) / 4, castsShadow, reachM < 5),
   ];
-  scene.overhead = new DepthMap(mesh, [0.04, 1, 0.03], centre, reachM * 1.5, 1024, castsShadow);
+  scene.overhead = new DepthMap(
+    mesh,
+    [0.04, 1, 0.03],
+    centre,
+    reachM * 1.5,
+    sizePx / 2,
+    castsShadow,
+    reachM < 20,
+  );
   scene.overhead.spreadM = scene.overheadSpreadM ?? 0.5;
 }
 
@@ -115,7 +127,7 @@ class Occlusion {
     this.width = small.widthPx;
     this.height = small.heightPx;
     const depth = new Float32Array(this.width * this.height);
-    const seen = new Visibility(scene.mesh, small);
+    const seen = new Visibility(scene.mesh, small, { nearOnly: scene.reachM < 20 });
     for (let band = 0; band < seen.bandCount; band++) {
       const target = seen.drawBand(band);
       for (let i = 0; i < target.rows * this.width; i++) depth[target.top * this.width + i] = target.depth[i];
@@ -147,7 +159,8 @@ class Occlusion {
           const two = this.#depthAt(inverse, x - cx, y - cy, w);
           const rise = w - (one + two) / 2;
           const reach = (r / focalPx) * w;
-          if (rise > 0.05 * reach) shut += Math.min(1, (rise / reach) * 1.3) * Math.max(0, 1 - rise / (radiusM * 2.5));
+          if (rise > 0.05 * reach)
+            shut += Math.min(1, (rise / reach) * 1.3) * Math.max(0, 1 - rise / (radiusM * 2.5));
         }
         open[at] = 1 - (shut / 8) * 0.8;
       }
@@ -171,7 +184,8 @@ class Occlusion {
         let total = 0;
         for (let j = -2; j <= 2; j++)
           for (let i = -2; i <= 2; i++) {
-            const at = Math.min(height - 1, Math.max(0, y + j)) * width + Math.min(width - 1, Math.max(0, x + i));
+            const at =
+              Math.min(height - 1, Math.max(0, y + j)) * width + Math.min(width - 1, Math.max(0, x + i));
             const weight = Math.abs(inverse[at] - own) < own * 0.04 ? 1 : 0.02;
             sum += raw[at] * weight;
             total += weight;
@@ -190,6 +204,9 @@ class Occlusion {
     const at = iy * this.width + ix;
     const [ax, ay] = [fx - ix, fy - iy];
     const o = this.open;
-    return (o[at] * (1 - ax) + o[at + 1] * ax) * (1 - ay) + (o[at + this.width] * (1 - ax) + o[at + this.width + 1] * ax) * ay;
+    return (
+      (o[at] * (1 - ax) + o[at + 1] * ax) * (1 - ay) +
+      (o[at + this.width] * (1 - ax) + o[at + this.width + 1] * ax) * ay
+    );
   }
 }

@@ -8,7 +8,7 @@ import * as scenes from './frameScenes.mjs';
  * @property {number} widthPx upright @property {number} heightPx upright
  * @property {number} orientation the tag of CIPA DC-008 that the file carries
  * @property {{ eye: number[], target: number[], fovDeg: number, rollDeg?: number }} view
- * @property {string} light @property {(view: { eye: number[], pixelAngle: number }) => object} scene
+ * @property {string} light @property {(view: { eye: number[], pixelAngle: number, sees: (x: number, z: number) => boolean }) => object} scene
  * @property {import('./lens.mjs').LensSettings} lens @property {import('./sensor.mjs').SensorSettings} sensor
  * @property {string} caption
  */
@@ -25,7 +25,14 @@ export const frames = [
     light: 'fair',
     scene: scenes.landingScene,
     lens: { focusM: 16, blurShare: 0.0004, flare: 0.03, falloff: 0.34 },
-    sensor: { exposure: 0.9, balance: [1.02, 1, 0.97], shotNoise: 0.0004, readNoise: 0.002, contrast: 0.6, seed: 11 },
+    sensor: {
+      exposure: 0.9,
+      balance: [1.02, 1, 0.97],
+      shotNoise: 0.0004,
+      readNoise: 0.002,
+      contrast: 0.6,
+      seed: 11,
+    },
   },
   {
     name: 'plate-2-ferry',
@@ -37,7 +44,14 @@ export const frames = [
     light: 'afternoon',
     scene: scenes.broadsideScene,
     lens: { focusM: 9.4, blurShare: 0.003, flare: 0.03, falloff: 0.3 },
-    sensor: { exposure: 0.8, balance: [1.06, 1, 0.9], shotNoise: 0.0009, readNoise: 0.003, contrast: 0.55, seed: 12 },
+    sensor: {
+      exposure: 0.8,
+      balance: [1.06, 1, 0.9],
+      shotNoise: 0.0009,
+      readNoise: 0.003,
+      contrast: 0.55,
+      seed: 12,
+    },
   },
   {
     name: 'plate-3-odalys-brook',
@@ -49,7 +63,14 @@ export const frames = [
     light: 'portrait',
     scene: scenes.portraitScene,
     lens: { focusM: 1.31, blurShare: 0.03, flare: 0.04, falloff: 0.25 },
-    sensor: { exposure: 0.88, balance: [1, 1, 1], shotNoise: 0.0006, readNoise: 0.002, contrast: 0.5, seed: 13 },
+    sensor: {
+      exposure: 0.88,
+      balance: [1, 1, 1],
+      shotNoise: 0.0006,
+      readNoise: 0.002,
+      contrast: 0.5,
+      seed: 13,
+    },
   },
   {
     name: 'plate-4-hands',
@@ -57,11 +78,18 @@ export const frames = [
     widthPx: 3000,
     heightPx: 2000,
     orientation: 1,
-    view: { eye: [-0.2, 1.93, 3.8], target: [-0.13, 1.36, 3.13], fovDeg: 40 },
+    view: { eye: [-0.22, 1.9, 3.82], target: [-0.2, 1.37, 3.13], fovDeg: 42 },
     light: 'fair',
     scene: scenes.handsScene,
     lens: { focusM: 0.84, blurShare: 0.016, flare: 0.03, falloff: 0.3 },
-    sensor: { exposure: 0.75, balance: [1.03, 1, 0.94], shotNoise: 0.0016, readNoise: 0.004, contrast: 0.5, seed: 14 },
+    sensor: {
+      exposure: 0.75,
+      balance: [1.03, 1, 0.94],
+      shotNoise: 0.0016,
+      readNoise: 0.004,
+      contrast: 0.5,
+      seed: 14,
+    },
   },
   {
     name: 'plate-5-heron',
@@ -73,7 +101,14 @@ export const frames = [
     light: 'afternoon',
     scene: scenes.heronScene,
     lens: { focusM: 3.98, blurShare: 0.016, flare: 0.03, falloff: 0.3 },
-    sensor: { exposure: 0.72, balance: [0.98, 1, 1.04], shotNoise: 0.0008, readNoise: 0.003, contrast: 0.5, seed: 15 },
+    sensor: {
+      exposure: 0.72,
+      balance: [0.98, 1, 1.04],
+      shotNoise: 0.0008,
+      readNoise: 0.003,
+      contrast: 0.5,
+      seed: 15,
+    },
   },
   {
     name: 'plate-6-mist',
@@ -85,7 +120,14 @@ export const frames = [
     light: 'mist',
     scene: scenes.mistScene,
     lens: { focusM: 14, blurShare: 0.0006, flare: 0.07, falloff: 0.25 },
-    sensor: { exposure: 0.74, balance: [0.96, 1, 1.08], shotNoise: 0.0014, readNoise: 0.004, contrast: 0.35, seed: 16 },
+    sensor: {
+      exposure: 0.66,
+      balance: [0.98, 1, 1.06],
+      shotNoise: 0.0014,
+      readNoise: 0.004,
+      contrast: 0.35,
+      seed: 16,
+    },
   },
   {
     name: 'plate-7-dusk',
@@ -96,8 +138,15 @@ export const frames = [
     view: { eye: [-0.8, 2, -7.6], target: [2.1, 1.75, 10], fovDeg: 58, rollDeg: 0.8 },
     light: 'dusk',
     scene: scenes.duskScene,
-    lens: { focusM: 17, blurShare: 0.0006, flare: 0.09, falloff: 0.4 },
-    sensor: { exposure: 1.05, balance: [1.04, 1, 0.96], shotNoise: 0.0045, readNoise: 0.009, contrast: 0.5, seed: 17 },
+    lens: { focusM: 17, blurShare: 0.0006, flare: 0.05, falloff: 0.4 },
+    sensor: {
+      exposure: 1.0,
+      balance: [0.98, 1, 1.06],
+      shotNoise: 0.003,
+      readNoise: 0.006,
+      contrast: 0.5,
+      seed: 17,
+    },
   },
   {
     name: 'plate-8-far-bank',
@@ -109,7 +158,14 @@ export const frames = [
     light: 'afternoon',
     scene: scenes.villageScene,
     lens: { focusM: 80, flare: 0.04, falloff: 0.28 },
-    sensor: { exposure: 1.0, balance: [1.08, 1, 0.86], shotNoise: 0.0006, readNoise: 0.002, contrast: 0.45, seed: 18 },
+    sensor: {
+      exposure: 1.0,
+      balance: [1.08, 1, 0.86],
+      shotNoise: 0.0006,
+      readNoise: 0.002,
+      contrast: 0.45,
+      seed: 18,
+    },
   },
   {
     name: 'plate-9-rain',
@@ -117,10 +173,17 @@ export const frames = [
     widthPx: 2048,
     heightPx: 1536,
     orientation: 1,
-    view: { eye: [2.9, 1.85, -3.4], target: [0.6, 1.4, 4.4], fovDeg: 60, rollDeg: 1 },
+    view: { eye: [3.9, 1.75, -0.9], target: [0.9, 1.75, 4.2], fovDeg: 64, rollDeg: 1 },
     light: 'rain',
     scene: scenes.rainScene,
     lens: { focusM: 7.5, blurShare: 0.002, flare: 0.05, falloff: 0.32 },
-    sensor: { exposure: 1.0, balance: [0.93, 1, 1.12], shotNoise: 0.003, readNoise: 0.007, contrast: 0.4, seed: 19 },
+    sensor: {
+      exposure: 1.3,
+      balance: [0.95, 1, 1.09],
+      shotNoise: 0.0016,
+      readNoise: 0.004,
+      contrast: 0.6,
+      seed: 19,
+    },
   },
 ];

@@ -3,9 +3,9 @@
 
 import { material } from './materials.mjs';
 import { Mesh } from './mesh.mjs';
+import { ball, blend, carve, egg, meshOfSurface, rod } from './roundedShapes.mjs';
 import { fbm3, noise2, noise3, randomStream, smoothStep } from './seededNoise.mjs';
 import { addRibbon, addTurned, curveThrough } from './solids.mjs';
-import { ball, blend, carve, egg, meshOfSurface, rod } from './roundedShapes.mjs';
 
 const cm = 0.01;
 
@@ -88,13 +88,22 @@ const skinTone = [0.43, 0.265, 0.19];
 /** Colour of the skin by place: lips, flushed cheeks and nose, darker about the eyes. */
 function dressSkin(px, py, pz, mesh) {
   const [x, y, z] = [Math.abs(px) / cm, py / cm, pz / cm];
-  const lip = smoothStep(0.75, 0.25, Math.min(
-    rod(x, y, z, [0, -5.55, 8.9], [2.2, -5.8, 7.5], 0.22, 0.03),
-    rod(x, y, z, [0, -6.65, 8.8], [1.9, -6.2, 7.6], 0.35, 0.05),
-  ) * 1.6);
-  const flush = smoothStep(3.4, 0.6, ball(x, y, z, 4.2, -2.2, 6.8, 0.8)) * 0.65 + smoothStep(1.7, 0.2, ball(x, y, z, 0, -2.7, 10, 0.7)) * 0.6;
+  const lip = smoothStep(
+    0.75,
+    0.25,
+    Math.min(
+      rod(x, y, z, [0, -5.55, 8.9], [2.2, -5.8, 7.5], 0.22, 0.03),
+      rod(x, y, z, [0, -6.65, 8.8], [1.9, -6.2, 7.6], 0.35, 0.05),
+    ) * 1.6,
+  );
+  const flush =
+    smoothStep(3.4, 0.6, ball(x, y, z, 4.2, -2.2, 6.8, 0.8)) * 0.65 +
+    smoothStep(1.7, 0.2, ball(x, y, z, 0, -2.7, 10, 0.7)) * 0.6;
   const hollow = smoothStep(1.5, 0.1, egg(x, y, z, 3.15, 0.6, 7.4, 1.5, 1, 1)) * 0.75;
-  const rim = smoothStep(0.32, 0.05, Math.abs(ball(x, y, z, 3.15, 0.95, 6.55, 1.4))) * smoothStep(1, 0.4, Math.abs(y - 0.9)) * (z > 6.9 ? 1 : 0);
+  const rim =
+    smoothStep(0.32, 0.05, Math.abs(ball(x, y, z, 3.15, 0.95, 6.55, 1.4))) *
+    smoothStep(1, 0.4, Math.abs(y - 0.9)) *
+    (z > 6.9 ? 1 : 0);
   const crease = smoothStep(0.34, 0.06, rod(x, y, z, [0, -6.08, 9], [2.4, -5.85, 7.6], 0.02, 0.02));
   const mottle = fbm3(x * 0.7, y * 0.7, z * 0.7, 4);
   const weather = 1 + 0.12 * mottle;
@@ -119,7 +128,15 @@ function addEyes(mesh) {
   for (const side of [-1, 1]) {
     const gaze = [0.1, -0.02];
     const part = new Mesh();
-    addTurned(part, Array.from({ length: 15 }, (_, i) => [Math.sin((i / 14) * Math.PI) + 1e-4, -Math.cos((i / 14) * Math.PI)]), 24, material.eye);
+    addTurned(
+      part,
+      Array.from({ length: 15 }, (_, i) => [
+        Math.sin((i / 14) * Math.PI) + 1e-4,
+        -Math.cos((i / 14) * Math.PI),
+      ]),
+      24,
+      material.eye,
+    );
     for (let i = 0; i < part.vertexCount; i++) {
       const v = part.vertices.subarray(i * 13, i * 13 + 13);
       const [x, y, z] = [v[0], v[1], v[2]];
@@ -140,22 +157,43 @@ function addBrows(mesh, next, across) {
     for (let i = 0; i < 420; i++) {
       const t = next();
       const x = 1.1 + 3.9 * t;
-      const y = 2.45 + 0.62 * Math.sin(Math.min(1, t * 1.25) * Math.PI * 0.62) - 0.9 * Math.max(0, t - 0.6) + (next() - 0.5) * (0.85 - 0.45 * t);
+      const y =
+        2.45 +
+        0.62 * Math.sin(Math.min(1, t * 1.25) * Math.PI * 0.62) -
+        0.9 * Math.max(0, t - 0.6) +
+        (next() - 0.5) * (0.85 - 0.45 * t);
       const z = frontOf(x, y) + 0.02;
       const sweep = [0.55 + 0.3 * next(), 0.35 - 0.7 * t + 0.3 * next(), 0.12];
       const length = 0.55 + 0.4 * next();
       const grey = next() < 0.45 ? 0.3 : 0.11;
       mesh.colour = [grey * 1.1, grey * 0.95, grey * 0.8];
-      const path = [0, 0.5, 1].map((s) => [side * (x + sweep[0] * length * s) * cm, (y + sweep[1] * length * s - 0.1 * s * s) * cm, (z + 0.12 * s - 0.12 * s * s * (1 + t)) * cm]);
-      addRibbon(mesh, path, [0.2 * side, 0.95, 0.2], (s) => Math.max(across * 0.4, 0.00022) * (1 - s * 0.7), material.hair, { seed: next() * 9 });
+      const path = [0, 0.5, 1].map((s) => [
+        side * (x + sweep[0] * length * s) * cm,
+        (y + sweep[1] * length * s - 0.1 * s * s) * cm,
+        (z + 0.12 * s - 0.12 * s * s * (1 + t)) * cm,
+      ]);
+      addRibbon(
+        mesh,
+        path,
+        [0.2 * side, 0.95, 0.2],
+        (s) => Math.max(across * 0.4, 0.00022) * (1 - s * 0.7),
+        material.hair,
+        { seed: next() * 9 },
+      );
     }
     for (let i = 0; i < 60; i++) {
       const px = -1.25 + (2.5 * i) / 59;
       const y = 0.95 + 0.1 + 0.3 * (1 - (px / 1.5) ** 2);
       const z = 6.55 + Math.sqrt(Math.max(0.05, 1.5 * 1.5 - px * px - 0.2));
       mesh.colour = [0.02, 0.016, 0.013];
-      const path = [0, 0.5, 1].map((s) => [side * (3.15 + px * (1 + 0.25 * s)) * cm, (y + 0.1 * s + 0.2 * s * s) * cm, (z + 0.42 * s) * cm]);
-      addRibbon(mesh, path, [1, 0, 0], (s) => Math.max(across * 0.35, 0.00018) * (1.1 - s), material.hair, { seed: i });
+      const path = [0, 0.5, 1].map((s) => [
+        side * (3.15 + px * (1 + 0.25 * s)) * cm,
+        (y + 0.1 * s + 0.2 * s * s) * cm,
+        (z + 0.42 * s) * cm,
+      ]);
+      addRibbon(mesh, path, [1, 0, 0], (s) => Math.max(across * 0.35, 0.00018) * (1.1 - s), material.hair, {
+        seed: i,
+      });
     }
   }
 }
@@ -173,21 +211,45 @@ function frontOf(x, y) {
 
 /** Grey-brown hair drawn back under the hat, loose strands about the ears and nape. */
 function addHair(mesh, next, across) {
-  for (let i = 0; i < 7600; i++) {
+  const count = Math.round(Math.min(7600, 2.4 / across));
+  for (let i = 0; i < count; i++) {
     const side = next() < 0.5 ? -1 : 1;
     const t = next();
     const angle = 0.72 + t * 2.2;
-    const start = [side * 7.75 * Math.sin(angle) * (1 + 0.03 * next()), 4.6 - 1.4 * t + next() * 1.2, 8.7 * Math.cos(angle) - 0.6];
+    const start = [
+      side * 7.75 * Math.sin(angle) * (1 + 0.03 * next()),
+      4.6 - 1.4 * t + next() * 1.2,
+      8.7 * Math.cos(angle) - 0.6,
+    ];
     const loose = next() < 0.12 ? 1 : 0;
     const drop = 7 + 5 * t + next() * 4 + loose * 3;
     const back = [side * (8.35 - 1.5 * t + 0.3 * next()), start[1] - drop * 0.45, start[2] - 2.2 - 0.5 * t];
-    const end = [side * (5.6 - 2 * t + next() * 1.2 + loose * 2.4 * next()), start[1] - drop, -5.4 - next() * 3.4 + loose * 3.5 * next()];
+    const end = [
+      side * (5.6 - 2 * t + next() * 1.2 + loose * 2.4 * next()),
+      start[1] - drop,
+      -5.4 - next() * 3.4 + loose * 3.5 * next(),
+    ];
     const wave = noise2(i * 0.37, 2) * 0.5;
-    const path = curveThrough([start, back, [(back[0] + end[0]) / 2 + side * (0.5 + wave), (back[1] + end[1]) / 2, (back[2] + end[2]) / 2 + wave], end], 3);
+    const path = curveThrough(
+      [
+        start,
+        back,
+        [(back[0] + end[0]) / 2 + side * (0.5 + wave), (back[1] + end[1]) / 2, (back[2] + end[2]) / 2 + wave],
+        end,
+      ],
+      3,
+    );
     const tone = next();
     mesh.colour = tone < 0.4 ? [0.3, 0.27, 0.24] : tone < 0.75 ? [0.15, 0.115, 0.085] : [0.42, 0.4, 0.37];
     mesh.openness = 0.5 + 0.5 * next();
-    addRibbon(mesh, path.map((p) => p.map((c) => c * cm)), [0.25 * side, 0.1, 0.96], (s) => Math.max(across * 0.45, 0.0004) * (1.1 - 0.6 * s), material.hair, { seed: i * 0.37 });
+    addRibbon(
+      mesh,
+      path.map((p) => p.map((c) => c * cm)),
+      [0.25 * side, 0.1, 0.96],
+      (s) => Math.max(across * 0.45, 0.0004) * (1.1 - 0.6 * s),
+      material.hair,
+      { seed: i * 0.37 },
+    );
   }
   mesh.openness = 1;
 }
@@ -196,13 +258,34 @@ function addHair(mesh, next, across) {
 function addHat(mesh) {
   mesh.colour = [0.085, 0.082, 0.06];
   const tilt = (p) => [p[0], p[1] + p[2] * 0.1 + 0.051, p[2] - 0.012];
-  const brim = [[0.0845, 0], [0.1, -0.004], [0.118, -0.008], [0.135, -0.012], [0.146, -0.0125], [0.148, -0.01], [0.146, -0.0075], [0.12, -0.002], [0.1, 0.002], [0.087, 0.006]];
+  const brim = [
+    [0.0845, 0],
+    [0.1, -0.004],
+    [0.118, -0.008],
+    [0.135, -0.012],
+    [0.146, -0.0125],
+    [0.148, -0.01],
+    [0.146, -0.0075],
+    [0.12, -0.002],
+    [0.1, 0.002],
+    [0.087, 0.006],
+  ];
   addTurned(mesh, brim, 96, material.felt, (p, a) => {
     const out = (Math.hypot(p[0], p[2]) - 0.084) / 0.064;
-    const dip = out * (0.012 * Math.sin(a * 2 + 0.6) + 0.007 * Math.sin(a * 3 + 2) + 0.004 * noise2(a * 3, 1));
+    const dip =
+      out * (0.012 * Math.sin(a * 2 + 0.6) + 0.007 * Math.sin(a * 3 + 2) + 0.004 * noise2(a * 3, 1));
     return tilt([p[0] * 0.98, p[1] + dip, p[2] * 1.13]);
   });
-  const crown = [[0.088, 0], [0.089, 0.02], [0.088, 0.045], [0.083, 0.07], [0.072, 0.087], [0.05, 0.095], [0.025, 0.092], [0.001, 0.089]];
+  const crown = [
+    [0.088, 0],
+    [0.089, 0.02],
+    [0.088, 0.045],
+    [0.083, 0.07],
+    [0.072, 0.087],
+    [0.05, 0.095],
+    [0.025, 0.092],
+    [0.001, 0.089],
+  ];
   addTurned(mesh, crown, 72, material.felt, (p, a) => {
     const high = p[1] / 0.09;
     const dent = high > 0.5 ? 0.012 * high * Math.exp(-((p[0] / 0.03) ** 2)) : 0;
@@ -210,14 +293,34 @@ function addHat(mesh) {
     return tilt([p[0] * soft * 0.98, p[1] - dent, p[2] * soft * 1.13]);
   });
   mesh.colour = [0.16, 0.05, 0.035];
-  addTurned(mesh, [[0.0895, 0.003], [0.0915, 0.006], [0.0912, 0.02], [0.09, 0.024]], 72, material.cloth, (p) => tilt([p[0] * 0.99, p[1], p[2] * 1.14]));
+  addTurned(
+    mesh,
+    [
+      [0.0895, 0.003],
+      [0.0915, 0.006],
+      [0.0912, 0.02],
+      [0.09, 0.024],
+    ],
+    72,
+    material.cloth,
+    (p) => tilt([p[0] * 0.99, p[1], p[2] * 1.14]),
+  );
 }
 
 /** @param {number} stepM fineness of the skin's mesh @param {number} pixelM size of a pixel at her distance */
 export function buildHead(stepM, pixelM) {
   const mesh = new Mesh();
   const next = randomStream(501);
-  mesh.add(meshOfSurface((x, y, z) => faceDistance(x / cm, y / cm, z / cm) * cm, [-0.1, -0.2, -0.12], [0.1, 0.14, 0.125], stepM, material.skin, dressSkin));
+  mesh.add(
+    meshOfSurface(
+      (x, y, z) => faceDistance(x / cm, y / cm, z / cm) * cm,
+      [-0.1, -0.2, -0.12],
+      [0.1, 0.14, 0.125],
+      stepM,
+      material.skin,
+      dressSkin,
+    ),
+  );
   mesh.openness = 1;
   addEyes(mesh);
   addBrows(mesh, next, pixelM);
@@ -225,4 +328,3 @@ export function buildHead(stepM, pixelM) {
   addHat(mesh);
   return mesh;
 }
-

@@ -39,7 +39,8 @@ function reduce({ rgb, depth, width, height }, factor) {
 }
 
 /** Signed blur radius in pixels; negative before the plane in focus. */
-const blurOf = (inverseDepth, focusM, farRadius) => farRadius * Math.max(-3, Math.min(1, 1 - focusM * inverseDepth));
+const blurOf = (inverseDepth, focusM, farRadius) =>
+  farRadius * Math.max(-3, Math.min(1, 1 - focusM * inverseDepth));
 
 /**
  * Blurs a picture by its distance from the plane in focus, in place.
@@ -73,7 +74,9 @@ export function applyDepthOfField(picture, width, height, { focusM, blurShare = 
       const p = (iy * small.width + ix) * 3;
       const q = p + small.width * 3;
       for (let c = 0; c < 3; c++) {
-        const soft = (blurred[p + c] * (1 - fx) + blurred[p + 3 + c] * fx) * (1 - fy) + (blurred[q + c] * (1 - fx) + blurred[q + 3 + c] * fx) * fy;
+        const soft =
+          (blurred[p + c] * (1 - fx) + blurred[p + 3 + c] * fx) * (1 - fy) +
+          (blurred[q + c] * (1 - fx) + blurred[q + 3 + c] * fx) * fy;
         rgb[at * 3 + c] += (soft - rgb[at * 3 + c]) * t;
       }
     }
@@ -173,7 +176,9 @@ export function applyFlareAndFalloff(rgb, width, height, { flare = 0.05, falloff
       const q = p + small.width * 3;
       const at = (y * width + x) * 3;
       for (let c = 0; c < 3; c++) {
-        const soft = (veil[p + c] * (1 - fx) + veil[p + 3 + c] * fx) * (1 - fy) + (veil[q + c] * (1 - fx) + veil[q + 3 + c] * fx) * fy;
+        const soft =
+          (veil[p + c] * (1 - fx) + veil[p + 3 + c] * fx) * (1 - fy) +
+          (veil[q + c] * (1 - fx) + veil[q + 3 + c] * fx) * fy;
         rgb[at + c] = (rgb[at + c] * (1 - flare) + soft * flare) * dim;
       }
     }

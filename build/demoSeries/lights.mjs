@@ -27,11 +27,26 @@ const fairSky = {
 export const lights = {
   fair: { sky: fairSky, air: { density: 0.0007 } },
   afternoon: {
-    sky: { ...fairSky, sun: sunAt(-142, 27), sunColour: [3.7, 2.95, 2.15], cover: 0.4, cloudScale: 0.42, seed: 12, glow: [1, 0.8, 0.55] },
+    sky: {
+      ...fairSky,
+      sun: sunAt(-142, 27),
+      sunColour: [3.7, 2.95, 2.15],
+      cover: 0.4,
+      cloudScale: 0.42,
+      seed: 12,
+      glow: [1, 0.8, 0.55],
+    },
     air: { density: 0.0009 },
   },
   portrait: {
-    sky: { ...fairSky, sun: sunAt(-152, 30), sunColour: [2.9, 2.6, 2.15], cover: 0.62, seed: 8, zenith: [0.3, 0.45, 0.75] },
+    sky: {
+      ...fairSky,
+      sun: sunAt(-152, 30),
+      sunColour: [2.9, 2.6, 2.15],
+      cover: 0.62,
+      seed: 8,
+      zenith: [0.3, 0.45, 0.75],
+    },
     air: { density: 0.001 },
   },
   mist: {
@@ -42,13 +57,13 @@ export const lights = {
       zenith: [0.5, 0.56, 0.68],
       horizon: [1.02, 0.95, 0.9],
       ground: [0.3, 0.29, 0.28],
-      glow: [0.75, 0.55, 0.36],
-      glowWidth: 0.7,
+      glow: [1.1, 0.75, 0.45],
+      glowWidth: 0.45,
       cover: 0.2,
       cloudLit: [1, 0.95, 0.9],
       cloudShade: [0.8, 0.8, 0.82],
     },
-    air: { density: 0.0035, mist: 0.045, mistHeightM: 5 },
+    air: { density: 0.0035, mist: 0.024, mistHeightM: 5 },
   },
   dusk: {
     sky: {
@@ -58,7 +73,7 @@ export const lights = {
       zenith: [0.1, 0.15, 0.32],
       horizon: [1, 0.5, 0.26],
       ground: [0.09, 0.075, 0.065],
-      glow: [2.4, 1.15, 0.4],
+      glow: [1.7, 0.75, 0.26],
       glowWidth: 0.5,
       cover: 0.56,
       cloudScale: 0.48,
@@ -66,7 +81,7 @@ export const lights = {
       cloudShade: [0.26, 0.22, 0.29],
       seed: 21,
     },
-    air: { density: 0.0013 },
+    air: { density: 0.0009 },
   },
   rain: {
     sky: {
@@ -84,6 +99,6 @@ export const lights = {
       cloudShade: [0.55, 0.59, 0.66],
       seed: 33,
     },
-    air: { density: 0.0042, mist: 0.004, mistHeightM: 12 },
+    air: { density: 0.0028, mist: 0.002, mistHeightM: 12 },
   },
 };

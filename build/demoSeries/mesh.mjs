@@ -56,12 +56,18 @@ export const toned = ([r, g, b], factor) => [r * factor, g * factor, b * factor]
 export class Mesh {
   vertexCount = 0;
   triangleCount = 0;
-  vertices = new Float32Array(floatsPerVertex * 4096);
-  corners = new Uint32Array(3 * 8192);
-  materials = new Uint8Array(8192);
+  /** @param {number} [vertices] room to begin with @param {number} [triangles] */
+  constructor(vertices = 4096, triangles = 8192) {
+    this.vertices = new Float32Array(floatsPerVertex * vertices);
+    this.corners = new Uint32Array(3 * triangles);
+    this.materials = new Uint8Array(triangles);
+  }
+
   /** Colour given to vertices that follow. @type {Triple} */
   colour = [0.5, 0.5, 0.5];
   openness = 1;
+  nearVertices = Infinity;
+  nearTriangles = Infinity;
   /** @type {Placing | null} */
   place = null;
 
@@ -101,6 +107,17 @@ export class Mesh {
     return this.vertexCount++;
   }
 
+  #growTriangles(count) {
+    if (count <= this.materials.length) return;
+    const size = Math.max(this.materials.length * 2, count);
+    const corners = new Uint32Array(size * 3);
+    corners.set(this.corners);
+    this.corners = corners;
+    const materials = new Uint8Array(size);
+    materials.set(this.materials);
+    this.materials = materials;
+  }
+
   #growVertices(count) {
     if (count * floatsPerVertex <= this.vertices.length) return;
     const grown = new Float32Array(Math.max(this.vertices.length * 2, count * floatsPerVertex));
@@ -109,14 +126,7 @@ export class Mesh {
   }
 
   triangle(a, b, c, material) {
-    if (this.triangleCount >= this.materials.length) {
-      const corners = new Uint32Array(this.corners.length * 2);
-      corners.set(this.corners);
-      this.corners = corners;
-      const materials = new Uint8Array(this.materials.length * 2);
-      materials.set(this.materials);
-      this.materials = materials;
-    }
+    this.#growTriangles(this.triangleCount + 1);
     const at = this.triangleCount * 3;
     this.corners[at] = a;
     this.corners[at + 1] = b;
@@ -150,8 +160,17 @@ export class Mesh {
     }
     if (place) placeVertices(to, place);
     const c = other.corners;
-    for (let i = 0; i < other.triangleCount; i++)
-      this.triangle(first + c[i * 3], first + c[i * 3 + 1], first + c[i * 3 + 2], other.materials[i]);
+    const from = this.triangleCount;
+    this.#growTriangles(from + other.triangleCount);
+    for (let i = 0; i < other.triangleCount * 3; i++) this.corners[from * 3 + i] = first + c[i];
+    this.materials.set(other.materials.subarray(0, other.triangleCount), from);
+    this.triangleCount += other.triangleCount;
+  }
+
+  /** Everything added from here on stands too far off to throw shadows on what came before. */
+  beginDistance() {
+    this.nearVertices = this.vertexCount;
+    this.nearTriangles = this.triangleCount;
   }
 }
 

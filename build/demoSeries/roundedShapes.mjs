@@ -63,7 +63,17 @@ export function meshOfSurface(distance, low, high, stepM, material, dress) {
         const e = stepM * 0.6;
         const d = distance(x, y, z);
         dress?.(x, y, z, mesh);
-        index[at(i, j, k)] = mesh.vertex(x, y, z, distance(x + e, y, z) - d, distance(x, y + e, z) - d, distance(x, y, z + e) - d, x, y, z);
+        index[at(i, j, k)] = mesh.vertex(
+          x,
+          y,
+          z,
+          distance(x + e, y, z) - d,
+          distance(x, y + e, z) - d,
+          distance(x, y, z + e) - d,
+          x,
+          y,
+          z,
+        );
       }
   joinCells(mesh, field, index, at, size, material);
   return mesh;
@@ -78,16 +88,36 @@ function sampleField(distance, low, [nx, ny, nz], stepM) {
     for (let j0 = 0; j0 < ny; j0 += block)
       for (let i0 = 0; i0 < nx; i0 += block) {
         const half = ((block - 1) * stepM) / 2;
-        const d = distance(low[0] + i0 * stepM + half, low[1] + j0 * stepM + half, low[2] + k0 * stepM + half);
+        const d = distance(
+          low[0] + i0 * stepM + half,
+          low[1] + j0 * stepM + half,
+          low[2] + k0 * stepM + half,
+        );
         for (let k = k0; k < Math.min(nz, k0 + block); k++)
           for (let j = j0; j < Math.min(ny, j0 + block); j++)
             for (let i = i0; i < Math.min(nx, i0 + block); i++)
-              field[(k * ny + j) * nx + i] = Math.abs(d) > limit ? d : distance(low[0] + i * stepM, low[1] + j * stepM, low[2] + k * stepM);
+              field[(k * ny + j) * nx + i] =
+                Math.abs(d) > limit
+                  ? d
+                  : distance(low[0] + i * stepM, low[1] + j * stepM, low[2] + k * stepM);
       }
   return field;
 }
 
-const edges = [[0, 1], [0, 2], [0, 4], [1, 3], [1, 5], [2, 3], [2, 6], [3, 7], [4, 5], [4, 6], [5, 7], [6, 7]];
+const edges = [
+  [0, 1],
+  [0, 2],
+  [0, 4],
+  [1, 3],
+  [1, 5],
+  [2, 3],
+  [2, 6],
+  [3, 7],
+  [4, 5],
+  [4, 6],
+  [5, 7],
+  [6, 7],
+];
 
 /** Mean of the places where the cell's edges cross the surface, in cells; null where none does. */
 function crossing(field, at, i, j, k) {
@@ -120,10 +150,25 @@ function joinCells(mesh, field, index, at, [nx, ny, nz], material) {
       for (let i = 1; i < nx - 1; i++) {
         const here = field[at(i, j, k)] < 0;
         if (here !== field[at(i + 1, j, k)] < 0)
-          quad(index[at(i, j - 1, k - 1)], index[at(i, j, k - 1)], index[at(i, j, k)], index[at(i, j - 1, k)]);
+          quad(
+            index[at(i, j - 1, k - 1)],
+            index[at(i, j, k - 1)],
+            index[at(i, j, k)],
+            index[at(i, j - 1, k)],
+          );
         if (here !== field[at(i, j + 1, k)] < 0)
-          quad(index[at(i - 1, j, k - 1)], index[at(i, j, k - 1)], index[at(i, j, k)], index[at(i - 1, j, k)]);
+          quad(
+            index[at(i - 1, j, k - 1)],
+            index[at(i, j, k - 1)],
+            index[at(i, j, k)],
+            index[at(i - 1, j, k)],
+          );
         if (here !== field[at(i, j, k + 1)] < 0)
-          quad(index[at(i - 1, j - 1, k)], index[at(i, j - 1, k)], index[at(i, j, k)], index[at(i - 1, j, k)]);
+          quad(
+            index[at(i - 1, j - 1, k)],
+            index[at(i, j - 1, k)],
+            index[at(i, j, k)],
+            index[at(i - 1, j, k)],
+          );
       }
 }

@@ -34,7 +34,8 @@ function gaussian(index, channel, seed) {
   h = Math.imul(h ^ (h >>> 13), 0xc2b2ae35);
   h ^= h >>> 16;
   const k = Math.imul(h ^ 0x5bd1e995, 0x27d4eb2f);
-  const sum = (h & 255) + ((h >>> 8) & 255) + ((h >>> 16) & 255) + (h >>> 24) + (k >>> 24) + ((k >>> 16) & 255);
+  const sum =
+    (h & 255) + ((h >>> 8) & 255) + ((h >>> 16) & 255) + (h >>> 24) + (k >>> 24) + ((k >>> 16) & 255);
   return (sum - 765) / 181;
 }
 
@@ -43,7 +44,11 @@ function gaussian(index, channel, seed) {
  * @param {SensorSettings} settings
  * @returns {Uint8Array} encoded sRGB
  */
-export function develop(rgb, pixels, { exposure, balance, shotNoise, readNoise, contrast = 0.3, saturation = 1.08, seed }) {
+export function develop(
+  rgb,
+  pixels,
+  { exposure, balance, shotNoise, readNoise, contrast = 0.3, saturation = 1.08, seed },
+) {
   const out = new Uint8Array(pixels * 3);
   const table = toneTable(contrast);
   const raw = [0, 0, 0];

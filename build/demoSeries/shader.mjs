@@ -30,14 +30,42 @@ export class Shader {
   /** Distance along the view axis of the last sample. */
   w = 0;
   s = {
-    px: 0, py: 0, pz: 0, u: 0, v: 0, w: 0, footprint: 0, r: 0, g: 0, b: 0, gloss: 0, sharpness: 1,
-    through: 0, scatter: 0, openness: 1,
+    px: 0,
+    py: 0,
+    pz: 0,
+    u: 0,
+    v: 0,
+    w: 0,
+    footprint: 0,
+    r: 0,
+    g: 0,
+    b: 0,
+    gloss: 0,
+    sharpness: 1,
+    through: 0,
+    scatter: 0,
+    openness: 1,
   };
   #ambient = [0, 0, 0];
   #look = [0, 0, 0];
   #air = [0, 0, 0];
   #bary = new Float64Array(10); // three weights at the pixel, at x + 1, at y + 1
-  #water = { px: 0, pz: 0, dx: 0, dy: 0, dz: 0, t: 0, w: 0, footprint: 0, noise: 0, sunOpen: 1, ambient: this.#ambient, out: [0, 0, 0], screenX: 0, screenY: 0 };
+  #water = {
+    px: 0,
+    pz: 0,
+    dx: 0,
+    dy: 0,
+    dz: 0,
+    t: 0,
+    w: 0,
+    footprint: 0,
+    noise: 0,
+    sunOpen: 1,
+    ambient: this.#ambient,
+    out: [0, 0, 0],
+    screenX: 0,
+    screenY: 0,
+  };
 
   /** @param {LitScene} scene @param {import('./camera.mjs').Camera} camera @param {boolean} [rough] leave out fine work */
   constructor(scene, camera, rough = false) {
@@ -63,7 +91,7 @@ export class Shader {
     const ray = this.#ray;
     this.#rayOf(x, y, ray);
     const k = 1 / Math.sqrt(ray[0] * ray[0] + ray[1] * ray[1] + ray[2] * ray[2]);
-    this.scene.sky.look(ray[0] * k, Math.abs(ray[1] * k), ray[2] * k, this.#look);
+    this.scene.skyView.at(x, y, this.#look);
     [this.r, this.g, this.b] = this.#look;
     this.w = 0;
     this.#throughAir(ray[0] * k, ray[1] * k, ray[2] * k, 3000, this.camera.eye[1] + ray[1] * k * 3000, true);
@@ -145,7 +173,7 @@ export class Shader {
     const { eye } = this.camera;
     const t = Math.sqrt((s.px - eye[0]) ** 2 + (s.py - eye[1]) ** 2 + (s.pz - eye[2]) ** 2);
     this.w = t / length;
-    let k = 1 / Math.sqrt(nx * nx + ny * ny + nz * nz + 1e-12);
+    const k = 1 / Math.sqrt(nx * nx + ny * ny + nz * nz + 1e-12);
     nx *= k;
     ny *= k;
     nz *= k;
@@ -197,9 +225,21 @@ export class Shader {
     const yz = da2 * p[ia + 2] + db2 * p[ib + 2] + dc2 * p[ic + 2];
     const h0 = reliefOf(kind, s.u, s.v, s.w, s.footprint);
     const hx =
-      reliefOf(kind, s.u + da1 * p[ia + 6] + db1 * p[ib + 6] + dc1 * p[ic + 6], s.v + da1 * p[ia + 7] + db1 * p[ib + 7] + dc1 * p[ic + 7], s.w + da1 * p[ia + 8] + db1 * p[ib + 8] + dc1 * p[ic + 8], s.footprint) - h0;
+      reliefOf(
+        kind,
+        s.u + da1 * p[ia + 6] + db1 * p[ib + 6] + dc1 * p[ic + 6],
+        s.v + da1 * p[ia + 7] + db1 * p[ib + 7] + dc1 * p[ic + 7],
+        s.w + da1 * p[ia + 8] + db1 * p[ib + 8] + dc1 * p[ic + 8],
+        s.footprint,
+      ) - h0;
     const hy =
-      reliefOf(kind, s.u + da2 * p[ia + 6] + db2 * p[ib + 6] + dc2 * p[ic + 6], s.v + da2 * p[ia + 7] + db2 * p[ib + 7] + dc2 * p[ic + 7], s.w + da2 * p[ia + 8] + db2 * p[ib + 8] + dc2 * p[ic + 8], s.footprint) - h0;
+      reliefOf(
+        kind,
+        s.u + da2 * p[ia + 6] + db2 * p[ib + 6] + dc2 * p[ic + 6],
+        s.v + da2 * p[ia + 7] + db2 * p[ib + 7] + dc2 * p[ic + 7],
+        s.w + da2 * p[ia + 8] + db2 * p[ib + 8] + dc2 * p[ic + 8],
+        s.footprint,
+      ) - h0;
     const r1x = yy * nz - yz * ny;
     const r1y = yz * nx - yx * nz;
     const r1z = yx * ny - yy * nx;
@@ -235,7 +275,14 @@ export class Shader {
       const texel = 1 / shadows[i].texelsPerMetre;
       const lift = texel * 1.6;
       const spread = i === 0 ? penumbra : 1.3;
-      const open = shadows[i].openness(s.px + nx * lift, s.py + ny * lift, s.pz + nz * lift, spread, texel * (0.8 + spread * 0.55), turn);
+      const open = shadows[i].openness(
+        s.px + nx * lift,
+        s.py + ny * lift,
+        s.pz + nz * lift,
+        spread,
+        texel * (0.8 + spread * 0.55),
+        turn,
+      );
       if (open >= 0) return open;
     }
     return 1;
@@ -246,7 +293,14 @@ export class Shader {
     const { overhead, occlusion } = this.scene;
     let open = s.openness;
     if (!this.rough && occlusion) open *= occlusion.at(x, y);
-    const above = overhead.openness(s.px, s.py + 0.04, s.pz, overhead.spreadM * overhead.texelsPerMetre, overhead.spreadM * 0.25, pixelNoise(x * 2, y * 2, 1) * 6.2832);
+    const above = overhead.openness(
+      s.px,
+      s.py + 0.04,
+      s.pz,
+      overhead.spreadM * overhead.texelsPerMetre,
+      overhead.spreadM * 0.25,
+      pixelNoise(x * 2, y * 2, 1) * 6.2832,
+    );
     return above < 0 ? open : open * (0.36 + 0.64 * above);
   }
 
@@ -270,9 +324,11 @@ export class Shader {
     const b = soft ? softened(toSun, 0.08) : front;
     // light passed on by the surroundings keeps hollows from going grey: a little of the own colour
     const bounce = 1 - skyOpen;
-    this.r = s.r * (sunColour[0] * open * (r + back * 0.9) + ambient[0] * (skyOpen + bounce * skyOpen * s.r * 0.8));
+    this.r =
+      s.r * (sunColour[0] * open * (r + back * 0.9) + ambient[0] * (skyOpen + bounce * skyOpen * s.r * 0.8));
     this.g = s.g * (sunColour[1] * open * (g + back) + ambient[1] * (skyOpen + bounce * skyOpen * s.g * 0.8));
-    this.b = s.b * (sunColour[2] * open * (b + back * 0.45) + ambient[2] * (skyOpen + bounce * skyOpen * s.b * 0.8));
+    this.b =
+      s.b * (sunColour[2] * open * (b + back * 0.45) + ambient[2] * (skyOpen + bounce * skyOpen * s.b * 0.8));
     if (s.gloss > 0) this.#sheen(kind, dx, dy, dz, nx, ny, nz, front * open, skyOpen);
   }
 
@@ -281,7 +337,12 @@ export class Shader {
     const { sky } = this.scene;
     const { sun, sunColour } = sky.settings;
     const facing = Math.max(0.03, -(nx * dx + ny * dy + nz * dz));
-    const mirror = s.gloss + (1 - s.gloss) * (1 - facing) ** 5 * Math.min(1, s.sharpness / 60) * (kind === material.glass ? 1 : 0.55);
+    const mirror =
+      s.gloss +
+      (1 - s.gloss) *
+        (1 - facing) ** 5 *
+        Math.min(1, s.sharpness / 60) *
+        (kind === material.glass ? 1 : 0.55);
     if (sunlit > 0) {
       const hx = sun[0] - dx;
       const hy = sun[1] - dy;

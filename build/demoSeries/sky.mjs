@@ -15,8 +15,8 @@ import { fbm2, mix, smoothStep } from './seededNoise.mjs';
  * @property {number} seed
  */
 
-const width = 1024;
-const height = 512;
+const width = 512;
+const height = 256;
 
 export class Sky {
   /** @param {SkySettings} settings */
@@ -29,7 +29,13 @@ export class Sky {
       for (let i = 0; i < width; i++) {
         const azimuth = ((i + 0.5) / width) * 2 * Math.PI - Math.PI;
         const flat = Math.cos(elevation);
-        skyColour(settings, Math.sin(azimuth) * flat, Math.sin(elevation), Math.cos(azimuth) * flat, colour);
+        skyRadiance(
+          settings,
+          Math.sin(azimuth) * flat,
+          Math.sin(elevation),
+          Math.cos(azimuth) * flat,
+          colour,
+        );
         this.pixels.set(colour, (j * width + i) * 3);
       }
     }
@@ -60,10 +66,10 @@ export class Sky {
   /** Second-order spherical harmonics of the irradiance over π (Ramamoorthi and Hanrahan 2001). */
   #projectHarmonics() {
     const sums = new Float64Array(27);
-    for (let j = 0; j < height; j += 4) {
+    for (let j = 0; j < height; j += 2) {
       const elevation = (0.5 - (j + 0.5) / height) * Math.PI;
-      const solidAngle = ((2 * Math.PI) / (width / 4)) * (Math.PI / (height / 4)) * Math.cos(elevation);
-      for (let i = 0; i < width; i += 4) {
+      const solidAngle = ((2 * Math.PI) / (width / 2)) * (Math.PI / (height / 2)) * Math.cos(elevation);
+      for (let i = 0; i < width; i += 2) {
         const azimuth = ((i + 0.5) / width) * 2 * Math.PI - Math.PI;
         const x = Math.sin(azimuth) * Math.cos(elevation);
         const y = Math.sin(elevation);
@@ -88,8 +94,13 @@ export class Sky {
     const b8 = 0.546274 * (x * x - y * y);
     for (let c = 0; c < 3; c++) {
       const value =
-        0.282095 * h[c] + 0.488603 * (y * h[3 + c] + z * h[6 + c] + x * h[9 + c]) +
-        b4 * h[12 + c] + b5 * h[15 + c] + b6 * h[18 + c] + b7 * h[21 + c] + b8 * h[24 + c];
+        0.282095 * h[c] +
+        0.488603 * (y * h[3 + c] + z * h[6 + c] + x * h[9 + c]) +
+        b4 * h[12 + c] +
+        b5 * h[15 + c] +
+        b6 * h[18 + c] +
+        b7 * h[21 + c] +
+        b8 * h[24 + c];
       out[c] = value > 0.001 ? value : 0.001;
     }
   }
@@ -97,21 +108,30 @@ export class Sky {
 
 function harmonicBasis(x, y, z) {
   return [
-    0.282095, 0.488603 * y, 0.488603 * z, 0.488603 * x, 1.092548 * x * y, 1.092548 * y * z,
-    0.315392 * (3 * z * z - 1), 1.092548 * x * z, 0.546274 * (x * x - y * y),
+    0.282095,
+    0.488603 * y,
+    0.488603 * z,
+    0.488603 * x,
+    1.092548 * x * y,
+    1.092548 * y * z,
+    0.315392 * (3 * z * z - 1),
+    1.092548 * x * z,
+    0.546274 * (x * x - y * y),
   ];
 }
 
-/** @param {SkySettings} s */
-function skyColour(s, x, y, z, out) {
+/** Radiance of the sky from a direction of unit length, into `out`. @param {SkySettings} s */
+export function skyRadiance(s, x, y, z, out) {
   if (y < -0.02) {
     const t = smoothStep(-0.02, -0.2, y);
     for (let c = 0; c < 3; c++) out[c] = mix(s.horizon[c] * 0.6, s.ground[c], t);
     return;
   }
   const toSun = x * s.sun[0] + y * s.sun[1] + z * s.sun[2];
-  const rise = Math.pow(Math.max(0, y), 0.55);
-  const halo = Math.exp((toSun - 1) / (0.002 + 0.04 * s.glowWidth)) * 1.6 + Math.exp((toSun - 1) / (0.05 + 0.5 * s.glowWidth)) * 0.55;
+  const rise = Math.max(0, y) ** 0.55;
+  const halo =
+    Math.exp((toSun - 1) / (0.002 + 0.04 * s.glowWidth)) * 1.6 +
+    Math.exp((toSun - 1) / (0.05 + 0.5 * s.glowWidth)) * 0.55;
   for (let c = 0; c < 3; c++) out[c] = mix(s.horizon[c], s.zenith[c], rise) + s.glow[c] * halo;
   if (s.cover > 0) addCloud(s, x, y, z, toSun, out);
 }

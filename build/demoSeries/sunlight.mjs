@@ -1,7 +1,7 @@
 // Depth maps seen from the sun (shadows) and from straight above (how much sky a place sees).
 
-import { floatsPerVertex } from './mesh.mjs';
 import { unit } from './camera.mjs';
+import { floatsPerVertex } from './mesh.mjs';
 import { squareTo } from './solids.mjs';
 import { fillTriangle } from './visibility.mjs';
 
@@ -16,16 +16,17 @@ export class DepthMap {
    * @param {import('./mesh.mjs').Mesh} mesh
    * @param {[number, number, number]} towardsLight
    * @param {[number, number, number]} centre @param {number} radiusM @param {number} sizePx
-   * @param {(material: number) => boolean} casts
+   * @param {(material: number) => boolean} casts @param {boolean} [nearOnly] leave out the distance
    */
-  constructor(mesh, towardsLight, centre, radiusM, sizePx, casts) {
+  constructor(mesh, towardsLight, centre, radiusM, sizePx, casts, nearOnly = false) {
     this.light = unit(towardsLight);
     [this.a, this.b] = squareTo(this.light);
     this.centre = centre;
     this.size = sizePx;
     this.texelsPerMetre = sizePx / (2 * radiusM);
     this.depth = new Float32Array(sizePx * sizePx);
-    const count = mesh.vertexCount;
+    const count = nearOnly ? Math.min(mesh.vertexCount, mesh.nearVertices) : mesh.vertexCount;
+    const triangles = nearOnly ? Math.min(mesh.triangleCount, mesh.nearTriangles) : mesh.triangleCount;
     const sx = new Float32Array(count);
     const sy = new Float32Array(count);
     const sd = new Float32Array(count);
@@ -36,7 +37,7 @@ export class DepthMap {
       sd[i] = this.d;
     }
     const target = { width: sizePx, top: 0, rows: sizePx, depth: this.depth, ids: null };
-    for (let t = 0; t < mesh.triangleCount; t++) {
+    for (let t = 0; t < triangles; t++) {
       if (!casts(mesh.materials[t])) continue;
       const [p, q, r] = [mesh.corners[t * 3], mesh.corners[t * 3 + 1], mesh.corners[t * 3 + 2]];
       fillTriangle(target, sx[p], sy[p], sd[p], sx[q], sy[q], sd[q], sx[r], sy[r], sd[r], t);

@@ -4,7 +4,8 @@ import { fbm2, fbm3, mix, noise2, noise3, smoothStep } from './seededNoise.mjs';
 
 /** How far the wood's rings wander; shared by relief and colour so that they agree. */
 function grainPlace(u, v, w, fp) {
-  const wander = noise3(u * 0.9, v * 4, w * 4) * 0.016 + noise3(u * 2.3 + 9, v * 9, w * 9) * 0.005 * (fp < 0.02 ? 1 : 0);
+  const wander =
+    noise3(u * 0.9, v * 4, w * 4) * 0.016 + noise3(u * 2.3 + 9, v * 9, w * 9) * 0.005 * (fp < 0.02 ? 1 : 0);
   const knotCell = Math.floor(u * 0.8 + Math.floor(v * 3) * 0.37);
   const knotU = (u * 0.8 + Math.floor(v * 3) * 0.37 - knotCell - 0.5) / 0.8;
   const knotV = v - (Math.floor(v * 3) + 0.5) / 3 + noise2(knotCell * 7.3, Math.floor(v * 3) * 3.1) * 0.05;
@@ -56,11 +57,18 @@ export function postColour(s) {
   const damp = smoothStep(1.25, 0.8, s.py + ragged);
   const weed = smoothStep(0.62, 0.3, s.py + ragged);
   const tuft = fbm3(s.px * 30, s.py * 9, s.pz * 30, 4, fp * 25);
-  for (const [channel, wetTone, weedTone] of [['r', 0.035, 0.022], ['g', 0.032, 0.034], ['b', 0.022, 0.01]]) {
+  for (const [channel, wetTone, weedTone] of [
+    ['r', 0.035, 0.022],
+    ['g', 0.032, 0.034],
+    ['b', 0.022, 0.01],
+  ]) {
     s[channel] = mix(s[channel], wetTone * (1 + tuft), damp * 0.75);
     s[channel] = mix(s[channel], weedTone * (1 + 2.4 * tuft), weed * 0.9);
   }
-  const shells = smoothStep(0.34, 0.5, noise3(s.px * 42, s.py * 42, s.pz * 42)) * smoothStep(1, 0.7, s.py) * smoothStep(0.25, 0.5, s.py);
+  const shells =
+    smoothStep(0.34, 0.5, noise3(s.px * 42, s.py * 42, s.pz * 42)) *
+    smoothStep(1, 0.7, s.py) *
+    smoothStep(0.25, 0.5, s.py);
   if (fp < 0.02) {
     s.r += (0.4 - s.r) * shells * 0.6;
     s.g += (0.38 - s.g) * shells * 0.6;
@@ -77,7 +85,11 @@ export function paintColour(s) {
   const streak = fbm3(s.px * 5, s.py * 0.5, s.pz * 5, 4, fp * 5);
   const chalk = fbm3(u * 1.3, v * 1.3, w * 1.3, 4, fp);
   const k = 0.9 + 0.3 * chalk + 0.22 * streak;
-  const flake = smoothStep(0.2, 0.27, fbm3(u * 2.2, v * 5, w * 5, 6, fp * 4) + 0.1 * noise3(u * 30, v * 90, w * 90));
+  const flake = smoothStep(
+    0.2,
+    0.27,
+    fbm3(u * 2.2, v * 5, w * 5, 6, fp * 4) + 0.1 * noise3(u * 30, v * 90, w * 90),
+  );
   s.r = 0.36;
   s.g = 0.33;
   s.b = 0.29;
@@ -99,7 +111,7 @@ export function paintColour(s) {
 }
 
 /** Place on the lay of a three-strand rope: 0…1 across a strand. */
-const layOf = (u, v) => (((u * 1 + v * 0.9) / 0.034) % 1 + 1) % 1;
+const layOf = (u, v) => ((((u * 1 + v * 0.9) / 0.034) % 1) + 1) % 1;
 
 export function ropeRelief(u, v, fp) {
   const across = layOf(u, v) - 0.5;

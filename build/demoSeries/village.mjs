@@ -6,8 +6,20 @@ import { placing } from './mesh.mjs';
 import { randomStream } from './seededNoise.mjs';
 import { addBox, addTube } from './solids.mjs';
 
-const walls = [[0.55, 0.5, 0.41], [0.47, 0.36, 0.27], [0.6, 0.56, 0.5], [0.42, 0.4, 0.36], [0.5, 0.33, 0.24], [0.4, 0.44, 0.45]];
-const roofs = [[0.2, 0.1, 0.065], [0.15, 0.1, 0.08], [0.12, 0.12, 0.13], [0.24, 0.13, 0.08]];
+const walls = [
+  [0.55, 0.5, 0.41],
+  [0.47, 0.36, 0.27],
+  [0.6, 0.56, 0.5],
+  [0.42, 0.4, 0.36],
+  [0.5, 0.33, 0.24],
+  [0.4, 0.44, 0.45],
+];
+const roofs = [
+  [0.2, 0.1, 0.065],
+  [0.15, 0.1, 0.08],
+  [0.12, 0.12, 0.13],
+  [0.24, 0.13, 0.08],
+];
 
 /** A face given by its corners in order. */
 function addFace(mesh, corners, kind, texture) {
@@ -27,9 +39,27 @@ function addRoof(mesh, w, h, d, rise) {
   const slope = Math.hypot(d / 2 + over, rise);
   for (const side of [-1, 1]) {
     const z = side * (d / 2 + over);
-    const corners = [[-w / 2 - over, eave, z], [w / 2 + over, eave, z], [w / 2 + over, h + rise, 0], [-w / 2 - over, h + rise, 0]];
+    const corners = [
+      [-w / 2 - over, eave, z],
+      [w / 2 + over, eave, z],
+      [w / 2 + over, h + rise, 0],
+      [-w / 2 - over, h + rise, 0],
+    ];
     if (side > 0) corners.reverse();
-    const texture = side > 0 ? [[0, slope], [w, slope], [w, 0], [0, 0]] : [[0, 0], [w, 0], [w, slope], [0, slope]];
+    const texture =
+      side > 0
+        ? [
+            [0, slope],
+            [w, slope],
+            [w, 0],
+            [0, 0],
+          ]
+        : [
+            [0, 0],
+            [w, 0],
+            [w, slope],
+            [0, slope],
+          ];
     addFace(mesh, corners, material.tile, texture);
   }
 }
@@ -42,7 +72,20 @@ function addHouse(mesh, next, w, h, d) {
   mesh.colour = kind === material.stone ? [0.36, 0.33, 0.28] : wall;
   addBox(mesh, [-w / 2, -1, -d / 2], [w / 2, h, d / 2], kind, next() * 9);
   for (const side of [-1, 1])
-    addFace(mesh, [[side * (w / 2), h, -d / 2], [side * (w / 2), h, d / 2], [side * (w / 2), h + rise, 0]], kind, [[0, h], [d, h], [d / 2, h + rise]]);
+    addFace(
+      mesh,
+      [
+        [side * (w / 2), h, -d / 2],
+        [side * (w / 2), h, d / 2],
+        [side * (w / 2), h + rise, 0],
+      ],
+      kind,
+      [
+        [0, h],
+        [d, h],
+        [d / 2, h + rise],
+      ],
+    );
   addWindows(mesh, next, w, h, d);
   mesh.colour = roofs[Math.floor(next() * roofs.length)];
   addRoof(mesh, w, h, d, rise);
@@ -51,7 +94,16 @@ function addHouse(mesh, next, w, h, d) {
     mesh.colour = [0.3, 0.17, 0.12];
     addBox(mesh, [x - 0.35, h + rise - 0.9, -0.35], [x + 0.35, h + rise + 0.9, 0.35], material.stone, 2);
     mesh.colour = [0.35, 0.2, 0.13];
-    addTube(mesh, [[x, h + rise + 0.9, 0], [x, h + rise + 1.25, 0]], 0.14, 6, material.plain);
+    addTube(
+      mesh,
+      [
+        [x, h + rise + 0.9, 0],
+        [x, h + rise + 1.25, 0],
+      ],
+      0.14,
+      6,
+      material.plain,
+    );
   }
 }
 
@@ -66,23 +118,47 @@ function addWindows(mesh, next, w, h, d) {
       const bottom = door ? 0 : y;
       const top = y + 1.25;
       mesh.colour = [0.6, 0.58, 0.52];
-      addBox(mesh, [x - half - 0.09, bottom - 0.1, -d / 2 - 0.07], [x + half + 0.09, top + 0.1, -d / 2 + 0.02], material.plain);
+      addBox(
+        mesh,
+        [x - half - 0.09, bottom - 0.1, -d / 2 - 0.07],
+        [x + half + 0.09, top + 0.1, -d / 2 + 0.02],
+        material.plain,
+      );
       mesh.colour = door ? [0.07, 0.1, 0.09] : [0.02, 0.022, 0.025];
-      addBox(mesh, [x - half, bottom, -d / 2 - 0.09], [x + half, top, -d / 2 - 0.03], door ? material.plain : material.glass);
+      addBox(
+        mesh,
+        [x - half, bottom, -d / 2 - 0.09],
+        [x + half, top, -d / 2 - 0.03],
+        door ? material.plain : material.glass,
+      );
       if (door) continue;
       mesh.colour = [0.62, 0.6, 0.55];
       addBox(mesh, [x - 0.03, bottom, -d / 2 - 0.11], [x + 0.03, top, -d / 2 - 0.08], material.plain);
-      addBox(mesh, [x - half, (bottom + top) / 2 - 0.03, -d / 2 - 0.11], [x + half, (bottom + top) / 2 + 0.03, -d / 2 - 0.08], material.plain);
+      addBox(
+        mesh,
+        [x - half, (bottom + top) / 2 - 0.03, -d / 2 - 0.11],
+        [x + half, (bottom + top) / 2 + 0.03, -d / 2 - 0.08],
+        material.plain,
+      );
       if (next() < 0.4) addShutters(mesh, next, x, bottom, top, half, d);
     }
 }
 
 function addShutters(mesh, next, x, bottom, top, half, d) {
-  mesh.colour = [[0.06, 0.12, 0.12], [0.1, 0.06, 0.045], [0.1, 0.14, 0.1]][Math.floor(next() * 3)];
+  mesh.colour = [
+    [0.06, 0.12, 0.12],
+    [0.1, 0.06, 0.045],
+    [0.1, 0.14, 0.1],
+  ][Math.floor(next() * 3)];
   for (const side of [-1, 1]) {
     const a = x + side * (half + 0.09);
     const b = a + side * 0.42;
-    addBox(mesh, [Math.min(a, b), bottom - 0.05, -d / 2 - 0.1], [Math.max(a, b), top + 0.05, -d / 2 - 0.03], material.plain);
+    addBox(
+      mesh,
+      [Math.min(a, b), bottom - 0.05, -d / 2 - 0.1],
+      [Math.max(a, b), top + 0.05, -d / 2 - 0.03],
+      material.plain,
+    );
   }
 }
 
@@ -95,8 +171,18 @@ function addChurch(mesh, next) {
   for (const x of [-8.9, -7.8]) addBox(mesh, [x, 9.6, -2.5], [x + 0.7, 11.6, -2.3], material.plain);
   mesh.colour = [0.12, 0.12, 0.13];
   const tip = [-8, 20.5, 0];
-  const base = [[-10.7, 13, -2.7], [-5.3, 13, -2.7], [-5.3, 13, 2.7], [-10.7, 13, 2.7]];
-  for (let i = 0; i < 4; i++) addFace(mesh, [base[i], base[(i + 1) % 4], tip], material.tile, [[0, 0], [5, 0], [2.5, 8]]);
+  const base = [
+    [-10.7, 13, -2.7],
+    [-5.3, 13, -2.7],
+    [-5.3, 13, 2.7],
+    [-10.7, 13, 2.7],
+  ];
+  for (let i = 0; i < 4; i++)
+    addFace(mesh, [base[i], base[(i + 1) % 4], tip], material.tile, [
+      [0, 0],
+      [5, 0],
+      [2.5, 8],
+    ]);
 }
 
 /** @param {import('./mesh.mjs').Mesh} mesh */

@@ -15,7 +15,7 @@ const nearM = 0.05;
 /** Fills one triangle, keeping the nearest. `d` grows towards the viewer and is linear on the picture. */
 export function fillTriangle(target, x0, y0, d0, x1, y1, d1, x2, y2, d2, id) {
   const area = (x1 - x0) * (y2 - y0) - (x2 - x0) * (y1 - y0);
-  if (area === 0 || area !== area) return;
+  if (!(Math.abs(area) > 0)) return;
   const yLow = Math.min(y0, y1, y2);
   const yHigh = Math.max(y0, y1, y2);
   const first = Math.max(target.top, Math.ceil(yLow - 0.5));
@@ -71,9 +71,8 @@ export function fillTriangle(target, x0, y0, d0, x1, y1, d1, x2, y2, d2, id) {
 }
 
 /** Screen place and inverse distance of every vertex, on a grid `grid` times finer than the pixels. */
-function project(mesh, camera, grid) {
+function project(mesh, camera, grid, count) {
   const { eye, right, up, forward } = camera;
-  const count = mesh.vertexCount;
   const sx = new Float32Array(count);
   const sy = new Float32Array(count);
   const inverse = new Float32Array(count);
@@ -102,46 +101,61 @@ export class Visibility {
   /**
    * @param {import('./mesh.mjs').Mesh} mesh
    * @param {import('./camera.mjs').Camera} camera
-   * @param {{ grid?: number, aboveWaterOnly?: boolean, bandRows?: number }} [options] rows in samples
+   * @param {{ grid?: number, aboveWaterOnly?: boolean, bandRows?: number, nearOnly?: boolean }} [options] rows in samples
    */
-  constructor(mesh, camera, { grid = 1, aboveWaterOnly = false, bandRows = 64 } = {}) {
+  constructor(mesh, camera, { grid = 1, aboveWaterOnly = false, bandRows = 64, nearOnly = false } = {}) {
     this.mesh = mesh;
     this.camera = camera;
     this.aboveWaterOnly = aboveWaterOnly;
     this.width = camera.widthPx * grid;
     this.height = camera.heightPx * grid;
     this.bandRows = bandRows;
-    this.projected = project(mesh, camera, grid);
+    this.triangleCount = nearOnly ? Math.min(mesh.triangleCount, mesh.nearTriangles) : mesh.triangleCount;
+    const vertexCount = nearOnly ? Math.min(mesh.vertexCount, mesh.nearVertices) : mesh.vertexCount;
+    this.projected = project(mesh, camera, grid, vertexCount);
     this.#sortIntoBands();
   }
 
-  #rowsOf(triangle) {
+  #first = 0;
+  #last = -1;
+
+  /** Finds the rows a triangle can touch; none when it is out of sight. */
+  #findRows(triangle) {
     const { corners, vertices } = this.mesh;
     const { sx, sy, inverse } = this.projected;
-    const [a, b, c] = [corners[triangle * 3], corners[triangle * 3 + 1], corners[triangle * 3 + 2]];
-    const yOf = (i) => vertices[i * floatsPerVertex + 1];
-    if (this.aboveWaterOnly && yOf(a) <= 0 && yOf(b) <= 0 && yOf(c) <= 0) return null;
+    const a = corners[triangle * 3];
+    const b = corners[triangle * 3 + 1];
+    const c = corners[triangle * 3 + 2];
+    this.#first = 0;
+    this.#last = -1;
+    if (
+      this.aboveWaterOnly &&
+      vertices[a * floatsPerVertex + 1] <= 0 &&
+      vertices[b * floatsPerVertex + 1] <= 0 &&
+      vertices[c * floatsPerVertex + 1] <= 0
+    )
+      return;
     const behind = (inverse[a] < 0 ? 1 : 0) + (inverse[b] < 0 ? 1 : 0) + (inverse[c] < 0 ? 1 : 0);
-    if (behind === 3) return null;
-    if (behind > 0) return [0, this.height - 1];
-    const left = Math.min(sx[a], sx[b], sx[c]);
-    const right = Math.max(sx[a], sx[b], sx[c]);
-    if (right < 0 || left > this.width) return null;
-    const first = Math.max(0, Math.ceil(Math.min(sy[a], sy[b], sy[c]) - 0.5));
-    const last = Math.min(this.height - 1, Math.floor(Math.max(sy[a], sy[b], sy[c]) - 0.5));
-    return first > last ? null : [first, last];
+    if (behind === 3) return;
+    if (behind === 0) {
+      if (sx[a] < 0 && sx[b] < 0 && sx[c] < 0) return;
+      if (sx[a] > this.width && sx[b] > this.width && sx[c] > this.width) return;
+      this.#first = Math.max(0, Math.ceil(Math.min(sy[a], sy[b], sy[c]) - 0.5));
+      this.#last = Math.min(this.height - 1, Math.floor(Math.max(sy[a], sy[b], sy[c]) - 0.5));
+    } else this.#last = this.height - 1;
   }
 
   #sortIntoBands() {
     const bands = Math.ceil(this.height / this.bandRows);
     const starts = new Uint32Array(bands + 1);
-    const count = this.mesh.triangleCount;
+    const count = this.triangleCount;
     const low = new Uint16Array(count);
-    const high = new Uint16Array(count).fill(0);
+    const high = new Uint16Array(count);
     for (let i = 0; i < count; i++) {
-      const rows = this.#rowsOf(i);
-      low[i] = rows ? Math.floor(rows[0] / this.bandRows) : 1;
-      high[i] = rows ? Math.floor(rows[1] / this.bandRows) : 0;
+      this.#findRows(i);
+      const seen = this.#first <= this.#last;
+      low[i] = seen ? Math.floor(this.#first / this.bandRows) : 1;
+      high[i] = seen ? Math.floor(this.#last / this.bandRows) : 0;
       for (let band = low[i]; band <= high[i]; band++) starts[band + 1]++;
     }
     for (let band = 0; band < bands; band++) starts[band + 1] += starts[band];
@@ -179,13 +193,28 @@ export class Visibility {
       const b = corners[id * 3 + 1];
       const c = corners[id * 3 + 2];
       const cut =
-        inverse[a] < 0 || inverse[b] < 0 || inverse[c] < 0 ||
+        inverse[a] < 0 ||
+        inverse[b] < 0 ||
+        inverse[c] < 0 ||
         (this.aboveWaterOnly &&
           (vertices[a * floatsPerVertex + 1] < 0 ||
             vertices[b * floatsPerVertex + 1] < 0 ||
             vertices[c * floatsPerVertex + 1] < 0));
       if (cut) this.#fillClipped(target, id, [a, b, c]);
-      else fillTriangle(target, sx[a], sy[a], inverse[a], sx[b], sy[b], inverse[b], sx[c], sy[c], inverse[c], id);
+      else
+        fillTriangle(
+          target,
+          sx[a],
+          sy[a],
+          inverse[a],
+          sx[b],
+          sy[b],
+          inverse[b],
+          sx[c],
+          sy[c],
+          inverse[c],
+          id,
+        );
     }
     return target;
   }
@@ -203,8 +232,7 @@ export class Visibility {
     polygon = clip(polygon, (p) => p[2] - nearM);
     if (this.aboveWaterOnly) polygon = clip(polygon, (p) => p[3]);
     const flat = polygon.map(([x, y, w]) => [cx + (focal * x) / w, cy - (focal * y) / w, 1 / w]);
-    for (let i = 2; i < flat.length; i++)
-      fillTriangle(target, ...flat[0], ...flat[i - 1], ...flat[i], id);
+    for (let i = 2; i < flat.length; i++) fillTriangle(target, ...flat[0], ...flat[i - 1], ...flat[i], id);
   }
 }
 

@@ -64,7 +64,11 @@ function addRainRings(rain, x, z, fp) {
     const dz = z - (j + 0.5 + noise2(i * 9.3, j * 2.1) * 0.2) * cell;
     const r = Math.hypot(dx, dz) || 1e-4;
     const front = cell * 0.42 * Math.abs(noise2(i * 5.9 + 2, j * 4.7)) * 1.8;
-    const wave = Math.sin((r - front) * 190) * Math.exp(-(((r - front) / 0.022) ** 2)) * 0.32 * smoothStep(cell * 0.5, cell * 0.3, r);
+    const wave =
+      Math.sin((r - front) * 190) *
+      Math.exp(-(((r - front) / 0.022) ** 2)) *
+      0.32 *
+      smoothStep(cell * 0.5, cell * 0.3, r);
     ringSlope[0] += (wave * dx) / r;
     ringSlope[1] += (wave * dz) / r;
   }
@@ -103,7 +107,7 @@ export function waterColour(scene, at) {
   lookSpread(scene.reflection, at, rx, ry, rz, Math.min(0.12, left * 0.7 * damp));
   const depth = scene.bedHeight ? -scene.bedHeight(px, pz) : 5;
   const clear = depth < 2 ? Math.exp(-Math.max(0, depth) * 4.5) : 0;
-  const { body, } = scene.water;
+  const { body } = scene.water;
   const sunlit = 0.35 + 0.65 * at.sunOpen;
   const silt = 0.85 + 0.3 * fbm2(px * 0.06, pz * 0.1, 3);
   const bedTone = 0.55 + 0.5 * fbm2(px * 3 + slope[0] * 2, pz * 4 + slope[1] * 2, 4, at.footprint * 3);
