@@ -1,0 +1,107 @@
+/** Ties the stores to the compositor and to the painting: one photo on one easel. */
+import { compositor } from '../compositing/compositor.ts';
+import { fitMargin, gutterLeftPx, gutterRightPx, sectionMeasures } from '../easel/stageMeasures.ts';
+import { bandSpan, layOutSection } from '../geometry/sectionLayout.ts';
+import { type PlacedView, placeView } from '../geometry/viewTransform.ts';
+import { PaintDirector } from '../painting/paintDirector.ts';
+import { forgetPresetPictures, paintPresetPictures } from '../presets/presetPictures.ts';
+import { currentLook, type Look, lookStore, strataBottomUp, strengthOf } from '../state/lookStore.ts';
+import { paintStore } from '../state/paintStore.ts';
+import { photoStore } from '../state/photoStore.ts';
+import { placedViewStore, type ViewState, viewStore } from '../state/viewStore.ts';
+
+export const director = new PaintDirector(compositor);
+
+/** The bands as they stand for a look, in device pixels. */
+export function placeBands(look: Look, view: ViewState) {
+  return layOutSection(
+    strataBottomUp.map((stratum) => ({ stratum, strength01: strengthOf(look.parameters, stratum) })),
+    sectionMeasures(view.sectionHeightPx, view.devicePixelRatio),
+  );
+}
+
+/** The sides of the bands on the stage, in device pixels. */
+export function placeBandSpan(placed: PlacedView, view: ViewState) {
+  return bandSpan(placed, photoStore.get()!, view.stage.widthPx, {
+    leftPx: Math.round(gutterLeftPx * view.devicePixelRatio),
+    rightPx: Math.round(gutterRightPx * view.devicePixelRatio),
+  });
+}
+
+let isSceneAwaited = false;
+
+function showSoon(): void {
+  if (isSceneAwaited) return;
+  isSceneAwaited = true;
+  requestAnimationFrame(() => {
+    isSceneAwaited = false;
+    showScene();
+  });
+}
+
+function showScene(): void {
+  const photo = photoStore.get();
+  const look = currentLook();
+  const view = viewStore.get();
+  const placed = placedViewStore.get();
+  if (!photo || !look || !placed || view.stage.widthPx === 0) return;
+  compositor.show({
+    photo: { widthPx: photo.widthPx, heightPx: photo.heightPx },
+    stage: view.stage,
+    section: {
+      widthPx: view.stage.widthPx,
+      heightPx: Math.round(view.sectionHeightPx * view.devicePixelRatio),
+    },
+    view: placed,
+    parameters: look.parameters,
+    bare: view.bare,
+    split01: view.split01,
+    cut01: view.cut01,
+    bands: placeBands(look, view),
+    bandSpan: placeBandSpan(placed, view),
+    shown: director.shown,
+  });
+}
+
+function placeStage(): void {
+  const photo = photoStore.get();
+  const view = viewStore.get();
+  if (!photo || view.stage.widthPx === 0) {
+    placedViewStore.set(null);
+    return;
+  }
+  const next = placeView(view.intent, photo, view.stage, fitMargin(view.devicePixelRatio));
+  const last = placedViewStore.get();
+  const isSame =
+    last?.scale === next.scale && last.originXPx === next.originXPx && last.originYPx === next.originYPx;
+  if (!isSame) placedViewStore.set(next);
+  director.setStageView({ view: next, stage: view.stage, devicePixelRatio: view.devicePixelRatio });
+}
+
+/** Starts the work; called once. */
+export function startEaselWork(): void {
+  compositor.onFailure = (message) =>
+    paintStore.update((state) => ({
+      ...state,
+      trouble: { message, remedy: 'Close the window and open it again; your changes are kept.' },
+    }));
+  director.onShown = showSoon;
+  director.onSettled = () => {
+    const photo = photoStore.get();
+    if (photo) paintPresetPictures(photo.photoId, currentLook()?.printLongEdgeMm);
+  };
+  photoStore.subscribe(() => {
+    placeStage();
+    director.setPhoto(photoStore.get());
+    if (!photoStore.get()) forgetPresetPictures();
+    showSoon();
+  });
+  lookStore.subscribe(() => {
+    director.setLook(currentLook());
+    showSoon();
+  });
+  viewStore.subscribe(() => {
+    placeStage();
+    showSoon();
+  });
+}

@@ -1,0 +1,79 @@
+import {
+  type ComposedPointer,
+  compose,
+  compositionSettingsBytes,
+  type StrataPointers,
+  writeCompositionSettings,
+} from '../../core/composition/compose.ts';
+import { createKernelMemory, instantiateKernels, type Kernels } from '../../core/kernels/module.ts';
+import type { Parameters } from '../../core/parameters/table.ts';
+import type { Strata } from '../../core/pixels/photo.ts';
+import { BlockHeap } from './blockHeap.ts';
+
+/** Turns strata into the pixels of the canvas. */
+export interface Composer {
+  /** Copies the strata into the kernels' memory. */
+  hold(strata: Strata): HeldStrata;
+}
+
+export interface HeldStrata {
+  /** Views of the kernels' memory, until `release`. */
+  readonly strata: Strata;
+  /** Interleaved R, G, B, A, straight alpha; written into `target`. */
+  compose(parameters: Parameters, target: Uint8ClampedArray): void;
+  release(): void;
+}
+
+/** Loads the kernels that the files are composed by, so that picture and file agree to the bit. */
+export async function createComposer(): Promise<Composer> {
+  const response = await fetch('/kernels.wasm');
+  if (!response.ok) throw new Error(`The kernels cannot be loaded: the host answered ${response.status}.`);
+  const module = await WebAssembly.compile(await response.arrayBuffer());
+  const memory = createKernelMemory();
+  const kernels = await instantiateKernels(module, memory);
+  const heap = new BlockHeap(memory);
+  return { hold: (strata) => holdStrata(kernels, heap, strata) };
+}
+
+function holdStrata(kernels: Kernels, heap: BlockHeap, strata: Strata): HeldStrata {
+  const count = strata.widthPx * strata.heightPx;
+  const bytesPerSample = strata.ground.BYTES_PER_ELEMENT as 1 | 2;
+  const groundPointer = heap.allocate(strata.ground.byteLength);
+  const bodyPointer = heap.allocate(strata.body.byteLength);
+  const linePointer = heap.allocate(strata.line.byteLength);
+  const outPointer = heap.allocate(count * 4);
+  const settingsPointer = heap.allocate(compositionSettingsBytes);
+  // Views stay good when shared memory grows: the old buffer is a prefix of the new one.
+  const { buffer } = heap.memory;
+  const ground =
+    bytesPerSample === 2
+      ? new Uint16Array(buffer, groundPointer, strata.ground.length)
+      : new Uint8Array(buffer, groundPointer, strata.ground.length);
+  const body = new Uint16Array(buffer, bodyPointer, strata.body.length);
+  const line = new Uint8Array(buffer, linePointer, strata.line.length);
+  ground.set(strata.ground);
+  body.set(strata.body);
+  line.set(strata.line);
+  const out = new Uint8ClampedArray(buffer, outPointer, count * 4);
+  const settings = new Float32Array(buffer, settingsPointer, compositionSettingsBytes / 4);
+  const pointers: StrataPointers = {
+    ground: groundPointer,
+    groundBytesPerSample: bytesPerSample,
+    groundChannels: strata.groundChannels,
+    body: bodyPointer,
+    line: linePointer,
+  };
+  const composed: ComposedPointer = { out: outPointer, bytesPerSample: 1, channels: 4 };
+  return {
+    strata: { ...strata, ground, body, line },
+    compose(parameters, target) {
+      writeCompositionSettings(settings, parameters);
+      compose(kernels, pointers, parameters, settingsPointer, count, composed);
+      target.set(out);
+    },
+    release() {
+      for (const pointer of [groundPointer, bodyPointer, linePointer, outPointer, settingsPointer])
+        heap.free(pointer);
+    },
+  };
+}

@@ -1,0 +1,88 @@
+/**
+ * Holds the strata and draws the picture and the Section, away from the window's own thread. Scenes that arrive
+ * while one is being drawn replace each other: only the latest is drawn.
+ */
+import { type Composer, createComposer } from './composer.ts';
+import { drawPicture, drawSection } from './drawScene.ts';
+import type { FromCompositor, PaintedPiece, PieceSlot, Scene, ToCompositor } from './messages.ts';
+import { PictureSheet } from './pictureSheet.ts';
+
+/** What a dedicated worker's global scope has and the DOM's types know as a window's. */
+const scope = self as unknown as {
+  postMessage(message: FromCompositor): void;
+  requestAnimationFrame(draw: () => void): number;
+  onmessage: ((event: MessageEvent<ToCompositor>) => void) | null;
+};
+const tell = (message: FromCompositor) => scope.postMessage(message);
+
+const ready: Promise<Composer> = createComposer();
+const sheets: Partial<Record<PieceSlot, PictureSheet>> = {};
+let pictureContext: OffscreenCanvasRenderingContext2D | null = null;
+let sectionContext: OffscreenCanvasRenderingContext2D | null = null;
+let scene: Scene | null = null;
+let isAwaitingFrame = false;
+
+function drawSoon(): void {
+  if (isAwaitingFrame) return;
+  isAwaitingFrame = true;
+  scope.requestAnimationFrame(() => {
+    isAwaitingFrame = false;
+    draw();
+  });
+}
+
+function draw(): void {
+  if (!scene || !pictureContext || !sectionContext) return;
+  const startMs = performance.now();
+  const drawn = scene.shown.map((slot) => sheets[slot]).filter((sheet) => sheet !== undefined);
+  let composed = false;
+  for (const sheet of drawn) if (!scene.bare && sheet.composePaint(scene.parameters)) composed = true;
+  drawPicture(pictureContext, scene, drawn);
+  drawSection(sectionContext, scene, drawn);
+  tell({ kind: 'drawn', sceneId: scene.id, frameMs: performance.now() - startMs, composed });
+}
+
+function replaceSheet(slot: PieceSlot, piece: PaintedPiece, composer: Composer): void {
+  const old = sheets[slot];
+  const ground = piece.strata.ground ?? old?.held.strata.ground;
+  if (!ground) throw new Error('A piece came without its ground, and none was held.');
+  // The ground may lie in the old sheet's memory: that is given back last.
+  sheets[slot] = new PictureSheet(piece, { ...piece.strata, ground }, composer);
+  old?.release();
+}
+
+function dropSheet(slot: PieceSlot): void {
+  sheets[slot]?.release();
+  delete sheets[slot];
+}
+
+// Messages that come before the kernels are loaded wait for them, in order.
+scope.onmessage = ({ data }: MessageEvent<ToCompositor>) => {
+  ready
+    .then((composer) => take(data, composer))
+    .catch((error) =>
+      tell({ kind: 'failed', message: error instanceof Error ? error.message : String(error) }),
+    );
+};
+
+function take(message: ToCompositor, composer: Composer): void {
+  switch (message.kind) {
+    case 'start':
+      pictureContext = message.picture.getContext('2d');
+      sectionContext = message.section.getContext('2d');
+      tell({ kind: 'ready' });
+      return;
+    case 'piece':
+      replaceSheet(message.slot, message.piece, composer);
+      drawSoon();
+      return;
+    case 'dropPiece':
+      dropSheet(message.slot);
+      drawSoon();
+      return;
+    case 'scene':
+      scene = message.scene;
+      drawSoon();
+      return;
+  }
+}

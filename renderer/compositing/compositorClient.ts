@@ -1,0 +1,72 @@
+import type { FromCompositor, PaintedPiece, PieceSlot, Scene, ToCompositor } from './messages.ts';
+
+/** How long the last frames took; read by the window tests and the keys sheet's foot. */
+export interface FrameTime {
+  sceneId: number;
+  frameMs: number;
+  composed: boolean;
+  /** From handing the scene over to its being drawn. */
+  latencyMs: number;
+}
+
+/** The window's end of the compositing worker. */
+export class CompositorClient {
+  private readonly worker = new Worker(new URL('./compositor.worker.ts', import.meta.url), {
+    type: 'module',
+  });
+  private readonly sentAtMs = new Map<number, number>();
+  private readonly frameListeners = new Set<(time: FrameTime) => void>();
+  private nextSceneId = 1;
+  onFailure: (message: string) => void = () => {};
+
+  constructor() {
+    this.worker.onmessage = ({ data }: MessageEvent<FromCompositor>) => this.take(data);
+    this.worker.onerror = (event) => this.onFailure(event.message || 'The picture cannot be drawn.');
+  }
+
+  start(picture: OffscreenCanvas, section: OffscreenCanvas): void {
+    this.send({ kind: 'start', picture, section }, [picture, section]);
+  }
+
+  setPiece(slot: PieceSlot, piece: PaintedPiece): void {
+    this.send({ kind: 'piece', slot, piece }, buffersOf(piece));
+  }
+
+  dropPiece(slot: PieceSlot): void {
+    this.send({ kind: 'dropPiece', slot });
+  }
+
+  show(scene: Omit<Scene, 'id'>): number {
+    const id = this.nextSceneId++;
+    this.sentAtMs.set(id, performance.now());
+    this.send({ kind: 'scene', scene: { ...scene, id } });
+    return id;
+  }
+
+  onFrame(listener: (time: FrameTime) => void): () => void {
+    this.frameListeners.add(listener);
+    return () => this.frameListeners.delete(listener);
+  }
+
+  private send(message: ToCompositor, transfer: Transferable[] = []): void {
+    this.worker.postMessage(message, transfer);
+  }
+
+  private take(message: FromCompositor): void {
+    if (message.kind === 'failed') this.onFailure(message.message);
+    if (message.kind === 'drawn') {
+      const sentAtMs = this.sentAtMs.get(message.sceneId) ?? performance.now();
+      for (const id of this.sentAtMs.keys()) if (id <= message.sceneId) this.sentAtMs.delete(id);
+      const time = { ...message, latencyMs: performance.now() - sentAtMs };
+      for (const listener of this.frameListeners) listener(time);
+    }
+  }
+}
+
+function buffersOf(piece: PaintedPiece): Transferable[] {
+  const { ground, body, line } = piece.strata;
+  const buffers = [ground?.buffer, body.buffer, line.buffer].filter(
+    (buffer) => buffer instanceof ArrayBuffer,
+  );
+  return [...new Set(buffers)];
+}

@@ -1,0 +1,46 @@
+import type { Parameters } from '../../core/parameters/table.ts';
+import type { Rect, Strata } from '../../core/pixels/photo.ts';
+import type { BandPlace } from '../geometry/sectionLayout.ts';
+import type { PlacedView, Size } from '../geometry/viewTransform.ts';
+
+/** Everything the compositing worker needs to draw one frame. Lengths are device pixels. */
+export interface Scene {
+  id: number;
+  photo: Size;
+  stage: Size;
+  section: Size;
+  view: PlacedView;
+  parameters: Parameters;
+  bare: boolean;
+  split01: number | null;
+  cut01: number;
+  bands: BandPlace[];
+  bandSpan: { leftPx: number; rightPx: number };
+  /** The pieces to draw, the lowest first. */
+  shown: readonly PieceSlot[];
+}
+
+/** Strata of a level or of a part of it, as the host painted them. */
+export interface PaintedPiece {
+  level: number;
+  region: Rect;
+  /** Without the ground where the slot already holds the same one. */
+  strata: Omit<Strata, 'ground'> & { ground: Strata['ground'] | null };
+}
+
+/**
+ * `rough` and `base` cover the whole picture, the one while the other is being painted; `detail` is what is in
+ * view when zoomed in, laid over them.
+ */
+export type PieceSlot = 'rough' | 'base' | 'detail';
+
+export type ToCompositor =
+  | { kind: 'start'; picture: OffscreenCanvas; section: OffscreenCanvas }
+  | { kind: 'piece'; slot: PieceSlot; piece: PaintedPiece }
+  | { kind: 'dropPiece'; slot: PieceSlot }
+  | { kind: 'scene'; scene: Scene };
+
+export type FromCompositor =
+  | { kind: 'ready' }
+  | { kind: 'drawn'; sceneId: number; frameMs: number; composed: boolean }
+  | { kind: 'failed'; message: string };

@@ -1,0 +1,133 @@
+import type { Recent, Session } from '../../main/host/api/hostCommands.ts';
+import { openDemo, openPhoto } from '../app/photoWork.ts';
+import { host } from '../host/host.ts';
+import { dialogStore } from '../state/panelStore.ts';
+import { openingStore, sessionStore } from '../state/photoStore.ts';
+import { useStore } from '../state/store.ts';
+import { OpeningSign } from './OpeningSign.tsx';
+
+/** The title page: open a photograph, take up an earlier one, or try the demo. */
+export function FirstScreen() {
+  const session = useStore(sessionStore);
+  const opening = useStore(openingStore);
+  const isBusy = opening.path !== null;
+  return (
+    <main className="first">
+      <div className="first-title">
+        <h1>Oxgall</h1>
+        <p>Photographs, painted for print.</p>
+        <div className="first-ways">
+          <button
+            type="button"
+            className="ink-button ink-button-large"
+            disabled={!session || isBusy}
+            onClick={() => dialogStore.set('open')}
+          >
+            Open a photograph…
+          </button>
+          {session?.demo.available && (
+            <button type="button" className="quiet-button" disabled={isBusy} onClick={() => void openDemo()}>
+              Try the demo: <cite>{session.demo.title}</cite>
+            </button>
+          )}
+        </div>
+        {session?.desktop.droppedPaths && (
+          <p className="first-drop">Or drop a photograph anywhere on this window.</p>
+        )}
+        {(isBusy || opening.trouble) && <OpeningSign opening={opening} />}
+      </div>
+      {session && <Earlier session={session} isBusy={isBusy} />}
+    </main>
+  );
+}
+
+function Earlier({ session, isBusy }: { session: Session; isBusy: boolean }) {
+  const draftPaths = new Set(session.drafts.map((draft) => draft.path));
+  const recentPaths = new Set(session.recents.map((recent) => recent.path));
+  const lost = session.drafts.filter((draft) => !recentPaths.has(draft.path));
+  if (session.recents.length + lost.length === 0)
+    return (
+      <section className="first-earlier" aria-label="Earlier photographs">
+        <p className="first-none">The photographs you open will be listed here.</p>
+      </section>
+    );
+  return (
+    <section className="first-earlier" aria-labelledby="earlier-name">
+      <h2 id="earlier-name">Lately on the easel</h2>
+      <ul>
+        {lost.map((draft) => (
+          <li key={draft.path}>
+            <button
+              type="button"
+              className="row-button row-recent"
+              disabled={isBusy || !draft.present}
+              onClick={() => void openPhoto(draft.path)}
+            >
+              <span className="recent-name">{draft.name}</span>
+              <span className="row-note">changes kept</span>
+            </button>
+          </li>
+        ))}
+        {session.recents.map((recent) => (
+          <RecentRow
+            key={recent.path}
+            recent={recent}
+            hasDraft={draftPaths.has(recent.path)}
+            isBusy={isBusy}
+          />
+        ))}
+      </ul>
+    </section>
+  );
+}
+
+interface RecentRowProps {
+  recent: Recent;
+  hasDraft: boolean;
+  isBusy: boolean;
+}
+
+function RecentRow({ recent, hasDraft, isBusy }: RecentRowProps) {
+  return (
+    <li className="recent">
+      <button
+        type="button"
+        className="row-button row-recent"
+        disabled={isBusy || !recent.present}
+        title={recent.path}
+        onClick={() => void openPhoto(recent.path)}
+      >
+        <span className="recent-name">{recent.name}</span>
+        <span className="recent-where">{recent.folder}</span>
+        <span className="row-note">
+          {recent.present ? (hasDraft ? 'changes kept' : dayInWords(recent.openedAt)) : 'no longer there'}
+        </span>
+      </button>
+      <button
+        type="button"
+        className="recent-forget"
+        title={`Take ${recent.name} off this list; the file stays`}
+        onClick={() => void forget(recent.path)}
+      >
+        Forget<span className="unseen"> {recent.name}</span>
+      </button>
+    </li>
+  );
+}
+
+async function forget(path: string): Promise<void> {
+  const { recents } = await host.call('forgetRecent', { path });
+  sessionStore.update((session) => session && { ...session, recents });
+}
+
+function dayInWords(iso: string): string {
+  const then = new Date(iso);
+  const days = Math.floor((startOfDay(new Date()) - startOfDay(then)) / 86_400_000);
+  if (days === 0) return 'today';
+  if (days === 1) return 'yesterday';
+  return then.toLocaleDateString('en-GB', { day: 'numeric', month: 'long', year: 'numeric' });
+}
+
+function startOfDay(date: Date): number {
+  return new Date(date.getFullYear(), date.getMonth(), date.getDate()).getTime();
+}

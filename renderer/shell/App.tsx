@@ -1,0 +1,39 @@
+import { Easel } from '../easel/Easel.tsx';
+import { FirstScreen } from '../opening/FirstScreen.tsx';
+import { OpenDialog } from '../opening/OpenDialog.tsx';
+import { OpeningSign } from '../opening/OpeningSign.tsx';
+import { useDrop } from '../opening/useDrop.ts';
+import { SaveDialog } from '../saving/SaveDialog.tsx';
+import { lookStore } from '../state/lookStore.ts';
+import { dialogStore } from '../state/panelStore.ts';
+import { openingStore, photoStore } from '../state/photoStore.ts';
+import { useStore } from '../state/store.ts';
+import { KeysSheet } from './KeysSheet.tsx';
+import { Notices } from './Notices.tsx';
+import { TopBar } from './TopBar.tsx';
+
+export function App() {
+  const photo = useStore(photoStore);
+  const look = useStore(lookStore, (history) => history?.present ?? null);
+  const dialog = useStore(dialogStore);
+  const opening = useStore(openingStore);
+  const isDropping = useDrop();
+  const isAtWork = photo !== null && look !== null;
+  return (
+    <div className={isDropping ? 'window window-dropping' : 'window'}>
+      {isAtWork ? (
+        <>
+          <TopBar photo={photo} />
+          <Easel photo={photo} look={look} />
+        </>
+      ) : (
+        <FirstScreen />
+      )}
+      {isAtWork && (opening.path !== null || opening.trouble !== null) && <OpeningSign opening={opening} />}
+      {dialog === 'keys' && <KeysSheet />}
+      {dialog === 'open' && <OpenDialog />}
+      {dialog === 'save' && isAtWork && <SaveDialog photo={photo} look={look} />}
+      <Notices />
+    </div>
+  );
+}

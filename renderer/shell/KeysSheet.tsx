@@ -1,0 +1,54 @@
+import { dialogStore } from '../state/panelStore.ts';
+import { Dialog } from './Dialog.tsx';
+import { keyCommands } from './keyCommands.ts';
+
+/** Keys that belong to a place rather than to a command. */
+const placeKeys: readonly { keys: string; does: string }[] = [
+  { keys: 'Arrows, on the picture', does: 'Move the picture' },
+  { keys: 'Arrows, on the cut’s handle', does: 'Move the cut; with Shift, farther' },
+  { keys: 'Arrows, on a band’s edge', does: 'Change its strength' },
+  { keys: 'Shift and Enter, on a band’s name', does: 'Lift the band off, or lay it down again' },
+  { keys: 'Delete, on a control', does: 'Back to the preset’s value' },
+  { keys: 'Up and Down, in a value', does: 'One step; with Shift, ten' },
+];
+
+export function KeysSheet() {
+  return (
+    <Dialog title="Keys" className="keys-sheet" onClose={() => dialogStore.set('none')}>
+      <section
+        className="keys-scroll"
+        // biome-ignore lint/a11y/noNoninteractiveTabindex: a page that scrolls must be scrollable by keys
+        tabIndex={0}
+        aria-label="List of keys"
+      >
+        <table>
+          <thead className="unseen">
+            <tr>
+              <th scope="col">Keys</th>
+              <th scope="col">What they do</th>
+            </tr>
+          </thead>
+          <tbody>
+            {keyCommands.map(({ shown, does }) => (
+              <tr key={does}>
+                <th scope="row">{shown}</th>
+                <td>{does}</td>
+              </tr>
+            ))}
+            {placeKeys.map(({ keys, does }) => (
+              <tr key={does}>
+                <th scope="row">{keys}</th>
+                <td>{does}</td>
+              </tr>
+            ))}
+          </tbody>
+        </table>
+        <p className="keys-mouse">
+          With the mouse: the wheel zooms at the pointer, a drag moves the picture; scroll over a band or pull
+          its edge to change its strength; Shift and click its name to lift it; double click a control to go
+          back to the preset’s value.
+        </p>
+      </section>
+    </Dialog>
+  );
+}

@@ -1,0 +1,24 @@
+import type { Trouble } from '../host/host.ts';
+import { createStore } from './store.ts';
+
+/** What the painting is doing. `rough` means that a coarse picture stands in for the sharp one. */
+export interface PaintState {
+  busy: 'no' | 'rough' | 'sharp' | 'detail';
+  /** The picture shown is coarser than the view asks for. */
+  isRough: boolean;
+  /** The user stopped the work; it goes on at the next change. */
+  stopped: boolean;
+  trouble: Trouble | null;
+  /** Counts pieces shown, for tests that wait for the picture. */
+  shownCount: number;
+}
+
+export const idlePaint: PaintState = {
+  busy: 'no',
+  isRough: false,
+  stopped: false,
+  trouble: null,
+  shownCount: 0,
+};
+
+export const paintStore = createStore<PaintState>(idlePaint);
