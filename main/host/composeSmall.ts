@@ -15,9 +15,9 @@ const alignmentBytes = 16;
  * preview and the file. Not for more: it runs on the thread that answers the window.
  */
 export async function loadComposeSmall(): Promise<ComposeSmall> {
-  const memory = createKernelMemory(1);
+  const memory = createKernelMemory();
   const kernels = await instantiateKernels(await loadKernelModule(), memory);
-  // The module's own constants lie at the start of the memory; pages added by us lie behind them.
+  // The module's own constants lie at the start of the memory; what it works on is put behind them.
   const startBytes = memory.buffer.byteLength;
   return async (strata, parameters) => {
     const count = strata.widthPx * strata.heightPx;
