@@ -61,12 +61,12 @@ export function findElectron(folder = electronFolder, environment = process.env)
 }
 
 /** Lets the package fetch its binary, within a time limit; a failure is remembered so that it costs time once. */
-async function fetchElectron() {
+async function fetchElectron(again) {
   const installer = join(electronFolder, 'install.js');
   if (!existsSync(installer)) return 'Electron is not installed';
   const { version } = JSON.parse(readFileSync(join(electronFolder, 'package.json'), 'utf8'));
-  if (existsSync(triedNote) && JSON.parse(readFileSync(triedNote, 'utf8')).version === version)
-    return 'Electron could not be fetched earlier';
+  if (!again && existsSync(triedNote) && JSON.parse(readFileSync(triedNote, 'utf8')).version === version)
+    return 'Electron could not be fetched earlier (OXGALL_SHELL=electron tries again)';
   const fetched = await finishes(spawn(process.execPath, [installer], { stdio: 'ignore' }), fetchTimeoutMs);
   if (fetched && findElectron()) return null;
   mkdirSync(dirname(triedNote), { recursive: true });
@@ -104,7 +104,7 @@ async function chooseShell(environment) {
     return { electron: null, why: 'there is no display for Electron' };
   const found = findElectron();
   if (found) return { electron: found, why: 'its binary is installed' };
-  const whyNot = await fetchElectron();
+  const whyNot = await fetchElectron(wanted === 'electron');
   return whyNot
     ? { electron: null, why: whyNot }
     : { electron: findElectron(), why: 'its binary was fetched' };

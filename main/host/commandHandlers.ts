@@ -85,6 +85,13 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
   };
 }
 
+const warmUpAfterMs = 200;
+
+/** A part that cannot be loaded says so when it is needed. */
+async function warmUp(parts: HostState['parts']): Promise<void> {
+  await Promise.allSettled([parts.loadFiles(), parts.loadEngine(), parts.loadComposeSmall()]);
+}
+
 async function startSession(state: HostState): Promise<Session> {
   const { parts, recents, drafts } = state;
   const [presets, recentList, draftList] = await Promise.all([
@@ -96,6 +103,8 @@ async function startSession(state: HostState): Promise<Session> {
   for (const { path } of [...recentList, ...draftList]) allowOpening(state, path);
   const { opening } = state;
   state.opening = null;
+  // The window is up: what the first photo needs is loaded while the user looks for it.
+  setTimeout(() => void warmUp(parts), warmUpAfterMs).unref();
   return {
     appVersion: parts.appVersion,
     engineVersion: String(engineVersion),

@@ -25,8 +25,6 @@ export interface Host {
   /** A file dropped on the window: it may be opened from now on. */
   allowDropped(path: string): void;
   menu(command: MenuCommand): void;
-  /** Loads what the first photo will need, so that it need not wait; never fails. */
-  warmUp(): Promise<void>;
   /** Cancels what is under way and gives everything back; drafts are on the disk when it resolves. */
   close(): Promise<void>;
 }
@@ -73,9 +71,6 @@ export function createHost(parts: HostParts): Host {
     offerPath: (path) => offerPath(state, path),
     allowDropped: (path) => allowOpening(state, path),
     menu: (command) => events.send('menu', { command }),
-    warmUp: async () => {
-      await Promise.allSettled([parts.loadFiles(), parts.loadEngine(), parts.loadComposeSmall()]);
-    },
     close: () => closeHost(state),
   };
 }

@@ -27,6 +27,8 @@ async function main(): Promise<void> {
     ending ??= (async () => {
       window?.close();
       await host.close();
+      // The browser's throw-away profile goes with its window.
+      await window?.closed;
       await server.close();
       await parts.closeEngine();
     })();

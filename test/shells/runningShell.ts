@@ -10,6 +10,8 @@ const root = join(import.meta.dirname, '../..');
 
 /** The built program, running for real. */
 export interface RunningShell {
+  /** Lets one window in; used up already unless asked not to enter. */
+  address: string;
   caller: HostCaller<HostCommands>;
   /** Milliseconds from its start to its address. */
   readyMs: number;
@@ -23,10 +25,14 @@ export interface RunningShell {
   end(): Promise<number | null>;
 }
 
-/** Starts the built loopback shell without a window. */
+/**
+ * Starts the built loopback shell without a window.
+ * @param options.enter whether to use its one-time address, so that `caller` may speak to it
+ */
 export async function startLoopbackShell(
   given: string[] = [],
   environment: Record<string, string> = {},
+  { enter = true } = {},
 ): Promise<RunningShell> {
   const dataFolder = environment.OXGALL_DATA ?? (await mkdtemp(join(tmpdir(), 'oxgall-data-')));
   const started = performance.now();
@@ -37,8 +43,8 @@ export async function startLoopbackShell(
   const address = await firstAddress(child);
   const readyMs = performance.now() - started;
   const { origin } = new URL(address);
-  const opened = await fetch(address, { redirect: 'manual' });
-  const cookie = (opened.headers.get('set-cookie') ?? '').split(';')[0];
+  const opened = enter ? await fetch(address, { redirect: 'manual' }) : null;
+  const cookie = (opened?.headers.get('set-cookie') ?? '').split(';')[0];
   const send = (request: Request) => {
     request.headers.set('cookie', cookie);
     request.headers.set('origin', origin);
@@ -46,6 +52,7 @@ export async function startLoopbackShell(
   };
   const gone = once(child, 'exit');
   return {
+    address,
     caller: createHostCaller<HostCommands>({ fetch: send, base: origin }),
     readyMs,
     child,
