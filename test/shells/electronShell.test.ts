@@ -19,7 +19,6 @@ afterEach(async () => {
   process.argv = argv;
   vi.unstubAllEnvs();
   vi.resetModules();
-  vi.doUnmock('electron');
   await rm(folder, { recursive: true, force: true });
 });
 
