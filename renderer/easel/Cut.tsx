@@ -5,6 +5,10 @@ import { toSource } from '../geometry/viewTransform.ts';
 import { useStore } from '../state/store.ts';
 import { changeView, placedViewStore, viewStore } from '../state/viewStore.ts';
 
+/** How far out a handle stands, and how near the stage's edge it may come. */
+const handleReachPx = 32;
+const handleInsetPx = 4;
+
 /** Hairline across the picture: the Section below shows what lies along it. */
 export function Cut({ photo }: { photo: OpenedPhoto }) {
   const placed = useStore(placedViewStore);
@@ -14,6 +18,9 @@ export function Cut({ photo }: { photo: OpenedPhoto }) {
   const yPx = cutViewY(cut01, placed, photo) / ratio;
   const leftPx = Math.max(0, placed.originXPx / ratio);
   const rightPx = Math.min(stage.widthPx, placed.originXPx + photo.widthPx * placed.scale) / ratio;
+  // Beside the picture where there is room, else just inside the stage's edge.
+  const reachLeftPx = Math.min(handleReachPx, leftPx - handleInsetPx);
+  const reachRightPx = Math.min(handleReachPx, stage.widthPx / ratio - rightPx - handleInsetPx);
   const percent = Math.round(cut01 * 100);
 
   const moveTo = (clientY: number) => {
@@ -61,7 +68,8 @@ export function Cut({ photo }: { photo: OpenedPhoto }) {
         onPointerMove={onPointerMove}
       />
       <div
-        className="cut-handle cut-handle-left"
+        className="cut-handle"
+        style={{ left: `${-reachLeftPx}px` }}
         role="slider"
         tabIndex={0}
         title="The cut: drag it, or use the arrow keys"
@@ -76,7 +84,8 @@ export function Cut({ photo }: { photo: OpenedPhoto }) {
         onKeyDown={onKeyDown}
       />
       <div
-        className="cut-handle cut-handle-right"
+        className="cut-handle"
+        style={{ right: `${-reachRightPx}px` }}
         aria-hidden="true"
         onPointerDown={onPointerDown}
         onPointerMove={onPointerMove}

@@ -22,14 +22,17 @@ export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListP
         setListing(next);
         setTrouble(null);
         onFolder?.(next);
+        return true;
       } catch (error) {
         setTrouble(troubleOf(error));
+        return false;
       }
     },
     [onFolder],
   );
   useEffect(() => {
-    void show(startPath);
+    // The folder to start from may be gone, or never have been shown: then home is where to begin.
+    void show(startPath).then((isShown) => isShown || (startPath && show()));
   }, [show, startPath]);
   if (!listing) return <p className="folder-wait">{trouble ? trouble.message : 'Reading the folder…'}</p>;
   return (

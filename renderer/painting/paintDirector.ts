@@ -145,6 +145,7 @@ export class PaintDirector {
     this.roughAgain = false;
     void this.run('rough', this.wantedBase).then(() => {
       if (this.roughAgain) this.startRough();
+      else this.settle();
     });
   }
 

@@ -73,6 +73,7 @@ export function SaveDialog({ photo, look }: { photo: OpenedPhoto; look: Look }) 
             <span className="field-name">
               <input
                 type="text"
+                data-first
                 required
                 maxLength={180}
                 value={name}
@@ -220,7 +221,7 @@ function Saved({ saved, onClose }: { saved: SavedPainting; onClose: () => void }
             Show the file
           </button>
         )}
-        <button type="button" className="ink-button" onClick={onClose}>
+        <button type="button" className="ink-button" data-first onClick={onClose}>
           Back to the easel
         </button>
       </div>

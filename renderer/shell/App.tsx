@@ -5,6 +5,7 @@ import { OpeningSign } from '../opening/OpeningSign.tsx';
 import { useDrop } from '../opening/useDrop.ts';
 import { SaveDialog } from '../saving/SaveDialog.tsx';
 import { lookStore } from '../state/lookStore.ts';
+import { paintStore } from '../state/paintStore.ts';
 import { dialogStore } from '../state/panelStore.ts';
 import { openingStore, photoStore } from '../state/photoStore.ts';
 import { useStore } from '../state/store.ts';
@@ -18,9 +19,14 @@ export function App() {
   const dialog = useStore(dialogStore);
   const opening = useStore(openingStore);
   const isDropping = useDrop();
+  const paint = useStore(paintStore);
   const isAtWork = photo !== null && look !== null;
   return (
-    <div className={isDropping ? 'window window-dropping' : 'window'}>
+    <div
+      className={isDropping ? 'window window-dropping' : 'window'}
+      data-painting={paint.busy}
+      data-rough={paint.isRough}
+    >
       {isAtWork ? (
         <>
           <TopBar photo={photo} />

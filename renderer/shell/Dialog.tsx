@@ -14,6 +14,7 @@ export function Dialog({ title, onClose, children, className }: DialogProps) {
   useEffect(() => {
     const element = dialog.current;
     if (element && !element.open) element.showModal();
+    element?.querySelector<HTMLElement>('[data-first]')?.focus();
     return () => element?.close();
   }, []);
   return (

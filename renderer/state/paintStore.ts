@@ -15,7 +15,7 @@ export interface PaintState {
 
 export const idlePaint: PaintState = {
   busy: 'no',
-  isRough: false,
+  isRough: true,
   stopped: false,
   trouble: null,
   shownCount: 0,
