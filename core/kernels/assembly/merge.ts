@@ -19,6 +19,23 @@ export function mergeTable(table: usize): void {
   }
 }
 
+/** Distance in bytes to coarse neighbour `n` of 3 × 3 from the first of them. */
+// @ts-ignore: decorator
+@inline
+function placeOf(n: i32, coarseRowBytes: usize): usize {
+  return <usize>(n / 3) * coarseRowBytes + (<usize>(n % 3) << 4);
+}
+
+/** |g − F'|² of four pixels to one coarse pixel. */
+// @ts-ignore: decorator
+@inline
+function distanceTo(from: usize, r: v128, g: v128, b: v128): v128 {
+  const dr = f32x4.sub(r, v128.load32_splat(from)),
+    dg = f32x4.sub(g, v128.load32_splat(from, 4)),
+    db = f32x4.sub(b, v128.load32_splat(from, 8));
+  return f32x4.add(f32x4.mul(dr, dr), f32x4.add(f32x4.mul(dg, dg), f32x4.mul(db, db)));
+}
+
 /**
  * x = β·u + (1−β)·g: u is the coarser level brought up along g's edges, β = 1/(1+(min|g−F'|²/hold²)²).
  * @param fine g, quad tile
@@ -59,27 +76,24 @@ export function merge(
       const r = channelOf4(p0, p1, p2, p3, 0);
       const g = channelOf4(p0, p1, p2, p3, 1);
       const b = channelOf4(p0, p1, p2, p3, 2);
-      let weightSum = f32x4.splat(1e-30);
-      let ur = f32x4.mul(r, weightSum),
-        ug = f32x4.mul(g, weightSum),
-        ub = f32x4.mul(b, weightSum);
       let least = f32x4.splat(1e9);
       for (let n = 0; n < 9; n++) {
-        const from = near + <usize>(n / 3) * coarseRowBytes + ((<usize>(n % 3)) << 4);
-        const cr = v128.load32_splat(from),
-          cg = v128.load32_splat(from, 4),
-          cb = v128.load32_splat(from, 8);
-        const dr = f32x4.sub(r, cr),
-          dg = f32x4.sub(g, cg),
-          db = f32x4.sub(b, cb);
-        const distance = f32x4.add(f32x4.mul(dr, dr), f32x4.add(f32x4.mul(dg, dg), f32x4.mul(db, db)));
+        least = f32x4.pmin(least, distanceTo(near + placeOf(n, coarseRowBytes), r, g, b));
+      }
+      let weightSum = f32x4.splat(0);
+      let ur = weightSum,
+        ug = weightSum,
+        ub = weightSum;
+      for (let n = 0; n < 9; n++) {
+        const from = near + placeOf(n, coarseRowBytes);
         // Relative to the nearest of the nine, so that the sum never vanishes.
-        const exponent = f32x4.max(f32x4.mul(f32x4.sub(distance, least), sharpness), f32x4.splat(-120));
+        const apart = f32x4.sub(distanceTo(from, r, g, b), least);
+        const exponent = f32x4.pmax(f32x4.mul(apart, sharpness), f32x4.splat(-120));
         const weight = f32x4.mul(exp2x4(exponent), v128.load(table + <usize>(n << 4)));
         weightSum = f32x4.add(weightSum, weight);
-        ur = f32x4.add(ur, f32x4.mul(weight, cr));
-        ug = f32x4.add(ug, f32x4.mul(weight, cg));
-        ub = f32x4.add(ub, f32x4.mul(weight, cb));
+        ur = f32x4.add(ur, f32x4.mul(weight, v128.load32_splat(from)));
+        ug = f32x4.add(ug, f32x4.mul(weight, v128.load32_splat(from, 4)));
+        ub = f32x4.add(ub, f32x4.mul(weight, v128.load32_splat(from, 8)));
       }
       const scale = f32x4.div(one, weightSum);
       const strain = f32x4.mul(least, holdScale);
