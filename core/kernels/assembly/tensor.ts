@@ -64,7 +64,8 @@ export function blockTensor(
  * flat areas take their orientation from the larger forms around them.
  * @param e @param f @param g planes of blocksX × blocksY, changed in place
  * @param coarse three planes one after the other, each coarseWidth × coarseHeight
- * @param x0 @param y0 the first block's place in this level's whole grid of blocks
+ * @param x0 @param y0 the first block's place in this level's whole grid of blocks; it may lie outside, where the
+ *   coarser level's edge is repeated
  */
 export function addCoarseTensor(
   e: usize, f: usize, g: usize, stride: i32, blocksX: i32, blocksY: i32,
@@ -73,15 +74,15 @@ export function addCoarseTensor(
   const plane = <usize>(coarseWidth * coarseHeight) << 2;
   for (let by = 0; by < blocksY; by++) {
     const Y = y0 + by;
-    const nearY = min(Y >> 1, coarseHeight - 1);
-    const farY = max(0, min((Y & 1) == 0 ? nearY - 1 : nearY + 1, coarseHeight - 1));
+    const nearY = inside(Y >> 1, coarseHeight);
+    const farY = inside((Y >> 1) + ((Y & 1) == 0 ? -1 : 1), coarseHeight);
     const nearRow = coarse + (<usize>(nearY * coarseWidth) << 2);
     const farRow = coarse + (<usize>(farY * coarseWidth) << 2);
     let out = <usize>(by * stride) << 2;
     for (let bx = 0; bx < blocksX; bx++, out += 4) {
       const X = x0 + bx;
-      const nearX = min(X >> 1, coarseWidth - 1);
-      const farX = max(0, min((X & 1) == 0 ? nearX - 1 : nearX + 1, coarseWidth - 1));
+      const nearX = inside(X >> 1, coarseWidth);
+      const farX = inside((X >> 1) + ((X & 1) == 0 ? -1 : 1), coarseWidth);
       const nn = nearRow + (<usize>nearX << 2), nf = nearRow + (<usize>farX << 2);
       const fn = farRow + (<usize>nearX << 2), ff = farRow + (<usize>farX << 2);
       store<f32>(e + out, load<f32>(e + out) + upsampled(nn, nf, fn, ff));
@@ -89,6 +90,12 @@ export function addCoarseTensor(
       store<f32>(g + out, load<f32>(g + out) + upsampled(nn + 2 * plane, nf + 2 * plane, fn + 2 * plane, ff + 2 * plane));
     }
   }
+}
+
+// @ts-ignore: decorator
+@inline
+function inside(v: i32, count: i32): i32 {
+  return max(0, min(v, count - 1));
 }
 
 // @ts-ignore: decorator
