@@ -196,6 +196,28 @@ export interface Kernels {
     dst: number,
     dstStride: number,
   ): void;
+  packPairs(src: number, stride: number, width: number, height: number, dst: number): void;
+  buildFixedBank(
+    radiusPx: number,
+    pull: number,
+    strideElements: number,
+    bank: number,
+    scratch: number,
+  ): number;
+  grainWiseFixed(
+    src: number,
+    srcStride: number,
+    blocksX: number,
+    blocksY: number,
+    numbers: number,
+    numbersStride: number,
+    bank: number,
+    noiseFloor: number,
+    crispness: number,
+    scratch: number,
+    dst: number,
+    dstStride: number,
+  ): void;
   clearNumbers(numbers: number, count: number): void;
   lumaFromBody(
     body: number,

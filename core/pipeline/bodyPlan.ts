@@ -85,6 +85,13 @@ export function passHaloPx(plan: BodyPlan): number {
   return 2 * Math.ceil(Math.max(reachPx, grainHaloPx) / 2);
 }
 
+/**
+ * Least noise floor for which a pass is smoothed in fixed point. Its squares are rounded to steps of 1.1e-5, which
+ * a window averages down to about 1e-6: well below the square of this floor. Coarser levels, with lower floors
+ * and few pixels, are smoothed in floating point.
+ */
+export const leastFixedPointFloor = 0.002;
+
 /** Gaussian radius of the block tensor, in blocks of two pixels: 3σ for σ = 1 block = 2 px. */
 export const grainRadiusBlocks = 3;
 /** Pixels around a tile that its grain reads, rounded up to even. */

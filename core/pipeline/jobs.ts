@@ -55,8 +55,12 @@ export interface PaintJob {
   tensorOut: TensorPlanes | null;
   haloPx: number;
   strideElements: number;
+  /** Smooths in fixed point, with a bank made for that. */
+  isFixedPoint: boolean;
   /** Kernel bank for `strideElements`, or the bilateral table. */
   bank: number;
+  /** Entries of the bilateral table. */
+  bilateralEntries: number;
   mergeTable: number;
   gaussianTable: number;
   radiusPx: number;
@@ -72,6 +76,7 @@ export interface TablesJob {
   radiusPx: number;
   pull: number;
   strideElements: number;
+  isFixedPoint: boolean;
   bank: number;
   mergeTable: number;
   gaussianTable: number;

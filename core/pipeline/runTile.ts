@@ -108,7 +108,8 @@ function makeGround(kernels: Kernels, job: GroundJob, rect: Rect): void {
 }
 
 function buildTables(kernels: Kernels, job: TablesJob, scratch: number): void {
-  if (job.bank) kernels.buildBank(job.radiusPx, job.pull, job.strideElements, job.bank, scratch);
+  const buildBank = job.isFixedPoint ? kernels.buildFixedBank : kernels.buildBank;
+  if (job.bank) buildBank(job.radiusPx, job.pull, job.strideElements, job.bank, scratch);
   // σ = 2 px is one block of two pixels.
   if (job.gaussianTable) kernels.gaussianTable(1, 3, job.gaussianTable);
   if (job.mergeTable) kernels.mergeTable(job.mergeTable);

@@ -6,6 +6,8 @@ import { evenUp, type PaintJob } from './jobs.ts';
 export interface PaintScratch {
   /** Source tile with both halos. */
   source: number;
+  /** Whatever is smoothed next, in fixed point. */
+  packed: number;
   /** This level's own paint and, in place, what it becomes once merged. */
   merged: number;
   /** Coarser level around the tile. */
@@ -43,7 +45,9 @@ export function layOutScratch(kernels: Kernels, job: PaintJob, base: number): Pa
     at = align(at + bytes);
     return start;
   };
-  const source = take(strideElements * (job.coarse ? outerHeight + 2 * haloPx : outerHeight) * 16);
+  const sourceBytes = strideElements * (job.coarse ? outerHeight + 2 * haloPx : outerHeight) * 16;
+  const source = take(sourceBytes);
+  const packed = job.isFixedPoint ? take(sourceBytes) : 0;
   const merged = job.coarse ? take(strideElements * outerHeight * 16) : 0;
   const coarseStride = (widthPx + 2 * haloPx) / 2 + 2;
   const coarse = job.coarse ? take(coarseStride * (outerHeight / 2 + 2) * 16) : 0;
@@ -60,6 +64,7 @@ export function layOutScratch(kernels: Kernels, job: PaintJob, base: number): Pa
   const work = take(workBytes(kernels, job, widthPx, heightPx));
   return {
     source,
+    packed,
     merged,
     coarse,
     coarseStride,

@@ -157,6 +157,7 @@ function roundAll<T extends Record<string, number>>(times: T): T {
 }
 
 interface PaintReport {
+  [detail: string]: unknown;
   photo: string;
   output: string;
   width: number;

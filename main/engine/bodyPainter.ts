@@ -1,5 +1,5 @@
 import type { Kernels } from '../../core/kernels/module.ts';
-import { type BodyPlan, passHaloPx } from '../../core/pipeline/bodyPlan.ts';
+import { type BodyPlan, leastFixedPointFloor, passHaloPx } from '../../core/pipeline/bodyPlan.ts';
 import {
   type Destination,
   evenUp,
@@ -8,6 +8,7 @@ import {
   type TensorPlanes,
   type TileGrid,
 } from '../../core/pipeline/jobs.ts';
+import { closingFloorShare } from '../../core/pipeline/paintTile.ts';
 import { layOutScratch } from '../../core/pipeline/scratch.ts';
 import type { Rect } from '../../core/pixels/photo.ts';
 import { CoarseLevel } from './coarseLevel.ts';
@@ -192,7 +193,9 @@ export class BodyPainter {
         : passHaloPx(plan);
     // One stride for every pass of a plan: the bank's distances hold for it.
     const strideElements = this.tileSize.widthPx + 4 * haloPx;
-    const tables: Tables = await this.tables.get(plan, strideElements, options.signal);
+    const leastFloor = pass.noiseFloor * (pass.coarse ? closingFloorShare : 1);
+    const isFixedPoint = leastFloor >= leastFixedPointFloor;
+    const tables: Tables = await this.tables.get(plan, strideElements, isFixedPoint, options.signal);
     const job: PaintJob = {
       kind: 'paint',
       grid,
@@ -204,7 +207,9 @@ export class BodyPainter {
       tensorOut: pass.tensorOut,
       haloPx,
       strideElements,
+      isFixedPoint,
       bank: tables.bank,
+      bilateralEntries: tables.bilateralEntries,
       mergeTable: tables.mergeTable,
       gaussianTable: tables.gaussianTable,
       radiusPx: plan.radiusPx,

@@ -1,5 +1,6 @@
 import type { Kernels } from '../../core/kernels/module.ts';
 import type { BodyPlan } from '../../core/pipeline/bodyPlan.ts';
+import type { TablesJob } from '../../core/pipeline/jobs.ts';
 import type { SharedHeap } from './sharedHeap.ts';
 import type { WorkerPool } from './workerPool.ts';
 
@@ -8,6 +9,12 @@ export interface Tables {
   bank: number;
   mergeTable: number;
   gaussianTable: number;
+  bilateralEntries: number;
+}
+
+interface Bank {
+  pointer: number;
+  entries: number;
 }
 
 /** Banks kept: the plans of one photo at its few preview levels share theirs. */
@@ -15,7 +22,7 @@ const banksKept = 6;
 
 /** Builds tables in the shared memory and keeps the last few: a bank takes some ten milliseconds. */
 export class TableStore {
-  readonly #banks = new Map<string, { pointer: number; bytes: number }>();
+  readonly #banks = new Map<string, Bank>();
   #fixed: { mergeTable: number; gaussianTable: number } | null = null;
 
   constructor(
@@ -24,46 +31,82 @@ export class TableStore {
     readonly kernels: Kernels,
   ) {}
 
-  /** The tables of a plan for tiles of one row stride. */
-  async get(plan: BodyPlan, strideElements: number, signal?: AbortSignal): Promise<Tables> {
+  /**
+   * The tables of a plan for tiles of one row stride.
+   * @param isFixedPoint whether the bank is for the fixed-point smoothing
+   */
+  async get(
+    plan: BodyPlan,
+    strideElements: number,
+    isFixedPoint: boolean,
+    signal?: AbortSignal,
+  ): Promise<Tables> {
     const fixed = await this.#fixedTables();
-    return { ...fixed, bank: await this.#bankFor(plan, strideElements, signal) };
+    if (plan.method === 'quadrant') return { ...fixed, bank: 0, bilateralEntries: 0 };
+    const { pointer, entries } =
+      plan.method === 'bilateral'
+        ? this.#bilateralTable(plan)
+        : await this.#bankFor(plan, strideElements, isFixedPoint, signal);
+    return { ...fixed, bank: pointer, bilateralEntries: entries };
   }
 
   async #fixedTables() {
     if (this.#fixed) return this.#fixed;
     const tables = { mergeTable: this.heap.allocate(9 * 16), gaussianTable: this.heap.allocate(64) };
-    await this.#build({ radiusPx: 0, pull: 0, strideElements: 0, bank: 0, ...tables }, 0);
+    const noBank = { radiusPx: 0, pull: 0, strideElements: 0, isFixedPoint: false, bank: 0 };
+    await this.#build({ ...noBank, ...tables }, 0);
     this.#fixed = tables;
     return tables;
   }
 
-  async #bankFor(plan: BodyPlan, strideElements: number, signal?: AbortSignal): Promise<number> {
-    if (plan.method === 'quadrant') return 0;
+  /** A few hundred numbers: made on this thread. */
+  #bilateralTable({ radiusPx }: BodyPlan): Bank {
+    const key = `bilateral ${radiusPx}`;
+    const found = this.#recall(key);
+    if (found) return found;
+    const pointer = this.heap.allocate(this.kernels.bilateralTableBytes(radiusPx));
+    const bank = { pointer, entries: this.kernels.bilateralTable(radiusPx, pointer) };
+    this.#banks.set(key, bank);
+    return bank;
+  }
+
+  async #bankFor(
+    plan: BodyPlan,
+    strideElements: number,
+    isFixedPoint: boolean,
+    signal?: AbortSignal,
+  ): Promise<Bank> {
     const { radiusPx, pull } = plan;
-    const isBilateral = plan.method === 'bilateral';
-    const key = isBilateral ? `bilateral ${radiusPx}` : `${radiusPx} ${pull} ${strideElements}`;
+    const key = `${radiusPx} ${pull} ${strideElements} ${isFixedPoint}`;
+    const found = this.#recall(key);
+    if (found) return found;
+    const pointer = this.heap.allocate(this.kernels.bankBytes(radiusPx, pull));
+    const tables = { bank: pointer, mergeTable: 0, gaussianTable: 0 };
+    try {
+      const scratchBytes = this.kernels.bankScratchBytes(radiusPx, pull);
+      await this.#build({ radiusPx, pull, strideElements, isFixedPoint, ...tables }, scratchBytes, signal);
+    } catch (error) {
+      this.heap.free(pointer);
+      throw error;
+    }
+    // Two paintings may have built the same bank at once: keep the first.
+    const first = this.#banks.get(key);
+    if (first) {
+      this.heap.free(pointer);
+      return first;
+    }
+    const bank = { pointer, entries: 0 };
+    this.#banks.set(key, bank);
+    return bank;
+  }
+
+  /** A bank that is there already, now the one used last. */
+  #recall(key: string): Bank | undefined {
     const found = this.#banks.get(key);
-    if (found) {
-      this.#banks.delete(key);
-      this.#banks.set(key, found);
-      return found.pointer;
-    }
-    const bytes = isBilateral
-      ? this.kernels.bilateralTableBytes(radiusPx)
-      : this.kernels.bankBytes(radiusPx, pull);
-    const pointer = this.heap.allocate(bytes);
-    if (!isBilateral) {
-      const build = { radiusPx, pull, strideElements, bank: pointer, mergeTable: 0, gaussianTable: 0 };
-      try {
-        await this.#build(build, this.kernels.bankScratchBytes(radiusPx, pull), signal);
-      } catch (error) {
-        this.heap.free(pointer);
-        throw error;
-      }
-    }
-    this.#banks.set(key, { pointer, bytes });
-    return pointer;
+    if (!found) return undefined;
+    this.#banks.delete(key);
+    this.#banks.set(key, found);
+    return found;
   }
 
   /** Called between paintings: drops the banks that have not been used for longest. */
@@ -75,11 +118,7 @@ export class TableStore {
     }
   }
 
-  #build(
-    tables: Tables & { radiusPx: number; pull: number; strideElements: number },
-    scratchBytes: number,
-    signal?: AbortSignal,
-  ) {
+  #build(tables: Omit<TablesJob, 'kind' | 'grid'>, scratchBytes: number, signal?: AbortSignal) {
     const grid = { xPx: 0, yPx: 0, widthPx: 1, heightPx: 1, tileWidthPx: 1, tileHeightPx: 1 };
     return this.pool.run({ kind: 'tables', grid, ...tables }, { scratchBytes, signal });
   }

@@ -114,3 +114,64 @@ export function buildBank(radiusPx: f64, pull: f64, strideElements: i32, bank: u
   }
   return entry;
 }
+
+/** Weights of a sector in the fixed-point bank add up to this. */
+export const fixedWeightSum: i32 = 32767;
+
+/**
+ * Builds the bank for the fixed-point smoothing: an entry is two neighbours in a row, with two i16 weights (the
+ * second may be 0). A sector's weights are rounded so that they add up to 32767 exactly: a flat picture stays flat.
+ * @returns bytes used
+ */
+export function buildFixedBank(radiusPx: f64, pull: f64, strideElements: i32, bank: usize, scratch: usize): i32 {
+  const reach = bankReachPx(radiusPx, pull);
+  const side = 2 * reach + 1;
+  let entry = kernelCount * indexRowBytes;
+  for (let number = 0; number < kernelCount; number++) {
+    const index = bank + <usize>(number * indexRowBytes);
+    fillGrid(number / anisotropyCount, number % anisotropyCount, radiusPx, pull, reach, scratch);
+    for (let k = 0; k < sectorCount; k++) {
+      store<i32>(index + <usize>(k * 4), entry);
+      roundSector(scratch, k, side * side);
+      for (let dy = 0; dy < side; dy++) {
+        for (let dx = 0; dx < side; dx++) {
+          const first = roundedWeight(scratch, k, dy * side + dx);
+          if (first == 0) continue;
+          const second = dx + 1 < side ? roundedWeight(scratch, k, dy * side + dx + 1) : 0;
+          store<i32>(bank + <usize>entry, ((dy - reach) * strideElements + dx - reach) * 16);
+          store<i32>(bank + <usize>entry, first | (second << 16), 4);
+          entry += entryBytes;
+          dx++;
+        }
+      }
+    }
+    store<i32>(index + <usize>(sectorCount * 4), entry);
+  }
+  return entry;
+}
+
+// @ts-ignore: decorator
+@inline
+function roundedWeight(grid: usize, k: i32, i: i32): i32 {
+  return <i32>load<f64>(grid + <usize>(i * 64 + k * 8));
+}
+
+/** Replaces a sector's weights in the grid by whole numbers that add up to 32767; the largest takes the rest. */
+function roundSector(grid: usize, k: i32, count: i32): void {
+  let sum: f64 = 0;
+  for (let i = 0; i < count; i++) sum += load<f64>(grid + <usize>(i * 64 + k * 8));
+  let total: f64 = 0;
+  let largest: usize = 0;
+  let most: f64 = -1;
+  for (let i = 0; i < count; i++) {
+    const at = grid + <usize>(i * 64 + k * 8);
+    const whole = Math.floor((load<f64>(at) / sum) * <f64>fixedWeightSum + 0.5);
+    store<f64>(at, whole);
+    total += whole;
+    if (whole > most) {
+      most = whole;
+      largest = at;
+    }
+  }
+  store<f64>(largest, most + <f64>fixedWeightSum - total);
+}

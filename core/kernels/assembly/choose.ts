@@ -1,9 +1,40 @@
-// From the eight sectors' means and deviations to one colour.
+// From eight sectors' means and deviations to one colour, for the four pixels of a block at once: a lane a pixel.
+import { sectorCount } from './bank';
 
-/** v^(−n/2) relative to the least of eight, so that no crispness overflows: (least/v)^(n/2). */
+/** Bytes of one sector's record: R, G, B and the squared deviation of four pixels. */
+const recordBytes: usize = 64;
+/** Bytes of the records of all sectors. */
+export const choiceBytes: i32 = 512;
+
+/**
+ * Keeps one sector of a block.
+ * @param r @param g @param b the means m; @param square E|c|²
+ * @param floorSquared least squared deviation that counts, in the same units
+ * @returns max(floor², s²) with s² = E|c|² − |m|²
+ */
+// @ts-ignore: decorator
+@inline
+export function keepSector(
+  records: usize, sector: i32, r: v128, g: v128, b: v128, square: v128, floorSquared: v128,
+): v128 {
+  const m2 = f32x4.add(f32x4.mul(r, r), f32x4.add(f32x4.mul(g, g), f32x4.mul(b, b)));
+  const deviation = f32x4.pmax(floorSquared, f32x4.sub(square, m2));
+  const at = records + <usize>sector * recordBytes;
+  v128.store(at, r);
+  v128.store(at, g, 16);
+  v128.store(at, b, 32);
+  v128.store(at, deviation, 48);
+  return deviation;
+}
+
+/** (least/s²)^(q/2): s^−q relative to the least of the eight, so that no crispness overflows. */
 // @ts-ignore: decorator
 @inline
 function powerOf(ratio: v128, crispness: i32): v128 {
+  if (crispness == 8) {
+    const squared = f32x4.mul(ratio, ratio);
+    return f32x4.mul(squared, squared);
+  }
   let power = (crispness & 1) != 0 ? f32x4.sqrt(ratio) : f32x4.splat(1);
   let factor = ratio;
   for (let n = crispness >> 1; n > 0; n >>= 1) {
@@ -13,41 +44,37 @@ function powerOf(ratio: v128, crispness: i32): v128 {
   return power;
 }
 
-// @ts-ignore: decorator
-@inline
-function sumLanes(v: v128): f32 {
-  return (
-    f32x4.extract_lane(v, 0) + f32x4.extract_lane(v, 1) + (f32x4.extract_lane(v, 2) + f32x4.extract_lane(v, 3))
-  );
-}
-
-// @ts-ignore: decorator
-@inline
-function leastLane(v: v128): f32 {
-  return min(
-    min(f32x4.extract_lane(v, 0), f32x4.extract_lane(v, 1)), min(f32x4.extract_lane(v, 2), f32x4.extract_lane(v, 3)));
-}
-
 /**
- * Σ ω_k m_k / Σ ω_k with ω_k = max(floor, s_k)^−q and s_k² = E|c|² − |m|². Channels of sectors 0–3 and 4–7.
- * @param floorSquared the noise floor, squared, in the units of s²
+ * Σ ω_k m_k / Σ ω_k with ω_k = max(floor, s_k)^−q.
+ * @param records from `keepSector`, all eight
+ * @param least the least of their squared deviations
+ * @param scale @param offset output = offset + scale · m
+ * @param out the block's upper left quad; |c|² is filled in
  */
 // @ts-ignore: decorator
 @inline
-export function chooseColour(
-  r0: v128, g0: v128, b0: v128, q0: v128, r1: v128, g1: v128, b1: v128, q1: v128, floorSquared: f32, crispness: i32,
-): v128 {
-  const floor = f32x4.splat(floorSquared);
-  const v0 = f32x4.max(
-    f32x4.sub(q0, f32x4.add(f32x4.mul(r0, r0), f32x4.add(f32x4.mul(g0, g0), f32x4.mul(b0, b0)))), floor);
-  const v1 = f32x4.max(
-    f32x4.sub(q1, f32x4.add(f32x4.mul(r1, r1), f32x4.add(f32x4.mul(g1, g1), f32x4.mul(b1, b1)))), floor);
-  const least = f32x4.splat(leastLane(f32x4.min(v0, v1)));
-  const w0 = powerOf(f32x4.div(least, v0), crispness);
-  const w1 = powerOf(f32x4.div(least, v1), crispness);
-  const scale: f32 = 1 / sumLanes(f32x4.add(w0, w1));
-  const r = sumLanes(f32x4.add(f32x4.mul(w0, r0), f32x4.mul(w1, r1))) * scale;
-  const g = sumLanes(f32x4.add(f32x4.mul(w0, g0), f32x4.mul(w1, g1))) * scale;
-  const b = sumLanes(f32x4.add(f32x4.mul(w0, b0), f32x4.mul(w1, b1))) * scale;
-  return f32x4(r, g, b, r * r + g * g + b * b);
+export function chooseBlock(
+  records: usize, least: v128, crispness: i32, scale: f32, offset: f32, out: usize, outRowBytes: usize,
+): void {
+  let sum = f32x4.splat(0), r = sum, g = sum, b = sum;
+  let at = records;
+  for (let k = 0; k < sectorCount; k++, at += recordBytes) {
+    const weight = powerOf(f32x4.div(least, v128.load(at, 48)), crispness);
+    sum = f32x4.add(sum, weight);
+    r = f32x4.add(r, f32x4.mul(weight, v128.load(at)));
+    g = f32x4.add(g, f32x4.mul(weight, v128.load(at, 16)));
+    b = f32x4.add(b, f32x4.mul(weight, v128.load(at, 32)));
+  }
+  const factor = f32x4.div(f32x4.splat(scale), sum);
+  const shift = f32x4.splat(offset);
+  r = f32x4.add(f32x4.mul(r, factor), shift);
+  g = f32x4.add(f32x4.mul(g, factor), shift);
+  b = f32x4.add(f32x4.mul(b, factor), shift);
+  const square = f32x4.add(f32x4.mul(r, r), f32x4.add(f32x4.mul(g, g), f32x4.mul(b, b)));
+  const rg = v128.shuffle<i32>(r, g, 0, 4, 1, 5), bs = v128.shuffle<i32>(b, square, 0, 4, 1, 5);
+  v128.store(out, v128.shuffle<i32>(rg, bs, 0, 1, 4, 5));
+  v128.store(out, v128.shuffle<i32>(rg, bs, 2, 3, 6, 7), 16);
+  const rg2 = v128.shuffle<i32>(r, g, 2, 6, 3, 7), bs2 = v128.shuffle<i32>(b, square, 2, 6, 3, 7);
+  v128.store(out + outRowBytes, v128.shuffle<i32>(rg2, bs2, 0, 1, 4, 5));
+  v128.store(out + outRowBytes, v128.shuffle<i32>(rg2, bs2, 2, 3, 6, 7), 16);
 }

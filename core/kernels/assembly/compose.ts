@@ -21,7 +21,7 @@ function hardLight(b: v128, s: v128): v128 {
 @inline
 function colourBurn(b: v128, s: v128): v128 {
   const one = f32x4.splat(1);
-  const burnt = f32x4.sub(one, f32x4.min(one, f32x4.div(f32x4.sub(one, b), s)));
+  const burnt = f32x4.sub(one, f32x4.pmin(one, f32x4.div(f32x4.sub(one, b), s)));
   const orBlack = v128.bitselect(f32x4.splat(0), burnt, f32x4.le(s, f32x4.splat(0)));
   return v128.bitselect(one, orBlack, f32x4.ge(b, one));
 }
@@ -46,8 +46,8 @@ function blended(mode: i32, b: v128, s: v128): v128 {
     case 1: return f32x4.mul(b, s);
     case 2: return screen(b, s);
     case 3: return hardLight(s, b);
-    case 4: return f32x4.min(b, s);
-    case 5: return f32x4.max(b, s);
+    case 4: return f32x4.pmin(b, s);
+    case 5: return f32x4.pmax(b, s);
     case 6: return colourBurn(b, s);
     case 7: return hardLight(b, s);
     case 8: return softLight(b, s);
@@ -102,7 +102,7 @@ export function compose(
         x = f32x4.add(x, f32x4.mul(alpha, f32x4.sub(blended(mode, x, ink), x)));
       }
     }
-    x = f32x4.min(f32x4.max(x, zero), one);
+    x = f32x4.pmin(f32x4.pmax(x, zero), one);
     const alpha = groundChannels == 4 ? source : one;
     x = v128.shuffle<i32>(x, alpha, 0, 1, 2, 7);
     const whole = i32x4.trunc_sat_f32x4_s(f32x4.add(f32x4.mul(x, scale), f32x4.splat(0.5)));

@@ -24,9 +24,9 @@ function atan01(t: v128): v128 {
 export function turnsOf(y: v128, x: v128): v128 {
   const ax = f32x4.abs(x);
   const ay = f32x4.abs(y);
-  const high = f32x4.max(ax, ay);
-  const low = f32x4.min(ax, ay);
-  const t = f32x4.div(low, f32x4.max(high, f32x4.splat(1e-30)));
+  const high = f32x4.pmax(ax, ay);
+  const low = f32x4.pmin(ax, ay);
+  const t = f32x4.div(low, f32x4.pmax(high, f32x4.splat(1e-30)));
   let turns = f32x4.mul(atan01(t), f32x4.splat(0.15915494));
   turns = v128.bitselect(f32x4.sub(f32x4.splat(0.25), turns), turns, f32x4.gt(ay, ax));
   turns = v128.bitselect(f32x4.sub(f32x4.splat(0.5), turns), turns, f32x4.lt(x, f32x4.splat(0)));
@@ -50,9 +50,9 @@ export function grainNumbers(
       const ve = v128.load(e + at), vf = v128.load(f + at), vg = v128.load(g + at);
       const difference = f32x4.sub(ve, vg);
       const twoF = f32x4.add(vf, vf);
-      const trace = f32x4.max(f32x4.add(ve, vg), f32x4.splat(1e-20));
+      const trace = f32x4.pmax(f32x4.add(ve, vg), f32x4.splat(1e-20));
       const root = f32x4.sqrt(f32x4.add(f32x4.mul(difference, difference), f32x4.mul(twoF, twoF)));
-      const anisotropy = f32x4.min(f32x4.div(root, trace), f32x4.splat(1));
+      const anisotropy = f32x4.pmin(f32x4.div(root, trace), f32x4.splat(1));
       const i = i32x4.trunc_sat_f32x4_s(f32x4.add(f32x4.mul(anisotropy, f32x4.splat(15)), f32x4.splat(0.5)));
       // Half the double angle in units of π is the double angle in turns; + ½ turn is the tangent.
       const step = f32x4.floor(

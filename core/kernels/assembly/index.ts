@@ -14,3 +14,4 @@ export * from './luma';
 export * from './dog';
 export * from './streamline';
 export * from './ink';
+export * from './fixedPoint';

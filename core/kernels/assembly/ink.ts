@@ -7,7 +7,7 @@ const twoLog2e: f32 = 2.88539008;
 // @ts-ignore: decorator
 @inline
 function coverage(s: v128, epsilon: v128, phi: v128): v128 {
-  const u = f32x4.max(f32x4.mul(phi, f32x4.min(f32x4.sub(s, epsilon), f32x4.splat(0))), f32x4.splat(-30));
+  const u = f32x4.pmax(f32x4.mul(phi, f32x4.pmin(f32x4.sub(s, epsilon), f32x4.splat(0))), f32x4.splat(-30));
   const e = exp2x4(f32x4.mul(u, f32x4.splat(twoLog2e)));
   // −tanh(u) = (1 − e^2u)/(1 + e^2u)
   return f32x4.div(f32x4.sub(f32x4.splat(1), e), f32x4.add(f32x4.splat(1), e));

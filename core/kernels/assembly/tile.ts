@@ -101,7 +101,7 @@ export function tileToBody(src: usize, srcStride: i32, width: i32, height: i32, 
     let at = src + (<usize>(y * srcStride) << 4);
     let out = dst + <usize>(y * dstStride) * 6;
     for (let x = 0; x < width; x++, at += 16, out += 6) {
-      const clamped = f32x4.min(f32x4.max(v128.load(at), f32x4.splat(0)), f32x4.splat(1));
+      const clamped = f32x4.pmin(f32x4.pmax(v128.load(at), f32x4.splat(0)), f32x4.splat(1));
       const whole = i32x4.trunc_sat_f32x4_s(f32x4.add(f32x4.mul(clamped, scale), half));
       store<u16>(out, i32x4.extract_lane(whole, 0));
       store<u16>(out, i32x4.extract_lane(whole, 1), 2);
@@ -149,7 +149,7 @@ export function quadsToGround(
     const photoRow = photo + <usize>min(((y0 + y) << level) + middle, photoHeight - 1) * <usize>(photoWidth * channels * bytesPerSample);
     let out = dst + <usize>(y * dstStride * channels);
     for (let x = 0; x < width; x++, out += channels) {
-      const v = f32x4.min(f32x4.max(v128.load(row + (<usize>x << 4)), f32x4.splat(0)), f32x4.splat(1));
+      const v = f32x4.pmin(f32x4.pmax(v128.load(row + (<usize>x << 4)), f32x4.splat(0)), f32x4.splat(1));
       const whole = i32x4.trunc_sat_f32x4_s(f32x4.add(f32x4.mul(v, f32x4.splat(255)), f32x4.splat(0.5)));
       store<u8>(out, i32x4.extract_lane(whole, 0));
       store<u8>(out, i32x4.extract_lane(whole, 1), 1);
