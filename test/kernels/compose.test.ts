@@ -28,10 +28,9 @@ function someStrata(count: number, channels: 3 | 4, depth: 8 | 16, seed: number)
     const pick = random();
     return pick < 0.1 ? 0 : pick < 0.2 ? top : Math.floor(random() * (top + 1));
   };
-  const Samples = depth === 8 ? Uint8Array : Uint16Array;
-  const top = depth === 8 ? 255 : 65535;
+  const samples = Array.from({ length: count * channels }, () => value(depth === 8 ? 255 : 65535));
   return {
-    ground: Samples.from({ length: count * channels }, () => value(top)),
+    ground: depth === 8 ? Uint8Array.from(samples) : Uint16Array.from(samples),
     channels,
     body: Uint16Array.from({ length: count * 3 }, () => value(65535)),
     line: Uint8Array.from({ length: count }, () => value(255)),
