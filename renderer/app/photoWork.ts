@@ -8,6 +8,9 @@ import { openingStore, photoStore, sessionStore } from '../state/photoStore.ts';
 import { changeView, viewStore } from '../state/viewStore.ts';
 import { flushDraft, followDraft, forgetDraft } from './draftWork.ts';
 
+/** What a photo that was never worked on starts from. */
+const firstPresetName = 'Low Water';
+
 let opening: AbortController | null = null;
 
 /** Puts a photo on the easel: the first picture as soon as the host has one, the rest when it is decoded. */
@@ -74,6 +77,7 @@ export function presetByName(name: string | null): PresetOffer {
   const presets = sessionStore.get()?.presets ?? [];
   return (
     presets.find((preset) => preset.name === name) ??
+    presets.find((preset) => preset.name === firstPresetName) ??
     presets[0] ?? { name: 'plain', description: '', parameters: defaultParameters() }
   );
 }

@@ -1,6 +1,6 @@
 import type { FromCompositor, PaintedPiece, PieceSlot, Scene, ToCompositor } from './messages.ts';
 
-/** How long the last frames took; read by the window tests and the keys sheet's foot. */
+/** How long a frame took; also sent to the window as an event, so that it can be measured from outside. */
 export interface FrameTime {
   sceneId: number;
   frameMs: number;
@@ -15,7 +15,6 @@ export class CompositorClient {
     type: 'module',
   });
   private readonly sentAtMs = new Map<number, number>();
-  private readonly frameListeners = new Set<(time: FrameTime) => void>();
   private nextSceneId = 1;
   onFailure: (message: string) => void = () => {};
 
@@ -43,11 +42,6 @@ export class CompositorClient {
     return id;
   }
 
-  onFrame(listener: (time: FrameTime) => void): () => void {
-    this.frameListeners.add(listener);
-    return () => this.frameListeners.delete(listener);
-  }
-
   private send(message: ToCompositor, transfer: Transferable[] = []): void {
     this.worker.postMessage(message, transfer);
   }
@@ -57,8 +51,8 @@ export class CompositorClient {
     if (message.kind === 'drawn') {
       const sentAtMs = this.sentAtMs.get(message.sceneId) ?? performance.now();
       for (const id of this.sentAtMs.keys()) if (id <= message.sceneId) this.sentAtMs.delete(id);
-      const time = { ...message, latencyMs: performance.now() - sentAtMs };
-      for (const listener of this.frameListeners) listener(time);
+      const time: FrameTime = { ...message, latencyMs: performance.now() - sentAtMs };
+      window.dispatchEvent(new CustomEvent('oxgall:frame', { detail: time }));
     }
   }
 }

@@ -64,6 +64,7 @@ export function Stage({ photo, canvasHost }: StageProps) {
       <section
         ref={stage}
         className="stage-hold"
+        data-view={placed ? `${placed.scale} ${placed.originXPx} ${placed.originYPx}` : undefined}
         // biome-ignore lint/a11y/noNoninteractiveTabindex: the picture is moved with the arrow keys
         tabIndex={0}
         aria-label={`${photo.name}, painted, at ${Math.round((placed?.scale ?? 1) * 100)} percent. Arrow keys move the picture, plus and minus zoom.`}

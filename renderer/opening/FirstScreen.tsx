@@ -15,6 +15,11 @@ export function FirstScreen() {
     <main className="first">
       <div className="first-title">
         <h1>Oxgall</h1>
+        <div className="first-section" aria-hidden="true">
+          <span />
+          <span />
+          <span />
+        </div>
         <p>Photographs, painted for print.</p>
         <div className="first-ways">
           <button
@@ -98,7 +103,9 @@ function RecentRow({ recent, hasDraft, isBusy }: RecentRowProps) {
         onClick={() => void openPhoto(recent.path)}
       >
         <span className="recent-name">{recent.name}</span>
-        <span className="recent-where">{recent.folder}</span>
+        <span className="recent-where">
+          <bdi>{recent.folder}</bdi>
+        </span>
         <span className="row-note">
           {recent.present ? (hasDraft ? 'changes kept' : dayInWords(recent.openedAt)) : 'no longer there'}
         </span>

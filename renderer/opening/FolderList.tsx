@@ -32,7 +32,9 @@ export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListP
   );
   useEffect(() => {
     // The folder to start from may be gone, or never have been shown: then home is where to begin.
-    void show(startPath).then((isShown) => isShown || (startPath && show()));
+    void show(startPath).then((isShown) => {
+      if (!isShown && startPath) void show();
+    });
   }, [show, startPath]);
   if (!listing) return <p className="folder-wait">{trouble ? trouble.message : 'Reading the folder…'}</p>;
   return (

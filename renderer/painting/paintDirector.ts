@@ -237,7 +237,8 @@ export class PaintDirector {
     this.compositor.setPiece(slot, piece);
     this.held[slot] = { key, level: header.level, region: header.region, source: header.source };
     this.showHeld();
-    paintStore.update((state) => ({ ...state, shownCount: state.shownCount + 1, trouble: null }));
+    this.report({ trouble: null });
+    window.dispatchEvent(new CustomEvent('oxgall:piece', { detail: { slot, level: header.level, key } }));
   }
 
   /** The base where it is of the wanted strata, else the rough one; the detail over it where it still holds. */

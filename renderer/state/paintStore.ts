@@ -9,8 +9,6 @@ export interface PaintState {
   /** The user stopped the work; it goes on at the next change. */
   stopped: boolean;
   trouble: Trouble | null;
-  /** Counts pieces shown, for tests that wait for the picture. */
-  shownCount: number;
 }
 
 export const idlePaint: PaintState = {
@@ -18,7 +16,6 @@ export const idlePaint: PaintState = {
   isRough: true,
   stopped: false,
   trouble: null,
-  shownCount: 0,
 };
 
 export const paintStore = createStore<PaintState>(idlePaint);
