@@ -50,33 +50,40 @@ function mayInk(cells: usize, cellsX: i32, cellsY: i32, cx: i32, cy: i32, reach:
 
 // @ts-ignore: decorator
 @inline
-function clampTo(v: f32, last: f32): f32 {
-  return max<f32>(0, min<f32>(v, last));
+function clampTo(v: f32, first: f32, last: f32): f32 {
+  return max<f32>(first, min<f32>(v, last));
 }
 
-/** One side of a streamline: Σ weight · S at the steps. */
+/**
+ * One side of a streamline: Σ weight · S at the steps. Places are counted from the pixel's own block, so that
+ * rounding, and with it the pixels that are met, does not depend on where the area begins.
+ * @param src @param vectors at the pixel's block
+ * @param firstX @param firstY @param lastX @param lastY rim of the area, counted from there
+ * @param x0 @param y0 middle of the pixel, 0.5 or 1.5
+ */
 // @ts-ignore: decorator
 @inline
 function walk(
-  src: usize, srcStride: i32, lastX: f32, lastY: f32, vectors: usize, vectorsStride: i32,
+  src: usize, srcStride: i32, firstX: f32, firstY: f32, lastX: f32, lastY: f32, vectors: usize, vectorsStride: i32,
   x0: f32, y0: f32, sign: f32, stepPx: f32, steps: i32, table: usize,
 ): f32 {
   let sum: f32 = 0;
   let x = x0, y = y0;
-  const start = vectors + <usize>(((<i32>y0 >> 1) * vectorsStride + (<i32>x0 >> 1)) << 3);
-  let dx = load<f32>(start) * sign, dy = load<f32>(start, 4) * sign;
+  let dx = load<f32>(vectors) * sign, dy = load<f32>(vectors, 4) * sign;
   const half: f32 = 0.5 * stepPx;
   for (let i = 1; i <= steps; i++) {
-    const mx = clampTo(x + half * dx, lastX), my = clampTo(y + half * dy, lastY);
-    const at = vectors + <usize>(((<i32>my >> 1) * vectorsStride + (<i32>mx >> 1)) << 3);
+    const mx = <i32>floor<f32>(clampTo(x + half * dx, firstX, lastX));
+    const my = <i32>floor<f32>(clampTo(y + half * dy, firstY, lastY));
+    const at = vectors + <usize>(((my >> 1) * vectorsStride + (mx >> 1)) << 3);
     const vx = load<f32>(at), vy = load<f32>(at, 4);
     // The tensor knows lines, not directions: keep going forward.
     const forward: f32 = vx * dx + vy * dy < 0 ? -1 : 1;
     dx = vx * forward;
     dy = vy * forward;
-    x = clampTo(x + stepPx * dx, lastX);
-    y = clampTo(y + stepPx * dy, lastY);
-    sum += load<f32>(table + <usize>(i << 2)) * load<f32>(src + <usize>((<i32>y * srcStride + <i32>x) << 2));
+    x = clampTo(x + stepPx * dx, firstX, lastX);
+    y = clampTo(y + stepPx * dy, firstY, lastY);
+    const met = src + <usize>((<i32>floor<f32>(y) * srcStride + <i32>floor<f32>(x)) << 2);
+    sum += load<f32>(table + <usize>(i << 2)) * load<f32>(met);
   }
   return sum;
 }
@@ -93,7 +100,6 @@ export function streamlines(
   cells: usize, cellsX: i32, cellsY: i32, cellReach: i32, threshold: f32, blank: f32,
   stepPx: f32, steps: i32, table: usize, dst: usize, dstStride: i32,
 ): void {
-  const lastX = <f32>(areaWidth - 1) + 0.49, lastY = <f32>(areaHeight - 1) + 0.49;
   const middle = load<f32>(table);
   for (let cy = margin / inkCell; cy * inkCell < areaHeight - margin; cy++) {
     for (let cx = margin / inkCell; cx * inkCell < areaWidth - margin; cx++) {
@@ -105,10 +111,15 @@ export function streamlines(
             store<f32>(out, blank);
             continue;
           }
-          const fx = <f32>x + 0.5, fy = <f32>y + 0.5;
+          const bx = x & ~1, by = y & ~1;
+          const here = src + <usize>((by * srcStride + bx) << 2);
+          const vector = vectors + <usize>(((by >> 1) * vectorsStride + (bx >> 1)) << 3);
+          const fx = <f32>(x - bx) + 0.5, fy = <f32>(y - by) + 0.5;
+          const firstX = <f32>-bx, firstY = <f32>-by;
+          const lastX = <f32>(areaWidth - bx) - 0.5, lastY = <f32>(areaHeight - by) - 0.5;
           const own = middle * load<f32>(src + <usize>((y * srcStride + x) << 2));
-          const forth = walk(src, srcStride, lastX, lastY, vectors, vectorsStride, fx, fy, 1, stepPx, steps, table);
-          const back = walk(src, srcStride, lastX, lastY, vectors, vectorsStride, fx, fy, -1, stepPx, steps, table);
+          const forth = walk(here, srcStride, firstX, firstY, lastX, lastY, vector, vectorsStride, fx, fy, 1, stepPx, steps, table);
+          const back = walk(here, srcStride, firstX, firstY, lastX, lastY, vector, vectorsStride, fx, fy, -1, stepPx, steps, table);
           store<f32>(out, own + (forth + back));
         }
       }

@@ -33,21 +33,23 @@ export function streamlineReference(
   stepPx: number,
   weights: readonly number[],
 ): number {
-  const last = [f32(across.widthPx - 1 + 0.49), f32(across.heightPx - 1 + 0.49)];
-  const inside = (value: number, axis: number) => Math.max(0, Math.min(f32(value), last[axis]));
+  // Counted from the pixel's block: how a place is rounded must not depend on where the area begins.
+  const corner = [xPx & ~1, yPx & ~1];
+  const last = [across.widthPx - corner[0] - 0.5, across.heightPx - corner[1] - 0.5];
+  const inside = (value: number, axis: number) => Math.max(-corner[axis], Math.min(f32(value), last[axis]));
   let sum = weights[0] * sampleAt(across, xPx, yPx);
   for (const side of [1, -1]) {
-    let [x, y] = [xPx + 0.5, yPx + 0.5];
+    let [x, y] = [xPx - corner[0] + 0.5, yPx - corner[1] + 0.5];
     let [dx, dy] = vectorAt(xPx >> 1, yPx >> 1).map((part) => part * side);
     for (let i = 1; i < weights.length; i++) {
-      const middleX = inside(x + f32(0.5 * stepPx * dx), 0);
-      const middleY = inside(y + f32(0.5 * stepPx * dy), 1);
-      const [vx, vy] = vectorAt(Math.floor(middleX) >> 1, Math.floor(middleY) >> 1);
+      const middleX = corner[0] + Math.floor(inside(x + f32(0.5 * stepPx * dx), 0));
+      const middleY = corner[1] + Math.floor(inside(y + f32(0.5 * stepPx * dy), 1));
+      const [vx, vy] = vectorAt(middleX >> 1, middleY >> 1);
       const forward = f32(f32(vx * dx) + f32(vy * dy)) < 0 ? -1 : 1;
       [dx, dy] = [vx * forward, vy * forward];
       x = inside(x + f32(stepPx * dx), 0);
       y = inside(y + f32(stepPx * dy), 1);
-      sum += weights[i] * sampleAt(across, Math.floor(x), Math.floor(y));
+      sum += weights[i] * sampleAt(across, corner[0] + Math.floor(x), corner[1] + Math.floor(y));
     }
   }
   return sum;
