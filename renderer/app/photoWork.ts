@@ -9,7 +9,7 @@ import { changeView, viewStore } from '../state/viewStore.ts';
 import { flushDraft, followDraft, forgetDraft } from './draftWork.ts';
 
 /** What a photo that was never worked on starts from. */
-const firstPresetName = 'Low Water';
+const firstPresetName = 'low-water';
 
 let opening: AbortController | null = null;
 
@@ -78,7 +78,7 @@ export function presetByName(name: string | null): PresetOffer {
   return (
     presets.find((preset) => preset.name === name) ??
     presets.find((preset) => preset.name === firstPresetName) ??
-    presets[0] ?? { name: 'plain', description: '', parameters: defaultParameters() }
+    presets[0] ?? { name: 'plain', title: 'Plain', description: '', parameters: defaultParameters() }
   );
 }
 

@@ -131,8 +131,7 @@ export class PaintDirector {
     if (!photo || !this.look || !this.isStageReady()) return;
     const level = this.chooseBase(photo);
     const isQuick = held.base?.source === 'quick' && photo.stage === 'full';
-    if (level === this.wantedBase && !isQuick) return;
-    if (level > this.wantedBase && !isQuick) return;
+    if (level >= this.wantedBase && !isQuick) return;
     this.wantedBase = level;
     this.startSharpSoon(isQuick ? 0 : sharpAfterMs);
   }
@@ -158,6 +157,8 @@ export class PaintDirector {
   private async startSharp(): Promise<void> {
     if (this.needsDetail()) await this.startDetail();
     await this.run('base', this.wantedBase);
+    // The photo may have been decoded to its end while its quick picture was being painted.
+    if (!this.work.base) this.considerBase();
     this.considerDetail(0);
   }
 
@@ -193,7 +194,7 @@ export class PaintDirector {
       held &&
       held.key === this.wantedKey &&
       held.level === wanted.level &&
-      held.source === this.photo?.stage &&
+      (held.source === 'full' || this.photo?.stage === 'quick') &&
       contains(held.region, wanted.visible)
     );
   }

@@ -32,7 +32,7 @@ export function PresetChooser({ look, photo }: { look: Look; photo: OpenedPhoto 
               />
               <SmallPicture picture={pictures.get(preset.name)} shape={shape} />
               <span className="preset-words">
-                <span className="preset-name">{presetTitle(preset)}</span>
+                <span className="preset-name">{preset.title}</span>
                 <span className="preset-sentence">{preset.description}</span>
                 {isChosen && isChanged && <span className="preset-changed">with changes of your own</span>}
               </span>
@@ -53,15 +53,6 @@ export function PresetChooser({ look, photo }: { look: Look; photo: OpenedPhoto 
   );
 }
 
-export function presetTitle(preset: PresetOffer): string {
-  return preset.name.includes('-') || preset.name === preset.name.toLowerCase()
-    ? preset.name.replaceAll(
-        /(^|-)(\w)/g,
-        (_, gap: string, letter: string) => `${gap ? ' ' : ''}${letter.toUpperCase()}`,
-      )
-    : preset.name;
-}
-
 function applyPreset(preset: PresetOffer): void {
   changeLook(
     {
@@ -70,7 +61,7 @@ function applyPreset(preset: PresetOffer): void {
       parameters: preset.parameters,
       lifted: {},
     },
-    `Preset ${presetTitle(preset)}`,
+    `Preset ${preset.title}`,
   );
 }
 

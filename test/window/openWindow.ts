@@ -92,9 +92,17 @@ async function firstAddress(host: ChildProcess): Promise<string> {
   throw new Error(`The program ended before it said its address: ${text}`);
 }
 
-/** Waits until the picture is sharp and nothing is being painted. */
+/** Waits until the picture is sharp and nothing is being painted; says what the window showed if it never is. */
 export async function settled(page: Page): Promise<void> {
-  await page.locator('.window[data-painting="no"][data-rough="false"]').waitFor();
+  try {
+    await page.locator('.window[data-painting="no"][data-rough="false"]').waitFor();
+  } catch (cause) {
+    const shown = await page.locator('.window').evaluate((element) => {
+      const { painting, rough } = (element as HTMLElement).dataset;
+      return `${painting}, rough ${rough}: ${element.querySelector('.work-sign, [role=alert]')?.textContent}`;
+    });
+    throw new Error(`Expected a settled picture, received ${shown}`, { cause });
+  }
 }
 
 /** Keeps a picture of the window among the artefacts. */
