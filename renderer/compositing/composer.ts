@@ -9,6 +9,7 @@ import { createKernelMemory, instantiateKernels, type Kernels } from '../../core
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { Strata } from '../../core/pixels/photo.ts';
 import { BlockHeap } from './blockHeap.ts';
+import { ComposeHands } from './composeHands.ts';
 
 /** Turns strata into the pixels of the canvas. */
 export interface Composer {
@@ -32,7 +33,16 @@ export async function createComposer(): Promise<Composer> {
   const memory = createKernelMemory();
   const kernels = await instantiateKernels(module, memory);
   const heap = new BlockHeap(memory);
-  return { hold: (strata) => holdStrata(kernels, heap, strata) };
+  const composeHere = kernels.compose as (...part: number[]) => void;
+  const hands = new ComposeHands((part) => composeHere(...part), { module, memory }, helperCount());
+  // The kernel as composition knows it, done by all hands.
+  const shared: Kernels = { ...kernels, compose: (...whole) => hands.compose(whole) };
+  return { hold: (strata) => holdStrata(shared, heap, strata) };
+}
+
+/** The window's own thread and the host want their share of the machine. */
+function helperCount(): number {
+  return Math.min(3, Math.max(0, navigator.hardwareConcurrency - 1));
 }
 
 function holdStrata(kernels: Kernels, heap: BlockHeap, strata: Strata): HeldStrata {

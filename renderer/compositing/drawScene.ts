@@ -1,6 +1,5 @@
 import type { Stratum } from '../../core/parameters/table.ts';
-import { bandView } from '../geometry/sectionLayout.ts';
-import { stripPixels } from './bandStrip.ts';
+import { bandView, cutSourceY } from '../geometry/sectionLayout.ts';
 import type { Scene } from './messages.ts';
 import type { PictureSheet } from './pictureSheet.ts';
 
@@ -73,45 +72,28 @@ function drawStrip(
   const place = sheet.place(bandView(scene.cut01, band, scene.view, scene.photo));
   const { magnification } = place;
   const { leftPx, rightPx } = scene.bandSpan;
-  // One pixel more on every side, so that smoothing finds the neighbours it would find in the whole picture.
-  const firstRow = Math.max(0, Math.floor((topPx - place.y) / magnification) - 1);
-  const endRow = Math.min(
-    sheet.region.heightPx,
-    Math.ceil((topPx + thicknessPx - place.y) / magnification) + 1,
-  );
+  const cutRow = cutSourceY(scene.cut01, scene.photo) / 2 ** sheet.level - sheet.region.yPx;
+  // As many rows as the thickest band shows, so that a strip serves every strength.
+  const reachRows = Math.ceil(scene.section.heightPx / scene.bands.length / magnification / 2) + 2;
+  const firstRow = Math.max(0, Math.floor(cutRow) - reachRows);
+  const endRow = Math.min(sheet.region.heightPx, Math.ceil(cutRow) + reachRows);
+  // One pixel more on either side, so that smoothing finds the neighbours it would find in the whole picture.
   const firstColumn = Math.max(0, Math.floor((leftPx - place.x) / magnification) - 1);
   const endColumn = Math.min(sheet.region.widthPx, Math.ceil((rightPx - place.x) / magnification) + 1);
   if (endRow <= firstRow || endColumn <= firstColumn) return;
-  const rowCount = endRow - firstRow;
-  const columnCount = endColumn - firstColumn;
-  const strip = stripPixels(
-    sheet.held.strata,
-    stratum,
-    { firstRow, rowCount, firstColumn, columnCount },
-    scene.parameters['line.colour'],
-  );
-  const canvas = stripCanvas(strip);
+  const rows = { firstRow, rowCount: endRow - firstRow };
+  const columns = { firstColumn, columnCount: endColumn - firstColumn };
+  const strip = sheet.strip(stratum, { ...rows, ...columns }, scene.parameters['line.colour']);
   setSmoothing(context, magnification);
   context.drawImage(
-    canvas,
+    strip,
     0,
     0,
-    columnCount,
-    rowCount,
+    columns.columnCount,
+    rows.rowCount,
     place.x + firstColumn * magnification,
     place.y + firstRow * magnification,
-    columnCount * magnification,
-    rowCount * magnification,
+    columns.columnCount * magnification,
+    rows.rowCount * magnification,
   );
-}
-
-let strips: OffscreenCanvas | null = null;
-
-/** One canvas serves all strips; it only ever grows. */
-function stripCanvas(strip: ImageData): OffscreenCanvas {
-  strips ??= new OffscreenCanvas(1, 1);
-  if (strips.width < strip.width) strips.width = strip.width;
-  if (strips.height < strip.height) strips.height = strip.height;
-  strips.getContext('2d', { willReadFrequently: true })!.putImageData(strip, 0, 0);
-  return strips;
 }

@@ -1,6 +1,7 @@
-import type { Parameters } from '../../core/parameters/table.ts';
+import type { Parameters, Stratum } from '../../core/parameters/table.ts';
 import type { Rect, Strata } from '../../core/pixels/photo.ts';
 import type { PlacedView } from '../geometry/viewTransform.ts';
+import { type StripPlace, stripPixels } from './bandStrip.ts';
 import type { Composer, HeldStrata } from './composer.ts';
 import type { PaintedPiece } from './messages.ts';
 
@@ -14,6 +15,7 @@ export class PictureSheet {
   readonly held: HeldStrata;
   private readonly painted: ComposedPicture;
   private bare: ComposedPicture | null = null;
+  private readonly strips = new Map<Stratum, { key: string; canvas: OffscreenCanvas }>();
 
   constructor(piece: Pick<PaintedPiece, 'level' | 'region'>, strata: Strata, composer: Composer) {
     this.level = piece.level;
@@ -36,6 +38,21 @@ export class PictureSheet {
     this.bare ??= new ComposedPicture(this.held);
     this.bare.compose({ ...parameters, 'ground.paper': 0, 'body.strength': 0, 'line.strength': 0 });
     return this.bare.canvas;
+  }
+
+  /** A stratum's own pixels along the cut, made again only when something else is asked for. */
+  strip(stratum: Stratum, place: StripPlace, inkColour: string): OffscreenCanvas {
+    const { firstRow, rowCount, firstColumn, columnCount } = place;
+    const key = [firstRow, rowCount, firstColumn, columnCount, stratum === 'line' ? inkColour : ''].join();
+    const held = this.strips.get(stratum);
+    if (held?.key === key) return held.canvas;
+    const canvas = held?.canvas ?? new OffscreenCanvas(1, 1);
+    if (canvas.width < columnCount) canvas.width = columnCount;
+    if (canvas.height < rowCount) canvas.height = rowCount;
+    const pixels = stripPixels(this.held.strata, stratum, place, inkColour);
+    canvas.getContext('2d', { willReadFrequently: true })!.putImageData(pixels, 0, 0);
+    this.strips.set(stratum, { key, canvas });
+    return canvas;
   }
 
   /** Where the piece lies in a view, in device pixels. */

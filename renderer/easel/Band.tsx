@@ -80,12 +80,12 @@ export function Band(props: BandProps) {
         type="button"
         className="band-name"
         style={{ top: `${slotTopPx}px`, height: `${slotHeightPx}px`, width: `${leftPx - 12}px` }}
+        aria-label={isLifted ? `${name}, lifted` : name}
         aria-pressed={isChosen}
         title={`${name}: click for its controls; Shift and click to ${isLifted ? 'lay it down again' : 'lift it'}`}
         onClick={onName}
       >
         {name}
-        {isLifted && <span className="unseen">, lifted</span>}
       </button>
       <button
         ref={body}

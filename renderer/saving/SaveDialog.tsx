@@ -162,11 +162,12 @@ export function SaveDialog({ photo, look }: { photo: OpenedPhoto; look: Look }) 
         {isSaving ? <Progress save={save} /> : null}
         <div className="dialog-foot">
           {isSaving ? (
-            <button type="button" className="quiet-button" onClick={cancelSave}>
+            // Keys keep the two apart: one button that turned into the other would submit the form at once.
+            <button key="cancel" type="button" className="quiet-button" onClick={cancelSave}>
               Cancel saving
             </button>
           ) : (
-            <button type="submit" className="ink-button">
+            <button key="save" type="submit" className="ink-button">
               Save
             </button>
           )}
