@@ -301,7 +301,6 @@ export interface Kernels {
     cellReach: number,
     threshold: number,
     blank: number,
-    stepPx: number,
     steps: number,
     table: number,
     dst: number,

@@ -34,7 +34,7 @@ function layOutLine(job: LineJob, base: number) {
   const between = take(3 * planeBytes);
   const tensor = take(3 * planeBytes);
   const vectorsStride = areaWidth / 2;
-  const vectors = take(vectorsStride * (areaHeight / 2) * 8);
+  const vectors = take(vectorsStride * (areaHeight / 2) * 4);
   const across = take(areaWidth * areaHeight * 4);
   const cellsX = Math.ceil(areaWidth / cellPx);
   const cellsY = Math.ceil(areaHeight / cellPx);
@@ -115,7 +115,6 @@ export function lineTile(kernels: Kernels, job: LineJob, rect: Rect, scratch: nu
     cellReach,
     plan.threshold,
     blankS,
-    streamlineStepPx,
     plan.streamlineSteps,
     job.tables.streamline,
     out,

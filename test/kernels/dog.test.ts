@@ -12,9 +12,15 @@ const tiles = new WasmTiles();
 const p = 20;
 
 type VectorAt = (blockX: number, blockY: number) => readonly [number, number];
+/** Grain vectors are whole numbers of this part of a pixel. */
+const vectorUnit = 16384;
+
 const towards =
   (angleRad: number): VectorAt =>
-  () => [Math.fround(Math.cos(angleRad)), Math.fround(Math.sin(angleRad))];
+  () => [
+    Math.round(Math.cos(angleRad) * vectorUnit) / vectorUnit,
+    Math.round(Math.sin(angleRad) * vectorUnit) / vectorUnit,
+  ];
 
 function dogAcross(luma: ReferenceImage, vectorAt: VectorAt, sigmaPx: number): ReferenceImage {
   tiles.reset();
@@ -25,10 +31,14 @@ function dogAcross(luma: ReferenceImage, vectorAt: VectorAt, sigmaPx: number): R
   kernels.dogTable(sigmaPx, p, table);
   const source = tiles.tileOf(luma, reach + 2, undefined, 1);
   const vectorsStride = blocksX + 1;
-  const vectors = tiles.allocate(vectorsStride * blocksY * 8);
-  const all = tiles.floats(vectors, vectorsStride * blocksY * 2);
+  const vectors = tiles.allocate(vectorsStride * blocksY * 4);
+  const all = new Int16Array(tiles.memory.buffer, vectors, vectorsStride * blocksY * 2);
   for (let y = 0; y < blocksY; y++)
-    for (let x = 0; x < blocksX; x++) all.set(vectorAt(x, y), 2 * (y * vectorsStride + x));
+    for (let x = 0; x < blocksX; x++)
+      all.set(
+        vectorAt(x, y).map((part) => part * vectorUnit),
+        2 * (y * vectorsStride + x),
+      );
   const target = tiles.blankTile(luma.widthPx, luma.heightPx, 1, 1);
   kernels.dogAcross(
     source.pointer,

@@ -11,6 +11,8 @@ import { largestDifference, WasmTiles } from './wasmTiles.ts';
 
 const tiles = new WasmTiles();
 const stepPx = 2;
+/** Grain vectors are whole numbers of this part of a pixel. */
+const vectorUnit = 16384;
 const cellPx = 8;
 /** No streamline is left out with a threshold above everything. */
 const everything = 1e9;
@@ -36,10 +38,14 @@ function streamlines(across: ReferenceImage, vectorAt: VectorAt, walk: Walk) {
   const weights = [...tiles.floats(table, steps + 1)];
   const source = tiles.tileOf(across, 0, undefined, 1);
   const vectorsStride = widthPx / 2;
-  const vectors = tiles.allocate(vectorsStride * (heightPx / 2) * 8);
-  const all = tiles.floats(vectors, vectorsStride * heightPx);
+  const vectors = tiles.allocate(vectorsStride * (heightPx / 2) * 4);
+  const all = new Int16Array(tiles.memory.buffer, vectors, vectorsStride * heightPx);
   for (let y = 0; y < heightPx / 2; y++)
-    for (let x = 0; x < vectorsStride; x++) all.set(vectorAt(x, y), 2 * (y * vectorsStride + x));
+    for (let x = 0; x < vectorsStride; x++)
+      all.set(
+        vectorAt(x, y).map((part) => part * vectorUnit),
+        2 * (y * vectorsStride + x),
+      );
   const [cellsX, cellsY] = [Math.ceil(widthPx / cellPx), Math.ceil(heightPx / cellPx)];
   const cells = tiles.allocate(cellsX * cellsY * 4);
   kernels.cellMinima(source.pointer, source.strideElements, widthPx, heightPx, cells, cellsX);
@@ -60,7 +66,6 @@ function streamlines(across: ReferenceImage, vectorAt: VectorAt, walk: Walk) {
     Math.ceil((steps * stepPx) / cellPx) + 1,
     walk.threshold ?? everything,
     blank,
-    stepPx,
     steps,
     table,
     target.pointer,
@@ -71,8 +76,8 @@ function streamlines(across: ReferenceImage, vectorAt: VectorAt, walk: Walk) {
 }
 
 const towards = (angle: number): readonly [number, number] => [
-  Math.fround(Math.cos(angle)),
-  Math.fround(Math.sin(angle)),
+  Math.round(Math.cos(angle) * vectorUnit) / vectorUnit,
+  Math.round(Math.sin(angle) * vectorUnit) / vectorUnit,
 ];
 
 /** Bends through every direction, and turns its sign round at random, as tensors leave it open. */

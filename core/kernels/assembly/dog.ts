@@ -76,7 +76,7 @@ function alongY(at: usize, rowBytes: usize, t: v128): v128 {
 /**
  * S across the grain, the four pixels of a block along lines of one direction.
  * @param src luma plane; `reach` + 2 pixels are read around
- * @param vectors x, y along the grain of each block
+ * @param vectors x, y along the grain of each block, from `grainVectors`
  * @param dst plane of 2·blocksX × 2·blocksY
  */
 export function dogAcross(
@@ -85,11 +85,11 @@ export function dogAcross(
 ): void {
   const rowBytes = <usize>srcStride << 2;
   for (let by = 0; by < blocksY; by++) {
-    let vector = vectors + (<usize>(by * vectorsStride) << 3);
+    let vector = vectors + (<usize>(by * vectorsStride) << 2);
     let here = src + <usize>(2 * by) * rowBytes;
     let out = dst + (<usize>(2 * by * dstStride) << 2);
-    for (let bx = 0; bx < blocksX; bx++, vector += 8, here += 8, out += 8) {
-      const tx = load<f32>(vector), ty = load<f32>(vector, 4);
+    for (let bx = 0; bx < blocksX; bx++, vector += 4, here += 8, out += 8) {
+      const tx = <f32>load<i16>(vector), ty = <f32>load<i16>(vector, 2);
       // The line runs along the gradient (ty, −tx).
       const isFlat = abs(ty) >= abs(tx);
       const slope = isFlat ? -tx / ty : -ty / tx;

@@ -98,26 +98,29 @@ function sum4(v: v128): f32 {
   return f32x4.extract_lane(v, 0) + f32x4.extract_lane(v, 1) + (f32x4.extract_lane(v, 2) + f32x4.extract_lane(v, 3));
 }
 
+/** Length of a grain vector. */
+export const vectorUnit: i32 = 16384;
+
 /**
  * Unit vector along the grain of each block, from the tensor by the half-angle formulas: with
  * cos 2θ = (E−G)/√((E−G)²+4F²) the gradient is (√((1+cos 2θ)/2), ±√((1−cos 2θ)/2)) and the grain its normal.
- * @param dst x, y float32 of each block, `dstStride` blocks a row
+ * @param dst x, y of each block as i16, in 16384ths, `dstStride` blocks a row
  */
 export function grainVectors(
   e: usize, f: usize, g: usize, stride: i32, blocksX: i32, blocksY: i32, dst: usize, dstStride: i32,
 ): void {
   for (let by = 0; by < blocksY; by++) {
     let at = <usize>(by * stride) << 2;
-    let out = dst + (<usize>(by * dstStride) << 3);
-    for (let bx = 0; bx < blocksX; bx++, at += 4, out += 8) {
+    let out = dst + (<usize>(by * dstStride) << 2);
+    for (let bx = 0; bx < blocksX; bx++, at += 4, out += 4) {
       const difference = load<f32>(e + at) - load<f32>(g + at);
       const twoF: f32 = load<f32>(f + at) + load<f32>(f + at);
       const root = sqrt<f32>(difference * difference + twoF * twoF);
       const cosine: f32 = root > 1e-12 ? difference / root : 1;
       const gx = sqrt<f32>(max<f32>(0, (1 + cosine) * 0.5));
       const gy = sqrt<f32>(max<f32>(0, (1 - cosine) * 0.5));
-      store<f32>(out, twoF < 0 ? gy : -gy);
-      store<f32>(out, gx, 4);
+      store<i16>(out, <i16>nearest<f32>((twoF < 0 ? gy : -gy) * <f32>vectorUnit));
+      store<i16>(out, <i16>nearest<f32>(gx * <f32>vectorUnit), 2);
     }
   }
 }

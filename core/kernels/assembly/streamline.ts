@@ -1,6 +1,9 @@
 // Smoothing along the grain by streamlines: the second half of the flow-guided filter (Kyprianidis and Döllner
 // 2008). Second-order Runge–Kutta steps through the block vectors.
 
+/** Half a pixel in 16384ths. */
+const halfPixel: i32 = 8192;
+
 /** Pixels a side of the squares that are left out where no ink can come. */
 export const inkCell: i32 = 8;
 
@@ -26,12 +29,16 @@ function weightAt(i: i32, sigmaPx: f64, stepPx: f64): f64 {
  * @param width @param height of the plane, cut into ⌈width/8⌉ × ⌈height/8⌉ cells
  */
 export function cellMinima(src: usize, srcStride: i32, width: i32, height: i32, cells: usize, cellsX: i32): void {
-  for (let y = 0; y < height; y++) {
-    for (let x = 0; x < width; x++) {
-      const cell = cells + <usize>(((y / inkCell) * cellsX + x / inkCell) << 2);
-      const v = load<f32>(src + <usize>((y * srcStride + x) << 2));
-      if (y % inkCell == 0 && x % inkCell == 0) store<f32>(cell, v);
-      else store<f32>(cell, min<f32>(load<f32>(cell), v));
+  for (let cy = 0; cy * inkCell < height; cy++) {
+    for (let cx = 0; cx < cellsX; cx++) {
+      let least: f32 = f32.MAX_VALUE;
+      for (let y = cy * inkCell; y < min((cy + 1) * inkCell, height); y++) {
+        for (let x = cx * inkCell; x < min((cx + 1) * inkCell, width); x++) {
+          const v = load<f32>(src + <usize>((y * srcStride + x) << 2));
+          least = v < least ? v : least;
+        }
+      }
+      store<f32>(cells + <usize>((cy * cellsX + cx) << 2), least);
     }
   }
 }
@@ -48,41 +55,29 @@ function mayInk(cells: usize, cellsX: i32, cellsY: i32, cx: i32, cy: i32, reach:
   return false;
 }
 
-// @ts-ignore: decorator
-@inline
-function clampTo(v: f32, first: f32, last: f32): f32 {
-  return max<f32>(first, min<f32>(v, last));
-}
-
 /**
- * One side of a streamline: Σ weight · S at the steps. Places are counted from the pixel's own block, so that
- * rounding, and with it the pixels that are met, does not depend on where the area begins.
- * @param src @param vectors at the pixel's block
- * @param firstX @param firstY @param lastX @param lastY rim of the area, counted from there
- * @param x0 @param y0 middle of the pixel, 0.5 or 1.5
+ * One side of a streamline: Σ weight · S at the steps, two pixels each. Places are whole 16384ths of a pixel from
+ * the block's corner, so that a line runs the same wherever its tile begins.
  */
 // @ts-ignore: decorator
 @inline
 function walk(
-  src: usize, srcStride: i32, firstX: f32, firstY: f32, lastX: f32, lastY: f32, vectors: usize, vectorsStride: i32,
-  x0: f32, y0: f32, sign: f32, stepPx: f32, steps: i32, table: usize,
+  src: usize, srcStride: i32, vectors: usize, vectorsStride: i32, x0: i32, y0: i32, dx0: i32, dy0: i32,
+  steps: i32, table: usize,
 ): f32 {
   let sum: f32 = 0;
-  let x = x0, y = y0;
-  let dx = load<f32>(vectors) * sign, dy = load<f32>(vectors, 4) * sign;
-  const half: f32 = 0.5 * stepPx;
+  let x = x0, y = y0, dx = dx0, dy = dy0;
   for (let i = 1; i <= steps; i++) {
-    const mx = <i32>floor<f32>(clampTo(x + half * dx, firstX, lastX));
-    const my = <i32>floor<f32>(clampTo(y + half * dy, firstY, lastY));
-    const at = vectors + <usize>(((my >> 1) * vectorsStride + (mx >> 1)) << 3);
-    const vx = load<f32>(at), vy = load<f32>(at, 4);
+    // Half a step is one pixel: the vector's own length.
+    const at = vectors + <usize>((((y + dy) >> 15) * vectorsStride + ((x + dx) >> 15)) << 2);
+    const vx = <i32>load<i16>(at), vy = <i32>load<i16>(at, 2);
     // The tensor knows lines, not directions: keep going forward.
-    const forward: f32 = vx * dx + vy * dy < 0 ? -1 : 1;
-    dx = vx * forward;
-    dy = vy * forward;
-    x = clampTo(x + stepPx * dx, firstX, lastX);
-    y = clampTo(y + stepPx * dy, firstY, lastY);
-    const met = src + <usize>((<i32>floor<f32>(y) * srcStride + <i32>floor<f32>(x)) << 2);
+    const back = (vx * dx + vy * dy) >> 31;
+    dx = (vx ^ back) - back;
+    dy = (vy ^ back) - back;
+    x += dx << 1;
+    y += dy << 1;
+    const met = src + <usize>(((y >> 14) * srcStride + (x >> 14)) << 2);
     sum += load<f32>(table + <usize>(i << 2)) * load<f32>(met);
   }
   return sum;
@@ -93,12 +88,13 @@ function walk(
  * get `blank` at once: a mean of values above the threshold stays above it.
  * @param src S over the whole area; the result is made for the part inside `margin`
  * @param vectors of the blocks of the whole area
+ * @param margin at least twice `steps`, and one more: no streamline leaves the area
  * @param cells from `cellMinima` over the whole area
  */
 export function streamlines(
   src: usize, srcStride: i32, areaWidth: i32, areaHeight: i32, margin: i32, vectors: usize, vectorsStride: i32,
   cells: usize, cellsX: i32, cellsY: i32, cellReach: i32, threshold: f32, blank: f32,
-  stepPx: f32, steps: i32, table: usize, dst: usize, dstStride: i32,
+  steps: i32, table: usize, dst: usize, dstStride: i32,
 ): void {
   const middle = load<f32>(table);
   for (let cy = margin / inkCell; cy * inkCell < areaHeight - margin; cy++) {
@@ -113,13 +109,12 @@ export function streamlines(
           }
           const bx = x & ~1, by = y & ~1;
           const here = src + <usize>((by * srcStride + bx) << 2);
-          const vector = vectors + <usize>(((by >> 1) * vectorsStride + (bx >> 1)) << 3);
-          const fx = <f32>(x - bx) + 0.5, fy = <f32>(y - by) + 0.5;
-          const firstX = <f32>-bx, firstY = <f32>-by;
-          const lastX = <f32>(areaWidth - bx) - 0.5, lastY = <f32>(areaHeight - by) - 0.5;
+          const vector = vectors + <usize>(((by >> 1) * vectorsStride + (bx >> 1)) << 2);
+          const fx = ((x - bx) << 14) + halfPixel, fy = ((y - by) << 14) + halfPixel;
+          const vx = <i32>load<i16>(vector), vy = <i32>load<i16>(vector, 2);
           const own = middle * load<f32>(src + <usize>((y * srcStride + x) << 2));
-          const forth = walk(here, srcStride, firstX, firstY, lastX, lastY, vector, vectorsStride, fx, fy, 1, stepPx, steps, table);
-          const back = walk(here, srcStride, firstX, firstY, lastX, lastY, vector, vectorsStride, fx, fy, -1, stepPx, steps, table);
+          const forth = walk(here, srcStride, vector, vectorsStride, fx, fy, vx, vy, steps, table);
+          const back = walk(here, srcStride, vector, vectorsStride, fx, fy, -vx, -vy, steps, table);
           store<f32>(out, own + (forth + back));
         }
       }
