@@ -68,6 +68,8 @@ export async function buildHost() {
     ssr: { noExternal: true, external: ['sharp', 'electron'] },
   });
   await buildPreload();
+  // The demo's generator stays a program of its own: it starts its own threads, and is seldom wanted.
+  await cp(join(root, 'build/demoSeries'), join(root, 'dist/demoSeries'), { recursive: true });
   await mkdir(join(root, 'dist/presets'), { recursive: true });
   await cp(join(root, 'presets'), join(root, 'dist/presets'), { recursive: true });
 }

@@ -23,7 +23,7 @@ export function installedParts(options: {
     ...options,
     workers,
     dataFolder: dataFolder(),
-    demo: findDemo(),
+    demo: findDemo(dataFolder()),
     loadEngine,
     loadFiles: once<HostFiles>(async () => {
       const [{ readPhoto }, { writePicture }, quick] = await Promise.all([
