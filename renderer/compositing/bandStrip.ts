@@ -14,24 +14,23 @@ export interface StripPlace {
 }
 
 /**
- * What one stratum holds along the cut, for its band.
- * @returns R, G, B, A of the strip, rows without padding
+ * Writes what one stratum holds along the cut, for its band.
+ * @param out R, G, B, A of the strip, rows without padding
  */
-export function stripPixels(
+export function writeStrip(
   strata: Strata,
   stratum: Stratum,
   place: StripPlace,
   inkColour: string,
-): ImageData {
-  const strip = new ImageData(place.columnCount, place.rowCount);
+  out: Uint8ClampedArray,
+): void {
   for (let row = 0; row < place.rowCount; row++) {
     const from = (place.firstRow + row) * strata.widthPx + place.firstColumn;
     const to = row * place.columnCount;
-    if (stratum === 'ground') copyGround(strata, from, strip.data, to, place.columnCount);
-    else if (stratum === 'body') copyBody(strata, from, strip.data, to, place.columnCount);
-    else copyLine(strata, from, strip.data, to, place.columnCount, inkColour);
+    if (stratum === 'ground') copyGround(strata, from, out, to, place.columnCount);
+    else if (stratum === 'body') copyBody(strata, from, out, to, place.columnCount);
+    else copyLine(strata, from, out, to, place.columnCount, inkColour);
   }
-  return strip;
 }
 
 function copyGround(strata: Strata, from: number, out: Uint8ClampedArray, to: number, count: number): void {

@@ -9,11 +9,11 @@ import { PictureSheet } from './pictureSheet.ts';
 
 /** What a dedicated worker's global scope has and the DOM's types know as a window's. */
 const scope = self as unknown as {
-  postMessage(message: FromCompositor): void;
+  postMessage(message: FromCompositor, transfer: Transferable[]): void;
   requestAnimationFrame(draw: () => void): number;
   onmessage: ((event: MessageEvent<ToCompositor>) => void) | null;
 };
-const tell = (message: FromCompositor) => scope.postMessage(message);
+const tell = (message: FromCompositor, transfer: Transferable[] = []) => scope.postMessage(message, transfer);
 
 const ready: Promise<Composer> = createComposer();
 const sheets: Partial<Record<PieceSlot, PictureSheet>> = {};
@@ -47,8 +47,11 @@ function replaceSheet(slot: PieceSlot, piece: PaintedPiece, composer: Composer):
   const ground = piece.strata.ground ?? old?.held.strata.ground;
   if (!ground) throw new Error('A piece came without its ground, and none was held.');
   // The ground may lie in the old sheet's memory: that is given back last.
-  sheets[slot] = new PictureSheet(piece, { ...piece.strata, ground }, composer);
+  sheets[slot] = new PictureSheet(piece, { ...piece.strata, ground }, composer, old);
   old?.release();
+  // All is copied: the window may read the next piece into the same memory.
+  const { buffer } = piece.strata.body;
+  if (buffer instanceof ArrayBuffer) tell({ kind: 'spent', buffer }, [buffer]);
 }
 
 function dropSheet(slot: PieceSlot): void {

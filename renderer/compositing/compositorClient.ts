@@ -9,12 +9,16 @@ export interface FrameTime {
   latencyMs: number;
 }
 
+/** One for each slot, and one more on its way. */
+const spentKept = 4;
+
 /** The window's end of the compositing worker. */
 export class CompositorClient {
   private readonly worker = new Worker(new URL('./compositor.worker.ts', import.meta.url), {
     type: 'module',
   });
   private readonly sentAtMs = new Map<number, number>();
+  private spent: ArrayBuffer[] = [];
   private nextSceneId = 1;
   onFailure: (message: string) => void = () => {};
 
@@ -46,8 +50,17 @@ export class CompositorClient {
     this.worker.postMessage(message, transfer);
   }
 
+  /** Memory to read a piece into: what an earlier one came in, where it is not much too large. */
+  readonly makeRoom = (lengthBytes: number): ArrayBuffer => {
+    const index = this.spent.findIndex(
+      ({ byteLength }) => byteLength >= lengthBytes && byteLength <= lengthBytes * 1.5 + 4096,
+    );
+    return index < 0 ? new ArrayBuffer(lengthBytes) : this.spent.splice(index, 1)[0];
+  };
+
   private take(message: FromCompositor): void {
     if (message.kind === 'failed') this.onFailure(message.message);
+    if (message.kind === 'spent') this.spent = [message.buffer, ...this.spent].slice(0, spentKept);
     if (message.kind === 'drawn') {
       const sentAtMs = this.sentAtMs.get(message.sceneId) ?? performance.now();
       for (const id of this.sentAtMs.keys()) if (id <= message.sceneId) this.sentAtMs.delete(id);

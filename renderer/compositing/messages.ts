@@ -43,4 +43,6 @@ export type ToCompositor =
 export type FromCompositor =
   | { kind: 'ready' }
   | { kind: 'drawn'; sceneId: number; frameMs: number; composed: boolean }
+  /** Memory that a piece came in, to be used again. */
+  | { kind: 'spent'; buffer: ArrayBuffer }
   | { kind: 'failed'; message: string };

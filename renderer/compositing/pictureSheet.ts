@@ -1,7 +1,7 @@
 import type { Parameters, Stratum } from '../../core/parameters/table.ts';
 import type { Rect, Strata } from '../../core/pixels/photo.ts';
 import type { PlacedView } from '../geometry/viewTransform.ts';
-import { type StripPlace, stripPixels } from './bandStrip.ts';
+import { type StripPlace, writeStrip } from './bandStrip.ts';
 import type { Composer, HeldStrata } from './composer.ts';
 import type { PaintedPiece } from './messages.ts';
 
@@ -15,13 +15,20 @@ export class PictureSheet {
   readonly held: HeldStrata;
   private readonly painted: ComposedPicture;
   private bare: ComposedPicture | null = null;
-  private readonly strips = new Map<Stratum, { key: string; canvas: OffscreenCanvas }>();
+  private strips: Map<Stratum, Strip>;
 
-  constructor(piece: Pick<PaintedPiece, 'level' | 'region'>, strata: Strata, composer: Composer) {
+  /** @param old the sheet that this one takes the place of: a canvas of the same size is used again */
+  constructor(
+    piece: Pick<PaintedPiece, 'level' | 'region'>,
+    strata: Strata,
+    composer: Composer,
+    old: PictureSheet | undefined,
+  ) {
     this.level = piece.level;
     this.region = piece.region;
     this.held = composer.hold(strata);
-    this.painted = new ComposedPicture(this.held);
+    this.painted = new ComposedPicture(this.held, old?.painted.takeSurface(strata));
+    this.strips = old?.takeStrips() ?? new Map();
   }
 
   /** @returns whether anything had to be composed */
@@ -35,7 +42,7 @@ export class PictureSheet {
 
   /** The photo alone: all paint lifted off, no paper over it. */
   bareCanvas(parameters: Parameters): OffscreenCanvas {
-    this.bare ??= new ComposedPicture(this.held);
+    this.bare ??= new ComposedPicture(this.held, undefined);
     this.bare.compose({ ...parameters, 'ground.paper': 0, 'body.strength': 0, 'line.strength': 0 });
     return this.bare.canvas;
   }
@@ -44,15 +51,26 @@ export class PictureSheet {
   strip(stratum: Stratum, place: StripPlace, inkColour: string): OffscreenCanvas {
     const { firstRow, rowCount, firstColumn, columnCount } = place;
     const key = [firstRow, rowCount, firstColumn, columnCount, stratum === 'line' ? inkColour : ''].join();
-    const held = this.strips.get(stratum);
-    if (held?.key === key) return held.canvas;
-    const canvas = held?.canvas ?? new OffscreenCanvas(1, 1);
-    if (canvas.width < columnCount) canvas.width = columnCount;
-    if (canvas.height < rowCount) canvas.height = rowCount;
-    const pixels = stripPixels(this.held.strata, stratum, place, inkColour);
-    canvas.getContext('2d', { willReadFrequently: true })!.putImageData(pixels, 0, 0);
-    this.strips.set(stratum, { key, canvas });
-    return canvas;
+    let strip = this.strips.get(stratum);
+    if (strip?.pixels.width !== columnCount || strip.pixels.height !== rowCount) {
+      strip?.giveBack();
+      strip = new Strip(columnCount, rowCount);
+      this.strips.set(stratum, strip);
+    }
+    if (strip.key !== key) {
+      writeStrip(this.held.strata, stratum, place, inkColour, strip.pixels.data);
+      strip.context.putImageData(strip.pixels, 0, 0);
+      strip.key = key;
+    }
+    return strip.canvas;
+  }
+
+  /** Gives its strips away as so much paper to write on. */
+  private takeStrips(): Map<Stratum, Strip> {
+    const { strips } = this;
+    this.strips = new Map();
+    for (const strip of strips.values()) strip.key = '';
+    return strips;
   }
 
   /** Where the piece lies in a view, in device pixels. */
@@ -68,29 +86,81 @@ export class PictureSheet {
   }
 
   release(): void {
+    this.painted.release();
+    this.bare?.release();
+    for (const strip of this.strips.values()) strip.giveBack();
     this.held.release();
   }
 }
 
-class ComposedPicture {
+/** A band's pixels, with the key of what is written on it. */
+class Strip {
   readonly canvas: OffscreenCanvas;
-  private readonly context: OffscreenCanvasRenderingContext2D;
-  private readonly pixels: ImageData;
+  readonly context: OffscreenCanvasRenderingContext2D;
+  readonly pixels: ImageData;
+  key = '';
+
+  constructor(columnCount: number, rowCount: number) {
+    this.canvas = new OffscreenCanvas(columnCount, rowCount);
+    this.context = this.canvas.getContext('2d', { willReadFrequently: true })!;
+    this.pixels = new ImageData(columnCount, rowCount);
+  }
+
+  giveBack(): void {
+    this.canvas.width = 0;
+  }
+}
+
+/** What a picture is composed on: written at every move of a strength, so kept in main memory. */
+interface Surface {
+  canvas: OffscreenCanvas;
+  context: OffscreenCanvasRenderingContext2D;
+  pixels: ImageData;
+}
+
+function createSurface({ widthPx, heightPx }: Strata): Surface {
+  const canvas = new OffscreenCanvas(widthPx, heightPx);
+  const context = canvas.getContext('2d', { willReadFrequently: true })!;
+  return { canvas, context, pixels: new ImageData(widthPx, heightPx) };
+}
+
+class ComposedPicture {
+  private surface: Surface | null;
   private composedFor = '';
 
-  constructor(private readonly held: HeldStrata) {
-    const { widthPx, heightPx } = held.strata;
-    this.canvas = new OffscreenCanvas(widthPx, heightPx);
-    // Written with putImageData at every move of a strength: kept in main memory.
-    this.context = this.canvas.getContext('2d', { willReadFrequently: true })!;
-    this.pixels = new ImageData(widthPx, heightPx);
+  constructor(
+    private readonly held: HeldStrata,
+    surface: Surface | undefined,
+  ) {
+    this.surface = surface ?? createSurface(held.strata);
+  }
+
+  get canvas(): OffscreenCanvas {
+    return this.surface!.canvas;
+  }
+
+  /** Gives the surface away where it fits; this picture is not composed again. */
+  takeSurface({ widthPx, heightPx }: Strata): Surface | undefined {
+    const { surface } = this;
+    if (surface?.pixels.width !== widthPx || surface.pixels.height !== heightPx) return undefined;
+    this.surface = null;
+    return surface;
+  }
+
+  /** Gives the canvas's memory back at once; the collector knows nothing of its size. */
+  release(): void {
+    if (!this.surface) return;
+    this.surface.canvas.width = 0;
+    this.surface.canvas.height = 0;
+    this.surface = null;
   }
 
   compose(parameters: Parameters): boolean {
     const key = compositionKey(parameters);
     if (key === this.composedFor) return false;
-    this.held.compose(parameters, this.pixels.data);
-    this.context.putImageData(this.pixels, 0, 0);
+    const { pixels, context } = this.surface!;
+    this.held.compose(parameters, pixels.data);
+    context.putImageData(pixels, 0, 0);
     this.composedFor = key;
     return true;
   }

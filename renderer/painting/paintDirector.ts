@@ -218,6 +218,7 @@ export class PaintDirector {
       const received = await requestPiece(
         { photoId: photo.photoId, ...look, slot, level, region, omitGround },
         abort.signal,
+        this.compositor.makeRoom,
       );
       if (!abort.signal.aborted) this.take(slot, key, received);
     } catch (error) {

@@ -21,7 +21,11 @@ export interface ReceivedPiece {
 }
 
 /** Asks the host for strata and makes them ready to hand to the compositor. */
-export async function requestPiece(request: PieceRequest, signal: AbortSignal): Promise<ReceivedPiece> {
+export async function requestPiece(
+  request: PieceRequest,
+  signal: AbortSignal,
+  makeRoom: (lengthBytes: number) => ArrayBuffer,
+): Promise<ReceivedPiece> {
   const { header, planes } = await host.callForFrame(
     'paintStrata',
     {
@@ -34,7 +38,7 @@ export async function requestPiece(request: PieceRequest, signal: AbortSignal): 
       omit: request.omitGround ? ['ground'] : undefined,
       printLongEdgeMm: request.printLongEdgeMm,
     },
-    { signal },
+    { signal, makeRoom },
   );
   const strata: PaintedPiece['strata'] = {
     widthPx: header.region.widthPx,

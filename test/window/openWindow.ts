@@ -33,15 +33,22 @@ export interface WindowOptions {
   environment?: Record<string, string>;
 }
 
+/** Starts the built program without a window of its own. */
+export async function startHost(
+  options: Pick<WindowOptions, 'path' | 'environment'> & { dataFolder: string },
+): Promise<{ host: ChildProcess; address: string }> {
+  const given = ['--no-window', ...(options.path ? [options.path] : [])];
+  const host = spawn(process.execPath, [join(root, 'dist/main/loopbackShell.js'), ...given], {
+    env: { ...process.env, OXGALL_DATA: options.dataFolder, ...options.environment },
+    stdio: ['ignore', 'pipe', 'inherit'],
+  });
+  return { host, address: await firstAddress(host) };
+}
+
 export async function openWindow(options: WindowOptions = {}): Promise<OpenWindow> {
   const dataFolder = options.dataFolder ?? (await mkdtemp(join(tmpdir(), 'oxgall-window-data-')));
   const startedMs = performance.now();
-  const given = ['--no-window', ...(options.path ? [options.path] : [])];
-  const host = spawn(process.execPath, [join(root, 'dist/main/loopbackShell.js'), ...given], {
-    env: { ...process.env, OXGALL_DATA: dataFolder, ...options.environment },
-    stdio: ['ignore', 'pipe', 'inherit'],
-  });
-  const address = await firstAddress(host);
+  const { host, address } = await startHost({ ...options, dataFolder });
   const hostReadyMs = performance.now() - startedMs;
   const browser = await chromium.launch({
     executablePath: chromiumFound.path!,
