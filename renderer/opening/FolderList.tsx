@@ -2,6 +2,10 @@ import { useCallback, useEffect, useState } from 'react';
 import type { FolderListing } from '../../main/host/api/hostCommands.ts';
 import { host, type Trouble, troubleOf } from '../host/host.ts';
 
+/** The host lists only what it has shown before; asking for more would be refused. */
+const offered = new Set<string>();
+let lastShown: string | undefined;
+
 interface FolderListProps {
   /** Where to start; home unless given. */
   startPath?: string;
@@ -20,6 +24,9 @@ export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListP
       try {
         const next = await host.call('listFolder', { path });
         setListing(next);
+        for (const { path: known } of [next, ...next.folders, ...next.places, ...next.crumbs])
+          offered.add(known);
+        lastShown = next.path;
         setTrouble(null);
         onFolder?.(next);
         return true;
@@ -31,9 +38,9 @@ export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListP
     [onFolder],
   );
   useEffect(() => {
-    // The folder to start from may be gone, or never have been shown: then home is where to begin.
-    void show(startPath).then((isShown) => {
-      if (!isShown && startPath) void show();
+    const start = startPath && offered.has(startPath) ? startPath : lastShown;
+    void show(start).then((isShown) => {
+      if (!isShown && start) void show();
     });
   }, [show, startPath]);
   if (!listing) return <p className="folder-wait">{trouble ? trouble.message : 'Reading the folder…'}</p>;

@@ -5,7 +5,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { setTimeout as pause } from 'node:timers/promises';
 import { chromium, type Page } from 'playwright-core';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, onTestFinished } from 'vitest';
 import { chromiumFound } from './chromium.ts';
 import { settled, startHost } from './openWindow.ts';
 import { writePhotograph } from './photographs.ts';
@@ -86,6 +86,13 @@ describe.skipIf(!chromiumFound.path || process.platform !== 'linux')('memory of 
       ],
       { stdio: ['ignore', 'ignore', 'pipe'] },
     );
+    onTestFinished(async () => {
+      const gone = [once(browser, 'exit'), once(host, 'exit')];
+      browser.kill();
+      host.kill();
+      await Promise.all(gone);
+      await rm(folder, { recursive: true, force: true, maxRetries: 5 });
+    });
     const endpoint = await firstMatch(browser.stderr, /ws:\/\/\S+/);
     const first = await chromium.connectOverCDP(endpoint);
     const page = first.contexts()[0].pages()[0];
@@ -128,11 +135,6 @@ describe.skipIf(!chromiumFound.path || process.platform !== 'linux')('memory of 
       );
       expect(late, who).toBeLessThanOrEqual(early * 1.1);
     }
-    const gone = [once(browser, 'exit'), once(host, 'exit')];
-    browser.kill();
-    host.kill();
-    await Promise.all(gone);
-    await rm(folder, { recursive: true, force: true, maxRetries: 5 });
   });
 });
 

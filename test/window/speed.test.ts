@@ -134,12 +134,15 @@ describe.skipIf(!chromiumFound.path)('speed of the easel', () => {
     page.on('requestfinished', end);
     page.on('requestfailed', end);
     const track = page.getByRole('slider', { name: 'Brush', exact: true });
-    const box = (await track.boundingBox())!;
-    await page.mouse.move(box.x + box.width * 0.3, box.y + box.height / 2);
-    await page.mouse.down();
-    for (let step = 0; step < 30; step++)
-      await page.mouse.move(box.x + box.width * (0.3 + step * 0.012), box.y + box.height / 2);
-    await page.mouse.up();
+    // A value a frame, as a hand gives them; made in the page, so that no slow messenger spreads them out.
+    await track.evaluate(async (element) => {
+      const setValue = Object.getOwnPropertyDescriptor(HTMLInputElement.prototype, 'value')!.set!;
+      for (let step = 0; step < 30; step++) {
+        setValue.call(element, String(70 + step * 2));
+        element.dispatchEvent(new Event('input', { bubbles: true }));
+        await new Promise((resolve) => requestAnimationFrame(resolve));
+      }
+    });
     await settled(page);
     const { pieces } = await heardBy(page);
     const value = await page.getByRole('textbox', { name: 'Brush, typed' }).inputValue();
@@ -147,6 +150,28 @@ describe.skipIf(!chromiumFound.path)('speed of the easel', () => {
     measured.mostUnderWay = most;
     measured.sharpAskedInDrag = sharpAsked;
     expect(most).toBeLessThanOrEqual(3);
-    expect(sharpAsked).toBeLessThanOrEqual(6);
+    expect(sharpAsked).toBeLessThanOrEqual(4);
+  });
+
+  it('shows a 24-megapixel photo roughly at once, and sharp soon after', async () => {
+    const { page } = window;
+    await writePhotograph(join(folder, 'large-bank.jpg'), 'french-alpine-landscape', 6000);
+    await page.keyboard.press('Control+o');
+    const row = page.getByRole('button', { name: /^large-bank\.jpg/ });
+    await row.waitFor();
+    await row.evaluate((element) => {
+      element.addEventListener('click', () => Object.assign(globalThis, { chosenAtMs: performance.now() }));
+    });
+    await row.click();
+    await page.getByRole('heading', { name: 'large-bank' }).waitFor();
+    await settled(page);
+    const chosenAtMs = await page.evaluate(
+      () => (globalThis as unknown as { chosenAtMs: number }).chosenAtMs,
+    );
+    const pieces = (await heardBy(page)).pieces.filter(({ atMs }) => atMs > chosenAtMs);
+    measured.openRoughMs = pieces[0].atMs - chosenAtMs;
+    measured.openSharpMs = pieces.findLast(({ slot }) => slot === 'base')!.atMs - chosenAtMs;
+    expect(measured.openRoughMs).toBeLessThanOrEqual(1000 * room);
+    expect(measured.openSharpMs).toBeLessThanOrEqual(3000 * room);
   });
 });
