@@ -38,8 +38,8 @@ export function skinRelief(u, v, w, fp) {
   const lines = noise3(u * 90, v * 330, w * 90);
   return (
     pores -
-    smoothStep(0.22, 0, Math.abs(lines)) * 0.00013 +
-    fbm3(u * 130, v * 130, w * 130, 3, fp * 130) * 0.0005
+    smoothStep(0.22, 0, Math.abs(lines)) * 0.00006 +
+    fbm3(u * 130, v * 130, w * 130, 3, fp * 130) * 0.00032
   );
 }
 

@@ -365,8 +365,8 @@ export function mistScene({ eye, pixelAngle, sees }) {
     ],
     75,
   );
-  addReeds(mesh, { seed: 352, centre: [-6.5, 1.5], radius: [3, 1.5], count: 520, eye, pixelAngle });
-  addReeds(mesh, { seed: 353, centre: [6.4, -0.6], radius: [2.4, 1.1], count: 380, eye, pixelAngle });
+  addReeds(mesh, { seed: 352, centre: [-4.3, 1.4], radius: [2.2, 1.3], count: 520, eye, pixelAngle });
+  addReeds(mesh, { seed: 353, centre: [5.3, -0.4], radius: [2.4, 1.1], count: 380, eye, pixelAngle });
   addGrass(mesh, { seed: 354, x0: -9, x1: 9, z0: -9.5, z1: -3, count: 9000, eye, pixelAngle });
   addFarSide(mesh, sees);
   return {
@@ -447,8 +447,9 @@ export function rainScene({ eye, pixelAngle, sees }) {
   addFerry(mesh, { awning: false, rampUp: [0.7, 0.25] });
   addAwning(mesh, {
     x1: 5,
-    sag: 0.26,
-    y1: 2.2,
+    y0: 2.78,
+    y1: 2.66,
+    sag: 0.17,
     stripes: false,
     tones: [
       [0.5, 0.45, 0.33],

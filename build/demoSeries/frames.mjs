@@ -10,6 +10,7 @@ import * as scenes from './frameScenes.mjs';
  * @property {{ eye: number[], target: number[], fovDeg: number, rollDeg?: number }} view
  * @property {string} light @property {(view: { eye: number[], pixelAngle: number, sees: (x: number, z: number) => boolean }) => object} scene
  * @property {import('./lens.mjs').LensSettings} lens @property {import('./sensor.mjs').SensorSettings} sensor
+ * @property {{ seed: number, count: number }} [rain] streaks before the lens
  * @property {string} caption
  */
 
@@ -176,6 +177,7 @@ export const frames = [
     view: { eye: [3.9, 1.75, -0.9], target: [0.9, 1.75, 4.2], fovDeg: 64, rollDeg: 1 },
     light: 'rain',
     scene: scenes.rainScene,
+    rain: { seed: 91, count: 1500 },
     lens: { focusM: 7.5, blurShare: 0.002, flare: 0.05, falloff: 0.32 },
     sensor: {
       exposure: 1.3,

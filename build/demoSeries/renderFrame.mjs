@@ -4,6 +4,7 @@ import { makeCamera } from './camera.mjs';
 import { exposePicture } from './exposePicture.mjs';
 import { applyDepthOfField, applyFlareAndFalloff } from './lens.mjs';
 import { lights } from './lights.mjs';
+import { addRainStreaks } from './rain.mjs';
 import { develop } from './sensor.mjs';
 import { Sky } from './sky.mjs';
 
@@ -30,6 +31,7 @@ export function renderFrame(frame, scale) {
   const scene = { ...setting, sky: new Sky(light.sky), air: setting.air ?? light.air };
   const picture = exposePicture(scene, camera);
   applyDepthOfField(picture, widthPx, heightPx, frame.lens);
+  if (frame.rain) addRainStreaks(picture.rgb, widthPx, heightPx, { ...frame.rain, light: light.sky.horizon });
   applyFlareAndFalloff(picture.rgb, widthPx, heightPx, frame.lens);
   return { pixels: develop(picture.rgb, widthPx * heightPx, frame.sensor), widthPx, heightPx };
 }

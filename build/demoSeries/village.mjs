@@ -27,7 +27,7 @@ function addFace(mesh, corners, kind, texture) {
   const d = corners[corners.length - 1];
   const e = b.map((value, i) => value - a[i]);
   const f = d.map((value, i) => value - a[i]);
-  const n = [e[1] * f[2] - e[2] * f[1], e[2] * f[0] - e[0] * f[2], e[0] * f[1] - e[1] * f[0]];
+  const n = [f[1] * e[2] - f[2] * e[1], f[2] * e[0] - f[0] * e[2], f[0] * e[1] - f[1] * e[0]];
   const index = corners.map((p, i) => mesh.vertex(p[0], p[1], p[2], n[0], n[1], n[2], ...texture[i], 0));
   if (index.length === 3) mesh.triangle(index[0], index[1], index[2], kind);
   else mesh.quad(index[0], index[1], index[2], index[3], kind);
@@ -75,8 +75,8 @@ function addHouse(mesh, next, w, h, d) {
     addFace(
       mesh,
       [
-        [side * (w / 2), h, -d / 2],
-        [side * (w / 2), h, d / 2],
+        [side * (w / 2), h, (-side * d) / 2],
+        [side * (w / 2), h, (side * d) / 2],
         [side * (w / 2), h + rise, 0],
       ],
       kind,
