@@ -60,10 +60,10 @@ function blended(mode: i32, b: v128, s: v128): v128 {
 function loadSamples(at: usize, bytesPerSample: i32): v128 {
   if (bytesPerSample == 1) {
     const ints = i32x4.extend_low_i16x8_u(i16x8.extend_low_i8x16_u(v128.load32_zero(at)));
-    return f32x4.div(f32x4.convert_i32x4_s(ints), f32x4.splat(255));
+    return f32x4.mul(f32x4.convert_i32x4_s(ints), f32x4.splat(1 / <f32>255));
   }
   const ints = i32x4.extend_low_i16x8_u(v128.load64_zero(at));
-  return f32x4.div(f32x4.convert_i32x4_s(ints), f32x4.splat(65535));
+  return f32x4.mul(f32x4.convert_i32x4_s(ints), f32x4.splat(1 / <f32>65535));
 }
 
 /**
@@ -105,7 +105,8 @@ export function compose(
     x = f32x4.pmin(f32x4.pmax(x, zero), one);
     const alpha = groundChannels == 4 ? source : one;
     x = v128.shuffle<i32>(x, alpha, 0, 1, 2, 7);
-    const whole = i32x4.trunc_sat_f32x4_s(f32x4.add(f32x4.mul(x, scale), f32x4.splat(0.5)));
+    // Added to 2²³, a number from 0 to 65535 leaves its nearest whole number in the low bits.
+    const whole = v128.and(f32x4.add(f32x4.mul(x, scale), f32x4.splat(8388608)), i32x4.splat(0xffff));
     storeSamples(out, whole, outBytes, outChannels);
   }
 }
