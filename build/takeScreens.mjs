@@ -85,7 +85,7 @@ async function takeEasel(page, keep) {
 }
 
 async function takeFirst(page, keep, withDemo) {
-  await page.getByRole('button', { name: 'Open a photograph…' }).waitFor();
+  await page.locator('button:enabled', { hasText: 'Open a photograph…' }).waitFor();
   await keep('first');
   const demo = page.getByRole('button', { name: /demo/ });
   if (!withDemo || (await demo.count()) === 0) return;

@@ -32,4 +32,7 @@ export function provideChromium(): FoundChromium {
 }
 
 export const chromiumFound = provideChromium();
+// Continuous integration must not pass on tests that did not run.
+if (!chromiumFound.path && process.env.CI)
+  throw new Error(`No window tests without a browser: ${chromiumFound.reason}`);
 if (!chromiumFound.path) process.stderr.write(`Window tests are skipped: ${chromiumFound.reason}\n`);
