@@ -5,7 +5,7 @@ const cutOff =
 const outOfMemory = /out of memory|unable to allocate|cannot allocate|Invalid array length/i;
 const unsupported = /unsupported|not supported|unknown compression|no decod|plugin/i;
 
-/** The library's own words, cut to one line, as the reason given in brackets. */
+/** The library's own words, cut to one line, in brackets; nothing where it gives none. */
 function reasonFrom(failure: unknown): string {
   const text = failure instanceof Error ? failure.message : String(failure);
   const lines = text
@@ -14,8 +14,8 @@ function reasonFrom(failure: unknown): string {
       line.replace(/^Vips\w*:\s*|^\w+2vips:\s*|^(Input (buffer|file) has corrupt header:\s*)/g, '').trim(),
     )
     .filter(Boolean);
-  const reason = lines.find((line) => !/^Input (buffer|file)/.test(line)) ?? lines[0] ?? 'no reason given';
-  return reason.replace(/^Vips\w*:\s*/, '').slice(0, 120);
+  const reason = lines.find((line) => !/^Input (buffer|file)/.test(line)) ?? lines[0];
+  return reason ? ` (${reason.replace(/^Vips\w*:\s*/, '').slice(0, 120)})` : '';
 }
 
 /** Puts a failure of the decoder in words. */
@@ -33,20 +33,20 @@ export function whyUndecodable(path: string, failure: unknown): FileError {
   if (cutOff.test(text))
     return new FileError(
       path,
-      `is cut off before its end (${reason})`,
+      `is cut off before its end${reason}`,
       'Copy it again from the camera or the card.',
       options,
     );
   if (unsupported.test(text))
     return new FileError(
       path,
-      `is stored in a way that is not read here (${reason})`,
+      `is stored in a way that is not read here${reason}`,
       'Export it as JPEG, PNG or TIFF and open that.',
       options,
     );
   return new FileError(
     path,
-    `is damaged (${reason})`,
+    `is damaged${reason}`,
     'Copy it again from the camera or the card, or export it again.',
     options,
   );

@@ -65,10 +65,15 @@ async function beginTrial(outPath: string, folder: string): Promise<UnfinishedFi
   try {
     return await UnfinishedFile.begin(outPath);
   } catch (failure) {
-    if (failure instanceof FileError && failure.problem === 'permission denied')
-      throw new FileError(outPath, `nothing may be written to "${folder}"`, failure.remedy, {
-        cause: failure,
-      });
+    const code = failure instanceof FileError && (failure.cause as NodeJS.ErrnoException | undefined)?.code;
+    // The folder was there a moment ago: a system folder that takes no files says ENOENT.
+    if (code === 'EACCES' || code === 'EPERM' || code === 'ENOENT')
+      throw new FileError(
+        outPath,
+        `nothing may be written to "${folder}"`,
+        'Change its permissions, or choose another place.',
+        { cause: failure },
+      );
     throw failure;
   }
 }

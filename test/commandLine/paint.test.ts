@@ -5,6 +5,7 @@ import sharp from 'sharp';
 import { describe, expect, it } from 'vitest';
 import { temporaryFolder } from '../files/temporaryFolder.ts';
 import { photographs } from '../fixtures/photographs.ts';
+import { plainPng, pngColour } from '../fixtures/plainPng.ts';
 
 const program = fileURLToPath(new URL('../../dist/main/commandLine.js', import.meta.url));
 const folder = temporaryFolder();
@@ -117,14 +118,23 @@ describe('oxgall paint', () => {
     await expectRefusal(['paint', 'cut.jpg', '--out', 'x.png'], 1, /cut\.jpg: is cut off/);
   });
 
+  it('refuses a picture of no pixels', async () => {
+    const png = plainPng({ widthPx: 0, heightPx: 0, bits: 8, colourType: pngColour.rgb, rows: [] });
+    await folder.file('zero.png', png);
+    await expectRefusal(['paint', 'zero.png', '--out', 'x.png'], 1, /zero\.png: is damaged.*\. \S/);
+  });
+
   it('paints a photo with flipped bits or refuses it in one line', async () => {
     const whole = await readFile(photographs.dustBowlHome);
+    await folder.file('flipped.jpg', whole);
     for (const at of [30, 700, 90_000, 200_000]) {
+      const before = (await namesThere()).filter((name) => name !== 'flipped.png');
       const bytes = Buffer.from(whole);
       bytes[at] ^= 0x55;
       await folder.file('flipped.jpg', bytes);
       const { code, err } = await run('paint', 'flipped.jpg', '--out', 'flipped.png');
       expect([0, 1]).toContain(code);
+      expect((await namesThere()).filter((name) => name !== 'flipped.png')).toEqual(before);
       expect(err).not.toMatch(/\bat .*\.js:\d+/);
       if (code === 1) expect(err.trimEnd().split('\n')).toHaveLength(1);
     }
@@ -150,6 +160,20 @@ describe('oxgall paint', () => {
     await expectRefusal(['paint', photo, '--gloss'], 2, /--gloss/);
   });
 
+  it('puts the painting beside the photo where no output is named, with a number where that is taken', async () => {
+    await cp(photographs.frenchAlpineLandscape, folder.path('hills.jpg'));
+    const words = ['paint', 'hills.jpg', '--set', 'body.method=quadrant', '--json'];
+    expect(JSON.parse((await run(...words)).out).output).toMatch(/hills\.painted\.png$/);
+    expect(JSON.parse((await run(...words)).out).output).toMatch(/hills\.painted-2\.png$/);
+  });
+
+  it('is silent where the output is no terminal, but for the line that says what was made', async () => {
+    const { code, out, err } = await run('paint', photographs.locomotionHouseCat, '--out', 'cat.webp');
+    expect(code).toBe(0);
+    expect(err).toBe('');
+    expect(out).toMatch(/^cat\.webp {2}1024 × \d+ px in [\d.]+ s\n$/);
+  });
+
   it('refuses outputs that cannot or must not be written', async () => {
     await cp(photographs.alliumOreophilum, folder.path('flower.jpg'));
     await symlink('flower.jpg', folder.path('other-name.jpg'));
@@ -159,6 +183,14 @@ describe('oxgall paint', () => {
     await expectRefusal(['paint', 'flower.jpg', '--out', 'nowhere/x.png'], 1, /there is no folder/);
     await expectRefusal(['paint', 'flower.jpg', '--out', 'flower.jpg/x.png'], 1, /is not a folder/);
     await expectRefusal(['paint', 'flower.jpg', '--out', 'x.bmp'], 1, /not a format written here/);
+    await expectRefusal(['paint', 'flower.jpg', '--out', '.'], 1, /\. \S/);
+    // Permissions do not bind root; the folder of processes takes no files from anyone.
+    if (process.platform === 'linux')
+      await expectRefusal(
+        ['paint', 'flower.jpg', '--out', '/proc/x.png'],
+        1,
+        /nothing may be written to "\/proc"/,
+      );
     expect(await readFile(folder.path('flower.jpg'))).toEqual(original);
   });
 
