@@ -1,0 +1,45 @@
+import type { Parameters } from '../parameters/table.ts';
+import type { ToneMap } from './toneMap.ts';
+
+/**
+ * What is done to one frame so that it goes with the lead: plain data, part of the job's key and of the run log.
+ * A part that is null leaves the frame as its state has it.
+ */
+export interface FrameMatch {
+  /** Applied to the photo before it is painted: `engine.open(photo, { toneMap })`. */
+  readonly toneMap: ToneMap | null;
+  /** Takes the place of `body.noiseFloor`. */
+  readonly noiseFloor: number | 'auto' | null;
+  /** Takes the place of `line.threshold`. */
+  readonly threshold: number | null;
+}
+
+/** The parts of a match; each can be switched off for a frame. */
+export interface MatchParts {
+  readonly tone: boolean;
+  readonly noise: boolean;
+  readonly ink: boolean;
+}
+
+export const allMatchParts: MatchParts = { tone: true, noise: true, ink: true };
+
+/** What the lead gets, and every frame of a run without matching: nothing is changed, to the bit. */
+export const noMatch: FrameMatch = { toneMap: null, noiseFloor: null, threshold: null };
+
+/** Whether a match changes nothing. */
+export function isNoMatch(match: FrameMatch): boolean {
+  return match.toneMap === null && match.noiseFloor === null && match.threshold === null;
+}
+
+/**
+ * The parameters a matched frame is painted with.
+ * @param parameters of the frame's state; not modified, and returned as they are where nothing changes
+ */
+export function parametersWithMatch(parameters: Parameters, match: FrameMatch): Parameters {
+  if (match.noiseFloor === null && match.threshold === null) return parameters;
+  return {
+    ...parameters,
+    'body.noiseFloor': match.noiseFloor ?? parameters['body.noiseFloor'],
+    'line.threshold': match.threshold ?? parameters['line.threshold'],
+  };
+}
