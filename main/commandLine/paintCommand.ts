@@ -1,12 +1,10 @@
-import { createHash } from 'node:crypto';
 import { engineVersion } from '../../core/engineVersion.ts';
 import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { planBody } from '../../core/pipeline/bodyPlan.ts';
 import { createEngine } from '../engine/paintEngine.ts';
-import { outputDepth, outputFormatFor } from '../files/outputFormat.ts';
-import { assertWritable, defaultOutputPath, refuseOverwritingOriginal } from '../files/outputPath.ts';
-import { readPhoto } from '../files/readPhoto.ts';
-import { writePicture } from '../files/writePicture.ts';
+import { outputFormatFor } from '../files/outputFormat.ts';
+import { defaultOutputPath } from '../files/outputPath.ts';
+import { paintToFile } from '../painting/paintToFile.ts';
 import { chosenParameters } from './chosenParameters.ts';
 import { ProgressLine } from './progressLine.ts';
 import { readNumber, readWhole, readWords } from './readWords.ts';
@@ -21,9 +19,6 @@ const options = {
   workers: { type: 'string' },
   json: { type: 'boolean' },
 } as const;
-
-/** Share of the work that painting is, for the progress line; reading and writing are the rest. */
-const paintingShare = 0.85;
 
 export const paintCommand: Command = {
   name: 'paint',
@@ -62,72 +57,43 @@ async function paint(words: string[]): Promise<number> {
   const format = outputFormatFor(out);
 
   const startMs = performance.now();
-  await refuseOverwritingOriginal(photoPath, out);
   const progress = new ProgressLine();
   // The workers start while the photo is being read.
   const starting = createEngine({ workers });
   starting.catch(() => undefined);
   try {
-    const photo = await readPhoto(photoPath);
-    // Checked once there is something to paint: a bad photo must leave no trace of a trial file.
-    await assertWritable(out);
-    const decodeMs = performance.now() - startMs;
-    const engine = await starting;
-    const { widthPx, heightPx, channels, iccProfile, densityPpi, exif, remarks } = photo;
-    const depth = outputDepth(format, askedDepth ?? photo.depth);
-    const openMs = performance.now();
-    const held = await engine.open(photo);
-    const noiseMs = performance.now() - openMs;
+    const order = { parameters, out, format, depth: askedDepth, printLongEdgeMm };
+    const painted = await paintToFile(starting, photoPath, order, {
+      onProgress: (fraction01, stage) => progress.update(0.05 + 0.95 * fraction01, stage),
+    });
+    const totalMs = performance.now() - startMs;
+    const { widthPx, heightPx, times } = painted;
     const scale = { longEdgePx: Math.max(widthPx, heightPx), printLongEdgeMm };
-    const { noiseFloor } = planBody(parameters, scale, 0, held.noiseFloor);
-    const picture = await engine.paintPicture(held, parameters, {
-      depth,
-      printLongEdgeMm,
-      onProgress: (fraction01, stage) =>
-        progress.update(0.05 + paintingShare * stageEnd(stage, fraction01), stage),
-    });
-    held.close();
-    const pixelsSha256 = createHash('sha256').update(bytesOf(picture.pixels)).digest('hex');
-    const encodeStartMs = performance.now();
-    progress.update(0.05 + paintingShare, 'encode');
-    const written = await writePicture(out, {
-      widthPx,
-      heightPx,
-      channels,
-      iccProfile,
-      densityPpi,
-      exif,
-      format,
-      pixels: picture.pixels,
-    });
-    picture.release();
-    const endMs = performance.now();
-    await engine.close();
     progress.clear();
     report(read.values.json === true, {
       photo: photoPath,
-      output: out,
+      output: painted.path,
       width: widthPx,
       height: heightPx,
-      depth,
+      depth: painted.depth,
       engineVersion,
       preset,
       parameters,
       printLongEdgeMm,
-      noiseFloor,
-      workers: engine.workers,
+      noiseFloor: planBody(parameters, scale, 0, painted.noiseFloor).noiseFloor,
+      workers: (await starting).workers,
       milliseconds: roundAll({
-        decode: decodeMs,
-        grain: noiseMs + picture.times.grainMs,
-        body: picture.times.bodyMs,
-        line: picture.times.lineMs,
-        compose: picture.times.composeMs,
-        encode: endMs - encodeStartMs,
-        total: endMs - startMs,
+        decode: painted.readMs,
+        grain: painted.openMs + times.grainMs,
+        body: times.bodyMs,
+        line: times.lineMs,
+        compose: times.composeMs,
+        encode: times.encodeMs,
+        total: totalMs,
       }),
       peakMemoryBytes: process.resourceUsage().maxRSS * 1024,
-      pixelsSha256,
-      remarks: [...remarks, ...written.remarks],
+      pixelsSha256: painted.pixelsSha256,
+      remarks: painted.remarks,
     });
     return exitCode.done;
   } finally {
@@ -140,16 +106,6 @@ function readDepth(text: string | undefined): 8 | 16 | undefined {
   if (text === undefined) return undefined;
   if (text !== '8' && text !== '16') throw new UsageError(`Expected 8 or 16 for --depth, received ${text}`);
   return text === '8' ? 8 : 16;
-}
-
-/** How far the whole painting is when a stage is at `fraction01`. */
-function stageEnd(stage: 'grain' | 'body' | 'line' | 'compose', fraction01: number): number {
-  const [from, to] = { grain: [0, 0.05], body: [0.05, 0.75], line: [0.75, 0.97], compose: [0.97, 1] }[stage];
-  return from + (to - from) * fraction01;
-}
-
-function bytesOf(pixels: Uint8Array | Uint16Array): Uint8Array {
-  return new Uint8Array(pixels.buffer, pixels.byteOffset, pixels.byteLength);
 }
 
 function roundAll<T extends Record<string, number>>(times: T): T {

@@ -8,7 +8,7 @@ const stageWords = {
   body: 'Painting',
   line: 'Inking',
   compose: 'Laying the strata',
-  encode: 'Writing',
+  writing: 'Writing',
 };
 
 /** A line on the terminal that says how far long work is; says nothing where the output is no terminal. */

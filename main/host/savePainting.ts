@@ -1,9 +1,10 @@
 import { stat } from 'node:fs/promises';
 import { basename, dirname, extname, join } from 'node:path';
+import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import type { Engine } from '../engine/engineApi.ts';
-import { outputDepth } from '../files/outputFormat.ts';
 import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
+import { deliverPainting } from '../painting/deliverPainting.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
 import type { OutputFormatName, SavedPainting } from './api/hostCommands.ts';
 import type { EventHub } from './eventHub.ts';
@@ -57,26 +58,22 @@ export async function savePainting(
   report(0, 'opening');
   const [engine, files] = await Promise.all([parts.loadEngine(), parts.loadFiles()]);
   const { file } = await photo.whole(call.signal);
-  const depth = outputDepth(input.format, input.depth ?? file.depth);
-  const { widthPx, heightPx, channels, iccProfile, densityPpi, exif } = file;
-  const path = await photo.paint(0, call.signal, async ({ enginePhoto }, signal) => {
-    const painted = await engine.paintPicture(enginePhoto, parameters, {
-      depth,
+  const order = {
+    parameters,
+    out: target,
+    format: input.format,
+    depth: input.depth,
+    quality: input.quality,
+    printLongEdgeMm: input.printLongEdgeMm ?? defaultPrintLongEdgeMm,
+  };
+  const { path, widthPx, heightPx } = await photo.paint(0, call.signal, ({ enginePhoto }, signal) =>
+    deliverPainting(engine, { enginePhoto, file }, order, {
       signal,
-      printLongEdgeMm: input.printLongEdgeMm,
-      onProgress: (fraction01, stage) => report(fraction01 * paintShare01, stage),
-    });
-    try {
-      signal.throwIfAborted();
-      report(paintShare01, 'writing');
-      const picture = { widthPx, heightPx, channels, pixels: painted.pixels, iccProfile, densityPpi, exif };
-      const write = (path: string) =>
-        files.writePicture(path, { ...picture, format: input.format, quality: input.quality }, { signal });
-      return await (replace ? placeOver(target, write) : placeNew(target, write, signal));
-    } finally {
-      painted.release();
-    }
-  });
+      onProgress: report,
+      writePicture: files.writePicture,
+      place: replace ? placeOver : placeNew,
+    }),
+  );
   report(1, 'writing');
   const { size } = await stat(path);
   return {
@@ -90,8 +87,6 @@ export async function savePainting(
   };
 }
 
-/** Painting is most of a save; the rest is encoding and writing, which report nothing in between. */
-const paintShare01 = 0.9;
 const reportEveryMs = 100;
 
 function progressReporter(callId: string, events: EventHub): (fraction01: number, stage: string) => void {

@@ -1,0 +1,53 @@
+import type { Engine } from '../engine/engineApi.ts';
+import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
+import { readPhoto } from '../files/readPhoto.ts';
+import { writePicture } from '../files/writePicture.ts';
+import {
+  type DeliveredPainting,
+  type DeliveryOptions,
+  deliverPainting,
+  type PaintingOrder,
+} from './deliverPainting.ts';
+
+/** A painting made from a photo's file. */
+export interface PaintedFile extends DeliveredPainting {
+  /** Of the photo, at full resolution: what `auto` stands for. */
+  noiseFloor: number;
+  readMs: number;
+  /** Taking the pixels in and measuring the noise. */
+  openMs: number;
+}
+
+/**
+ * Reads a photo, paints it and writes the painting, never over the photo itself.
+ * @param engine may still be starting while the photo is read
+ * @throws FileError naming the photo or the output; the signal's reason when it is aborted
+ */
+export async function paintToFile(
+  engine: Engine | Promise<Engine>,
+  photoPath: string,
+  order: PaintingOrder,
+  options: Omit<DeliveryOptions, 'writePicture'> = {},
+): Promise<PaintedFile> {
+  const { signal } = options;
+  const startMs = performance.now();
+  await refuseOverwritingOriginal(photoPath, order.out);
+  const photo = await readPhoto(photoPath, { signal });
+  // Checked once there is something to paint: a bad photo must leave no trace of a trial file.
+  await assertWritable(order.out);
+  const readMs = performance.now() - startMs;
+  const painter = await engine;
+  const openStartMs = performance.now();
+  const enginePhoto = await painter.open(photo, { signal });
+  const openMs = performance.now() - openStartMs;
+  try {
+    const { pixels: _, ...file } = photo;
+    const delivered = await deliverPainting(painter, { enginePhoto, file }, order, {
+      ...options,
+      writePicture,
+    });
+    return { ...delivered, noiseFloor: enginePhoto.noiseFloor, readMs, openMs };
+  } finally {
+    enginePhoto.close();
+  }
+}
