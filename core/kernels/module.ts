@@ -323,6 +323,17 @@ export interface Kernels {
     dst: number,
     dstStride: number,
   ): void;
+  toneTableBytes(bytesPerSample: number): number;
+  toneTables(bytesPerSample: number, table: number): void;
+  toneMap(
+    src: number,
+    channels: number,
+    bytesPerSample: number,
+    count: number,
+    settings: number,
+    table: number,
+    out: number,
+  ): void;
   mergeTable(table: number): void;
   merge(
     fine: number,

@@ -170,7 +170,28 @@ export interface GroundJob {
   outStride: number;
 }
 
-export type Job = PaintJob | TablesJob | HalveJob | NoiseJob | GroundJob | LineJob | InkJob | ComposeJob;
+/** Maps the colours of a photo into another of 16 bits, a run of rows at a time. */
+export interface ToneJob {
+  kind: 'tone';
+  grid: TileGrid;
+  source: SourcePicture;
+  /** 30 float32 (`writeToneSettings`). */
+  settings: number;
+  /** Tables for the source's depth. */
+  table: number;
+  out: number;
+}
+
+export type Job =
+  | PaintJob
+  | TablesJob
+  | HalveJob
+  | NoiseJob
+  | GroundJob
+  | LineJob
+  | InkJob
+  | ComposeJob
+  | ToneJob;
 
 /** Tiles in a grid. */
 export function tileCount(grid: TileGrid): number {

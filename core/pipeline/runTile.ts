@@ -7,6 +7,7 @@ import {
   type Job,
   type NoiseJob,
   type TablesJob,
+  type ToneJob,
   tileRect,
 } from './jobs.ts';
 import { inkTile, lineTile } from './lineTile.ts';
@@ -45,6 +46,9 @@ export function runTile(
       break;
     case 'compose':
       composeTile(kernels, job, tileRect(job.grid, index));
+      break;
+    case 'tone':
+      toneTile(kernels, job, tileRect(job.grid, index));
       break;
   }
 }
@@ -131,5 +135,19 @@ function composeTile(kernels: Kernels, job: ComposeJob, rect: Rect): void {
     job.out + first * job.outChannels * job.outBytesPerSample,
     job.outBytesPerSample,
     job.outChannels,
+  );
+}
+
+function toneTile(kernels: Kernels, job: ToneJob, rect: Rect): void {
+  const { pointer, widthPx, channels, bytesPerSample } = job.source;
+  const first = rect.yPx * widthPx * channels;
+  kernels.toneMap(
+    pointer + first * bytesPerSample,
+    channels,
+    bytesPerSample,
+    rect.heightPx * widthPx,
+    job.settings,
+    job.table,
+    job.out + first * 2,
   );
 }

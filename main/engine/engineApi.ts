@@ -1,5 +1,6 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
+import type { ToneMap } from '../../core/series/toneMap.ts';
 
 /** Milliseconds spent in each part of a painting. */
 export interface StageTimes {
@@ -36,6 +37,15 @@ export interface EnginePhoto {
   close(): void;
 }
 
+export interface OpenOptions {
+  signal?: AbortSignal;
+  /**
+   * Maps the photo's colours first, on the workers. The mapped photo is held with 16 bits a sample: the ground of
+   * its strata is that. Alpha stays; without a map, or with null, the pixels stay as they are, to the bit.
+   */
+  toneMap?: ToneMap | null;
+}
+
 /** A composed picture in the shared memory. */
 export interface ComposedPicture {
   /** Interleaved, the photo's channels. A view of shared memory: read it or write it to a file, then release it. */
@@ -49,7 +59,7 @@ export interface ComposedPicture {
 export interface Engine {
   readonly workers: number;
   /** Takes the pixels in (copied) and measures the noise; the pyramid is built when first needed. */
-  open(photo: DecodedPhoto, options?: { signal?: AbortSignal }): Promise<EnginePhoto>;
+  open(photo: DecodedPhoto, options?: OpenOptions): Promise<EnginePhoto>;
   /**
    * Paints one pyramid level, or a region of it, as strata. At level 0 the pixels equal the file's. Coarse
    * levels are kept with the photo, so that moving to another region of the same parameters is quick.

@@ -1,3 +1,4 @@
+import type { Kernels } from '../../core/kernels/module.ts';
 import { autoNoiseFloor } from '../../core/noise/autoNoiseFloor.ts';
 import {
   noiseRecordBytes,
@@ -7,7 +8,9 @@ import {
 } from '../../core/noise/noiseFloor.ts';
 import type { SourcePicture } from '../../core/pipeline/jobs.ts';
 import { halveScratchBytes } from '../../core/pipeline/runTile.ts';
+import { toneSettingsCount, writeToneSettings } from '../../core/pipeline/toneSettings.ts';
 import type { DecodedPhoto } from '../../core/pixels/photo.ts';
+import type { ToneMap } from '../../core/series/toneMap.ts';
 import type { CoarseLevel } from './coarseLevel.ts';
 import type { EnginePhoto } from './engineApi.ts';
 import type { SharedHeap } from './sharedHeap.ts';
@@ -15,6 +18,8 @@ import type { WorkerPool } from './workerPool.ts';
 
 /** Rows of a band when a pass needs no tiles. */
 const bandRows = 256;
+/** Rows of a band when colours are mapped. */
+const toneRows = 32;
 /** Side of a tile when a picture is halved. */
 const halveTilePx = 256;
 /** The pyramid ends where an edge would get shorter than this. */
@@ -57,6 +62,36 @@ export class HeldPhoto implements EnginePhoto {
 
   get longEdgePx(): number {
     return Math.max(this.widthPx, this.heightPx);
+  }
+
+  /**
+   * Maps the colours; from then on the photo is held with 16 bits, so that a stretched tone shows no bands. Has to
+   * run before anything else looks at the pixels.
+   */
+  async mapTones(map: ToneMap, kernels: Kernels, pool: WorkerPool, signal?: AbortSignal): Promise<void> {
+    const { photo } = this;
+    const { widthPx, heightPx, channels } = photo;
+    const bytesPerSample = photo.bytesPerSample as 1 | 2;
+    const out = this.#heap.allocate(widthPx * heightPx * channels * 2);
+    const settings = this.#heap.allocate(toneSettingsCount * 4);
+    const table = this.#heap.allocate(kernels.toneTableBytes(bytesPerSample));
+    try {
+      kernels.toneTables(bytesPerSample, table);
+      writeToneSettings(new Float32Array(this.#heap.memory.buffer, settings, toneSettingsCount), map);
+      const grid = rowGrid(widthPx, heightPx, toneRows);
+      await pool.run(
+        { kind: 'tone', grid, source: photo, settings, table, out },
+        { signal, scratchBytes: 0 },
+      );
+    } catch (error) {
+      this.#heap.free(out);
+      throw error;
+    } finally {
+      this.#heap.free(settings);
+      this.#heap.free(table);
+    }
+    this.#pictures[0] = { ...photo, pointer: out, bytesPerSample: 2 };
+    this.#heap.free(photo.pointer);
   }
 
   /** Measures the noise; has to run once before painting. */

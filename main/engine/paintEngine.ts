@@ -9,7 +9,14 @@ import type { BodyWindow } from '../../core/pipeline/jobs.ts';
 import { lineHaloPx, planLine } from '../../core/pipeline/linePlan.ts';
 import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
 import { BodyPainter, type TileSize } from './bodyPainter.ts';
-import type { ComposedPicture, Engine, EnginePhoto, PaintOptions, StageTimes } from './engineApi.ts';
+import type {
+  ComposedPicture,
+  Engine,
+  EnginePhoto,
+  OpenOptions,
+  PaintOptions,
+  StageTimes,
+} from './engineApi.ts';
 import { HeldPhoto, rowGrid } from './heldPhoto.ts';
 import { loadKernelModule, paintWorkerUrl } from './kernelFiles.ts';
 import { LinePainter } from './linePainter.ts';
@@ -46,6 +53,7 @@ export async function createEngine(options: EngineOptions = {}): Promise<Engine>
 class PaintEngine implements Engine {
   readonly #pool: WorkerPool;
   readonly #heap: SharedHeap;
+  readonly #kernels: Kernels;
   readonly #tables: TableStore;
   readonly #body: BodyPainter;
   readonly #line: LinePainter;
@@ -54,6 +62,7 @@ class PaintEngine implements Engine {
   constructor(pool: WorkerPool, heap: SharedHeap, kernels: Kernels, tileSize: TileSize) {
     this.#pool = pool;
     this.#heap = heap;
+    this.#kernels = kernels;
     this.#tables = new TableStore(pool, heap, kernels);
     this.#body = new BodyPainter(pool, heap, kernels, this.#tables, tileSize);
     this.#line = new LinePainter(pool, heap, kernels, tileSize);
@@ -63,10 +72,13 @@ class PaintEngine implements Engine {
     return this.#pool.size;
   }
 
-  async open(photo: DecodedPhoto, { signal }: { signal?: AbortSignal } = {}): Promise<EnginePhoto> {
+  async open(photo: DecodedPhoto, { signal, toneMap }: OpenOptions = {}): Promise<EnginePhoto> {
     const held = new HeldPhoto(photo, this.#heap);
     try {
-      await held.use(() => held.measureNoise(this.#pool, signal));
+      await held.use(async () => {
+        if (toneMap) await held.mapTones(toneMap, this.#kernels, this.#pool, signal);
+        await held.measureNoise(this.#pool, signal);
+      });
       return held;
     } catch (error) {
       held.close();
@@ -321,7 +333,7 @@ function croppedBody(buffer: ArrayBufferLike, body: BodyWindow, region: Rect): U
 
 function copyOfPhoto(buffer: ArrayBuffer, held: HeldPhoto, region: Rect): Uint8Array | Uint16Array {
   const rowSamples = region.widthPx * held.channels;
-  const Samples = held.depth === 8 ? Uint8Array : Uint16Array;
+  const Samples = held.photo.bytesPerSample === 1 ? Uint8Array : Uint16Array;
   const to = new Samples(rowSamples * region.heightPx);
   const pixelBytes = held.channels * Samples.BYTES_PER_ELEMENT;
   for (let y = 0; y < region.heightPx; y++) {

@@ -10,6 +10,7 @@ export * from './noise';
 export * from './quadrant';
 export * from './tensor';
 export * from './tile';
+export * from './toneMap';
 export * from './luma';
 export * from './dog';
 export * from './streamline';
