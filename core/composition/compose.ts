@@ -11,6 +11,8 @@ export interface StrataPointers {
   body: number;
   /** Ink coverage, 1 byte a pixel. */
   line: number;
+  /** Light on the surface, 1 byte a pixel; 0 where there is none. */
+  relief: number;
 }
 
 /** Where the composed pixels go. */
@@ -40,11 +42,13 @@ export function writeCompositionSettings(settings: Float32Array, parameters: Par
     ...parseColour(parameters['line.colour']),
     parameters['line.strength'],
     parameters['body.strength'],
+    parameters['relief.strength'],
   ]);
 }
 
 /**
- * Lays the strata over one another: ground, paper over it, body at strength, line at strength and blend. The
+ * Lays the strata over one another: ground, paper over it, body at strength, line at strength and blend,
+ * relief at strength by hard light, which turns no hue. The
  * same kernel makes the preview and the file, so the two agree to the bit.
  * @param settings pointer to what `writeCompositionSettings` wrote
  * @param count pixels that follow one another
@@ -63,6 +67,7 @@ export function compose(
     strata.groundChannels,
     parameters['body.strength'] > 0 ? strata.body : 0,
     parameters['line.strength'] > 0 ? strata.line : 0,
+    parameters['relief.strength'] > 0 ? strata.relief : 0,
     count,
     settings,
     blendModeNumber[parameters['line.blend']],

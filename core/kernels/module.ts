@@ -323,6 +323,51 @@ export interface Kernels {
     dst: number,
     dstStride: number,
   ): void;
+  bristleNoise(
+    x0: number,
+    y0: number,
+    width: number,
+    height: number,
+    side: number,
+    dst: number,
+    dstStride: number,
+  ): void;
+  addHeights(
+    marks: number,
+    marksStride: number,
+    luma: number,
+    lumaStride: number,
+    width: number,
+    height: number,
+    markGain: number,
+    lumaGain: number,
+  ): void;
+  lightHeights(
+    heights: number,
+    width: number,
+    height: number,
+    firstRow: number,
+    rows: number,
+    slope: number,
+    bearingDegrees: number,
+    shine: number,
+    dst: number,
+  ): void;
+  raiseRelief(
+    src: number,
+    srcStride: number,
+    srcWidth: number,
+    srcHeight: number,
+    originX: number,
+    originY: number,
+    shift: number,
+    x0: number,
+    y0: number,
+    width: number,
+    height: number,
+    dst: number,
+    dstStride: number,
+  ): void;
   toneTableBytes(bytesPerSample: number): number;
   toneTables(bytesPerSample: number, table: number): void;
   toneMap(
@@ -354,6 +399,7 @@ export interface Kernels {
     groundChannels: number,
     body: number,
     line: number,
+    relief: number,
     count: number,
     settings: number,
     mode: number,

@@ -1,4 +1,5 @@
 import type { LinePlan } from './linePlan.ts';
+import type { ReliefPlan } from './reliefPlan.ts';
 
 /**
  * Jobs are plain numbers that a worker can be sent: one pass over a picture, cut into tiles that any worker may
@@ -99,6 +100,7 @@ export interface ComposeJob {
   ground: SourcePicture;
   body: number;
   line: number;
+  relief: number;
   settings: number;
   blendMode: number;
   out: number;
@@ -158,6 +160,50 @@ export interface InkJob {
   out: number;
 }
 
+/** Builds the surface: bristle marks along the grain and the body's lightness, at a level that suits the bristle. */
+export interface SurfaceJob {
+  kind: 'surface';
+  /** In pixels of the relief's own, 2^shift times smaller picture. */
+  grid: TileGrid;
+  /** Size of the painted level, before the shift. */
+  pictureWidthPx: number;
+  pictureHeightPx: number;
+  shift: number;
+  body: BodyWindow;
+  photo: null;
+  plan: ReliefPlan;
+  /** Gaussian table of the grain and streamline table. */
+  tables: { gaussian: number; streamline: number };
+  /** Receives heights: float32, grid.widthPx a row. */
+  out: number;
+}
+
+/** Throws light on a surface. */
+export interface LightJob {
+  kind: 'light';
+  /** In pixels of the relief's own picture, bands of whole rows. */
+  grid: TileGrid;
+  /** float32, grid.widthPx a row. */
+  heights: number;
+  plan: ReliefPlan;
+  /** Receives light: float32, grid.widthPx a row. */
+  out: number;
+}
+
+/** Brings light up to the painted level, as bytes. */
+export interface RaiseJob {
+  kind: 'raise';
+  /** In pixels of the painted level. */
+  grid: TileGrid;
+  source: number;
+  sourceWidthPx: number;
+  sourceHeightPx: number;
+  originX: number;
+  originY: number;
+  shift: number;
+  out: number;
+}
+
 /** Makes the 8-bit ground of a coarser level. */
 export interface GroundJob {
   kind: 'ground';
@@ -190,6 +236,9 @@ export type Job =
   | GroundJob
   | LineJob
   | InkJob
+  | SurfaceJob
+  | LightJob
+  | RaiseJob
   | ComposeJob
   | ToneJob;
 

@@ -12,6 +12,7 @@ import {
 } from './jobs.ts';
 import { inkTile, lineTile } from './lineTile.ts';
 import { paintTile, readTile } from './paintTile.ts';
+import { lightTile, raiseTile, surfaceTile } from './reliefTile.ts';
 
 /** Runs tile `index` of any job on this thread. Adds the milliseconds of its grain to `times`. */
 export function runTile(
@@ -40,6 +41,15 @@ export function runTile(
       break;
     case 'ink':
       inkTile(kernels, job, tileRect(job.grid, index));
+      break;
+    case 'surface':
+      surfaceTile(kernels, job, tileRect(job.grid, index), scratch);
+      break;
+    case 'light':
+      lightTile(kernels, job, tileRect(job.grid, index));
+      break;
+    case 'raise':
+      raiseTile(kernels, job, tileRect(job.grid, index));
       break;
     case 'tables':
       buildTables(kernels, job, scratch);
@@ -129,6 +139,7 @@ function composeTile(kernels: Kernels, job: ComposeJob, rect: Rect): void {
     ground.channels,
     job.body && job.body + first * 6,
     job.line && job.line + first,
+    job.relief && job.relief + first,
     count,
     job.settings,
     job.blendMode,

@@ -18,7 +18,8 @@ export interface Rect {
 
 /**
  * The layers of a painted picture or of a region of it, ready for composition. Ground keeps the photo's own
- * numbers; body is R, G, B in 0…65535; line is ink coverage in 0…255. All interleaved, rows without padding.
+ * numbers; body is R, G, B in 0…65535; line is ink coverage in 0…255; relief is light in
+ * 0…254, 127 where the surface is flat. All interleaved, rows without padding.
  */
 export interface Strata {
   widthPx: number;
@@ -27,4 +28,6 @@ export interface Strata {
   groundChannels: 3 | 4;
   body: Uint16Array;
   line: Uint8Array;
+  /** Null where the strength is 0: nothing was lit. */
+  relief: Uint8Array | null;
 }

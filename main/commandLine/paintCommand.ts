@@ -87,6 +87,7 @@ async function paint(words: string[]): Promise<number> {
         grain: painted.openMs + times.grainMs,
         body: times.bodyMs,
         line: times.lineMs,
+        relief: times.reliefMs,
         compose: times.composeMs,
         encode: times.encodeMs,
         total: totalMs,

@@ -7,6 +7,7 @@ const stageWords = {
   grain: 'Finding the grain',
   body: 'Painting',
   line: 'Inking',
+  relief: 'Lighting the surface',
   compose: 'Laying the strata',
   writing: 'Writing',
 };

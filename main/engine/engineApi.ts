@@ -8,11 +8,15 @@ export interface StageTimes {
   grainMs: number;
   bodyMs: number;
   lineMs: number;
+  reliefMs: number;
   composeMs: number;
 }
 
 /** A piece of long work reports how far it is, 0…1, and in which stage. */
-export type OnProgress = (fraction01: number, stage: 'grain' | 'body' | 'line' | 'compose') => void;
+export type OnProgress = (
+  fraction01: number,
+  stage: 'grain' | 'body' | 'line' | 'relief' | 'compose',
+) => void;
 
 export interface PaintOptions {
   /** Long edge of the print; 300 mm unless given. */

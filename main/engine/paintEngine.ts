@@ -7,6 +7,7 @@ import type { Parameters } from '../../core/parameters/table.ts';
 import { planBody } from '../../core/pipeline/bodyPlan.ts';
 import type { BodyWindow } from '../../core/pipeline/jobs.ts';
 import { lineHaloPx, planLine } from '../../core/pipeline/linePlan.ts';
+import { planRelief, reliefHaloPx } from '../../core/pipeline/reliefPlan.ts';
 import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
 import { BodyPainter, type TileSize } from './bodyPainter.ts';
 import type {
@@ -20,6 +21,7 @@ import type {
 import { HeldPhoto, rowGrid } from './heldPhoto.ts';
 import { loadKernelModule, paintWorkerUrl } from './kernelFiles.ts';
 import { LinePainter } from './linePainter.ts';
+import { ReliefPainter } from './reliefPainter.ts';
 import { SharedHeap } from './sharedHeap.ts';
 import { TableStore } from './tableStore.ts';
 import { WorkerPool } from './workerPool.ts';
@@ -57,6 +59,7 @@ class PaintEngine implements Engine {
   readonly #tables: TableStore;
   readonly #body: BodyPainter;
   readonly #line: LinePainter;
+  readonly #relief: ReliefPainter;
   #paintings = 0;
 
   constructor(pool: WorkerPool, heap: SharedHeap, kernels: Kernels, tileSize: TileSize) {
@@ -66,6 +69,7 @@ class PaintEngine implements Engine {
     this.#tables = new TableStore(pool, heap, kernels);
     this.#body = new BodyPainter(pool, heap, kernels, this.#tables, tileSize);
     this.#line = new LinePainter(pool, heap, kernels, tileSize);
+    this.#relief = new ReliefPainter(pool, heap, kernels, tileSize);
   }
 
   get workers(): number {
@@ -97,7 +101,7 @@ class PaintEngine implements Engine {
     const size = held.levels[level];
     const region = insideOrThrow(where.region ?? { xPx: 0, yPx: 0, ...size }, size);
     return this.#painting(held, async (memory) => {
-      const { body, line, times } = await this.#paintLayers(
+      const { body, line, relief, times } = await this.#paintLayers(
         held,
         parameters,
         level,
@@ -116,6 +120,7 @@ class PaintEngine implements Engine {
         groundChannels: held.channels,
         body: croppedBody(buffer, body, region),
         line: new Uint8Array(buffer, line, count).slice(),
+        relief: relief ? new Uint8Array(buffer, relief, count).slice() : null,
       };
       return { strata, times };
     });
@@ -137,7 +142,7 @@ class PaintEngine implements Engine {
       const out = this.#heap.allocate(count * held.channels * outBytes);
       try {
         const startMs = performance.now();
-        const strata = { body: layers.body.pointer, line: layers.line };
+        const strata = { body: layers.body.pointer, line: layers.line, relief: layers.relief };
         await this.#compose(held, parameters, strata, out, outBytes, memory, options);
         times.composeMs = performance.now() - startMs;
       } catch (error) {
@@ -157,8 +162,10 @@ class PaintEngine implements Engine {
   }
 
   /**
-   * Body and line of a region. The body covers the line's halo too, where that lies inside the picture.
-   * @param wantsAll also what the parameters' strengths hide: a preview may show it later without asking
+   * Body, line and relief of a region. The body covers the halos of the others too, where they lie inside the
+   * picture.
+   * @param wantsAll also the body and the line that the parameters' strengths hide: a preview may show them later
+   * without asking
    */
   async #paintLayers(
     held: HeldPhoto,
@@ -168,14 +175,20 @@ class PaintEngine implements Engine {
     memory: PaintingMemory,
     { signal, onProgress, printLongEdgeMm = defaultPrintLongEdgeMm }: PaintOptions,
     wantsAll: boolean,
-  ): Promise<{ body: BodyWindow; line: number; times: StageTimes }> {
+  ): Promise<{ body: BodyWindow; line: number; relief: number; times: StageTimes }> {
     const scale = { longEdgePx: held.longEdgePx, printLongEdgeMm };
     const bodyPlan = planBody(parameters, scale, level, held.noiseFloor);
     const linePlan = planLine(parameters, scale, level);
+    const reliefPlan = planRelief(parameters, scale, level);
+    const wantsRelief = parameters['relief.strength'] > 0;
     const wantsLine = wantsAll || parameters['line.strength'] > 0;
     const isDrawnFromBody = wantsLine && linePlan.source === 'body';
-    const wantsBody = wantsAll || parameters['body.strength'] > 0 || isDrawnFromBody;
-    const around = evenAround(region, isDrawnFromBody ? lineHaloPx(linePlan) : 0, held.levels[level]);
+    const wantsBody = wantsAll || parameters['body.strength'] > 0 || isDrawnFromBody || wantsRelief;
+    const haloPx = Math.max(
+      isDrawnFromBody ? lineHaloPx(linePlan) : 0,
+      wantsRelief ? reliefHaloPx(reliefPlan) : 0,
+    );
+    const around = evenAround(region, haloPx, held.levels[level]);
     const body: BodyWindow = {
       pointer: wantsBody ? memory.allocate(around.widthPx * around.heightPx * 6) : 0,
       xPx: around.xPx,
@@ -183,7 +196,8 @@ class PaintEngine implements Engine {
       widthPx: around.widthPx,
     };
     const line = wantsLine ? memory.allocate(region.widthPx * region.heightPx) : 0;
-    const stage = (name: 'body' | 'line') =>
+    const relief = wantsRelief ? memory.allocate(region.widthPx * region.heightPx) : 0;
+    const stage = (name: 'body' | 'line' | 'relief') =>
       onProgress && ((fraction01: number) => onProgress(fraction01, name));
 
     const startMs = performance.now();
@@ -202,16 +216,23 @@ class PaintEngine implements Engine {
         onProgress: stage('line'),
       });
     }
+    const lineEndMs = performance.now();
+    if (wantsRelief)
+      await this.#relief.paint(held, reliefPlan, level, region, body, relief, {
+        signal,
+        onProgress: stage('relief'),
+      });
     // The grain is found inside the painting passes; its share of the workers' time is its share of the clock.
     const grainShare = passes.grainMs / Math.max(1, passes.totalMs);
     const bodyMs = bodyEndMs - bodyStartMs;
     const times: StageTimes = {
       grainMs: bodyStartMs - startMs + bodyMs * grainShare,
       bodyMs: bodyMs * (1 - grainShare),
-      lineMs: performance.now() - bodyEndMs,
+      lineMs: lineEndMs - bodyEndMs,
+      reliefMs: performance.now() - lineEndMs,
       composeMs: 0,
     };
-    return { body, line, times };
+    return { body, line, relief, times };
   }
 
   async #ground(
@@ -236,7 +257,7 @@ class PaintEngine implements Engine {
   async #compose(
     held: HeldPhoto,
     parameters: Parameters,
-    strata: { body: number; line: number },
+    strata: { body: number; line: number; relief: number },
     out: number,
     outBytes: 1 | 2,
     memory: PaintingMemory,
@@ -254,6 +275,7 @@ class PaintEngine implements Engine {
         ground: held.photo,
         body: parameters['body.strength'] > 0 ? strata.body : 0,
         line: parameters['line.strength'] > 0 ? strata.line : 0,
+        relief: strata.relief,
         settings,
         blendMode: blendModeNumber[parameters['line.blend']],
         out,

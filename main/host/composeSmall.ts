@@ -30,11 +30,12 @@ export async function loadComposeSmall(): Promise<ComposeSmall> {
     const ground = reserve(strata.ground.byteLength);
     const body = reserve(strata.body.byteLength);
     const line = reserve(strata.line.byteLength);
+    const relief = strata.relief ? reserve(strata.relief.byteLength) : 0;
     const settings = reserve(compositionSettingsBytes);
     const out = reserve(count * 4);
     const missingBytes = endBytes - memory.buffer.byteLength;
     if (missingBytes > 0) memory.grow(Math.ceil(missingBytes / pageBytes));
-    copyIn(memory, strata, { ground, body, line });
+    copyIn(memory, strata, { ground, body, line, relief });
     writeCompositionSettings(
       new Float32Array(memory.buffer, settings, compositionSettingsBytes / 4),
       parameters,
@@ -47,6 +48,7 @@ export async function loadComposeSmall(): Promise<ComposeSmall> {
         groundChannels: strata.groundChannels,
         body,
         line,
+        relief,
       },
       parameters,
       settings,
@@ -60,10 +62,12 @@ export async function loadComposeSmall(): Promise<ComposeSmall> {
 function copyIn(
   memory: WebAssembly.Memory,
   strata: Strata,
-  to: { ground: number; body: number; line: number },
+  to: { ground: number; body: number; line: number; relief: number },
 ): void {
-  for (const name of ['ground', 'body', 'line'] as const) {
-    const { buffer, byteOffset, byteLength } = strata[name];
+  for (const name of ['ground', 'body', 'line', 'relief'] as const) {
+    const stratum = strata[name];
+    if (!stratum) continue;
+    const { buffer, byteOffset, byteLength } = stratum;
     new Uint8Array(memory.buffer, to[name], byteLength).set(new Uint8Array(buffer, byteOffset, byteLength));
   }
 }

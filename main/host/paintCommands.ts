@@ -120,7 +120,8 @@ function chooseWhere(
 }
 
 function planesOf(strata: Strata, omit: readonly string[]): Record<string, Uint8Array | Uint16Array> {
-  const planes = { ground: strata.ground, body: strata.body, line: strata.line };
+  const { ground, body, line, relief } = strata;
+  const planes = { ground, body, line, ...(relief && { relief }) };
   return Object.fromEntries(Object.entries(planes).filter(([name]) => !omit.includes(name)));
 }
 

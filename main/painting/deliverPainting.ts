@@ -32,7 +32,10 @@ export type WritePicture = (
 export interface DeliveryOptions {
   signal?: AbortSignal;
   /** Stages of the engine, then `writing`. */
-  onProgress?: (fraction01: number, stage: 'grain' | 'body' | 'line' | 'compose' | 'writing') => void;
+  onProgress?: (
+    fraction01: number,
+    stage: 'grain' | 'body' | 'line' | 'relief' | 'compose' | 'writing',
+  ) => void;
   writePicture: WritePicture;
   /**
    * Decides the name and what happens to a file that has it; writes to `out` itself unless given.
@@ -116,8 +119,14 @@ async function placeAsNamed(out: string, write: (path: string) => Promise<unknow
 }
 
 /** How far the whole painting is when a stage is at `fraction01`. */
-function wholeOf(stage: 'grain' | 'body' | 'line' | 'compose', fraction01: number): number {
-  const [from, to] = { grain: [0, 0.05], body: [0.05, 0.75], line: [0.75, 0.97], compose: [0.97, 1] }[stage];
+function wholeOf(stage: 'grain' | 'body' | 'line' | 'relief' | 'compose', fraction01: number): number {
+  const [from, to] = {
+    grain: [0, 0.05],
+    body: [0.05, 0.75],
+    line: [0.75, 0.9],
+    relief: [0.9, 0.97],
+    compose: [0.97, 1],
+  }[stage];
   return from + (to - from) * fraction01;
 }
 

@@ -5,6 +5,9 @@ import type { Strata } from '../../core/pixels/photo.ts';
 /** Paper that the ink is shown on in its band. */
 const bandPaper: readonly [number, number, number] = [252, 250, 245];
 
+/** Light of a flat surface. */
+const flatRelief = 127;
+
 /** Some rows and columns of a piece. */
 export interface StripPlace {
   firstRow: number;
@@ -29,7 +32,8 @@ export function writeStrip(
     const to = row * place.columnCount;
     if (stratum === 'ground') copyGround(strata, from, out, to, place.columnCount);
     else if (stratum === 'body') copyBody(strata, from, out, to, place.columnCount);
-    else copyLine(strata, from, out, to, place.columnCount, inkColour);
+    else if (stratum === 'line') copyLine(strata, from, out, to, place.columnCount, inkColour);
+    else copyRelief(strata, from, out, to, place.columnCount);
   }
 }
 
@@ -71,5 +75,13 @@ function copyLine(
     const target = (to + i) * 4;
     for (let c = 0; c < 3; c++) out[target + c] = bandPaper[c] + (ink[c] * 255 - bandPaper[c]) * coverage;
     out[target + 3] = 255;
+  }
+}
+
+function copyRelief(strata: Strata, from: number, out: Uint8ClampedArray, to: number, count: number): void {
+  for (let i = 0; i < count; i++) {
+    const grey = strata.relief ? strata.relief[from + i] : flatRelief;
+    out.fill(grey, (to + i) * 4, (to + i) * 4 + 3);
+    out[(to + i) * 4 + 3] = 255;
   }
 }

@@ -6,7 +6,7 @@
 
 /** Words of a helper's mailbox: its state, then the arguments of the kernel. */
 export const mailboxWords = 16;
-export const argumentCount = 11;
+export const argumentCount = 12;
 
 /** States of a mailbox; a helper writes `idle`, the caller `asked`. */
 export const helperState = { starting: 0, idle: 1, asked: 2 } as const;
@@ -27,10 +27,11 @@ const at = {
   groundChannels: 2,
   body: 3,
   line: 4,
-  count: 5,
-  out: 8,
-  outBytes: 9,
-  outChannels: 10,
+  relief: 5,
+  count: 6,
+  out: 9,
+  outBytes: 10,
+  outChannels: 11,
 };
 
 /** The same composition for `count` pixels from `first` on. */
@@ -40,6 +41,7 @@ export function partOf(whole: ComposeArguments, first: number, count: number): n
   // 0 stands for a stratum that is left out.
   if (whole[at.body] !== 0) part[at.body] += first * 6;
   if (whole[at.line] !== 0) part[at.line] += first;
+  if (whole[at.relief] !== 0) part[at.relief] += first;
   part[at.out] += first * whole[at.outBytes] * whole[at.outChannels];
   part[at.count] = count;
   return part;

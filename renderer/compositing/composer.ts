@@ -51,6 +51,7 @@ function holdStrata(kernels: Kernels, heap: BlockHeap, strata: Strata): HeldStra
   const groundPointer = heap.allocate(strata.ground.byteLength);
   const bodyPointer = heap.allocate(strata.body.byteLength);
   const linePointer = heap.allocate(strata.line.byteLength);
+  const reliefPointer = strata.relief ? heap.allocate(strata.relief.byteLength) : 0;
   const outPointer = heap.allocate(count * 4);
   const settingsPointer = heap.allocate(compositionSettingsBytes);
   // Views stay good when shared memory grows: the old buffer is a prefix of the new one.
@@ -61,9 +62,11 @@ function holdStrata(kernels: Kernels, heap: BlockHeap, strata: Strata): HeldStra
       : new Uint8Array(buffer, groundPointer, strata.ground.length);
   const body = new Uint16Array(buffer, bodyPointer, strata.body.length);
   const line = new Uint8Array(buffer, linePointer, strata.line.length);
+  const relief = strata.relief && new Uint8Array(buffer, reliefPointer, strata.relief.length);
   ground.set(strata.ground);
   body.set(strata.body);
   line.set(strata.line);
+  if (strata.relief) relief?.set(strata.relief);
   const out = new Uint8ClampedArray(buffer, outPointer, count * 4);
   const settings = new Float32Array(buffer, settingsPointer, compositionSettingsBytes / 4);
   const pointers: StrataPointers = {
@@ -72,10 +75,11 @@ function holdStrata(kernels: Kernels, heap: BlockHeap, strata: Strata): HeldStra
     groundChannels: strata.groundChannels,
     body: bodyPointer,
     line: linePointer,
+    relief: reliefPointer,
   };
   const composed: ComposedPointer = { out: outPointer, bytesPerSample: 1, channels: 4 };
   return {
-    strata: { ...strata, ground, body, line },
+    strata: { ...strata, ground, body, line, relief },
     compose(parameters, target) {
       writeCompositionSettings(settings, parameters);
       compose(kernels, pointers, parameters, settingsPointer, count, composed);
@@ -84,6 +88,7 @@ function holdStrata(kernels: Kernels, heap: BlockHeap, strata: Strata): HeldStra
     release() {
       for (const pointer of [groundPointer, bodyPointer, linePointer, outPointer, settingsPointer])
         heap.free(pointer);
+      if (reliefPointer) heap.free(reliefPointer);
     },
   };
 }

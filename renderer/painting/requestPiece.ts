@@ -47,6 +47,7 @@ export async function requestPiece(
     groundChannels: header.groundChannels,
     body: planes.body as Uint16Array,
     line: planes.line as Uint8Array,
+    relief: (planes.relief as Uint8Array | undefined) ?? null,
   };
   return { header, piece: { level: header.level, region: header.region, strata } };
 }

@@ -68,5 +68,6 @@ export function cropped(strata: Strata, rect: Rect): Strata {
     groundChannels: strata.groundChannels,
     body: cut(strata.body, 3),
     line: cut(strata.line, 1),
+    relief: strata.relief && cut(strata.relief, 1),
   };
 }

@@ -62,6 +62,7 @@ export class BlurEngine implements Engine {
       groundChannels: picture.channels,
       body,
       line: new Uint8Array(count).fill(7),
+      relief: null,
     };
     return { strata, times: noTimes() };
   }
@@ -118,7 +119,7 @@ export class BlurEngine implements Engine {
   }
 }
 
-const noTimes = () => ({ grainMs: 0, bodyMs: 0, lineMs: 0, composeMs: 0 });
+const noTimes = () => ({ grainMs: 0, bodyMs: 0, lineMs: 0, reliefMs: 0, composeMs: 0 });
 
 function sample(picture: DecodedPhoto, x: number, y: number, channel: number): number {
   const column = Math.min(picture.widthPx - 1, Math.max(0, x));

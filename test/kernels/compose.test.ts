@@ -19,6 +19,7 @@ interface Strata {
   channels: 3 | 4;
   body: Uint16Array;
   line: Uint8Array;
+  relief: Uint8Array;
 }
 
 /** Strata of `count` pixels; the ends of every range come up often. */
@@ -34,6 +35,8 @@ function someStrata(count: number, channels: 3 | 4, depth: 8 | 16, seed: number)
     channels,
     body: Uint16Array.from({ length: count * 3 }, () => value(65535)),
     line: Uint8Array.from({ length: count }, () => value(255)),
+    // 254 is the brightest there is.
+    relief: Uint8Array.from({ length: count }, () => value(254)),
   };
 }
 
@@ -64,6 +67,7 @@ function run(
       groundChannels: strata.channels,
       body: store(strata.body),
       line: store(strata.line),
+      relief: store(strata.relief),
     },
     parameters,
     settings,
@@ -86,7 +90,9 @@ function composedPlainly(strata: Strata, parameters: Parameters): number[] {
       const papered = ground + parameters['ground.paper'] * (paper[c] - ground);
       const painted = papered + parameters['body.strength'] * (strata.body[i * 3 + c] / 65535 - papered);
       const alpha = (parameters['line.strength'] * coverage) / 255;
-      return compositeReference(parameters['line.blend'], painted, ink[c], alpha);
+      const inked = compositeReference(parameters['line.blend'], painted, ink[c], alpha);
+      // 127 of 254 is the half that changes nothing.
+      return compositeReference('hard-light', inked, strata.relief[i] / 254, parameters['relief.strength']);
     });
     return [...rgb, strata.channels === 4 ? strata.ground[i * 4 + 3] / top : 1];
   });
@@ -100,6 +106,8 @@ const looks: Partial<Parameters>[] = [
   { 'body.strength': 0, 'line.strength': 0.5, 'line.colour': '#ff8000', 'ground.paper': 1 },
   { 'body.strength': 0.3, 'line.strength': 0, 'ground.colour': '#ffffff' },
   { 'body.strength': 1, 'line.strength': 0.8, 'line.colour': '#ffffff' },
+  { 'body.strength': 0.9, 'line.strength': 0.8, 'relief.strength': 0.6 },
+  { 'body.strength': 1, 'line.strength': 0, 'relief.strength': 1 },
 ];
 
 describe.each(modes)('composition with %s', (blend) => {
@@ -150,6 +158,7 @@ describe('composition', () => {
           channels,
           body: new Uint16Array(count * 3).fill(1234),
           line: new Uint8Array(count).fill(255),
+          relief: new Uint8Array(count).fill(254),
         };
         expect(largestDifference(run(strata, bare, depth, channels), ground)).toBe(0);
       }
@@ -158,13 +167,29 @@ describe('composition', () => {
   it('is the body itself at full strength, and brings 8 bits to 16 by 257', () => {
     const body = Uint16Array.from({ length: 65536 * 3 }, (_, i) => Math.floor(i / 3));
     const line = new Uint8Array(65536);
-    const strata: Strata = { ground: new Uint8Array(65536 * 3).fill(9), channels: 3, body, line };
+    const relief = new Uint8Array(65536);
+    const strata: Strata = { ground: new Uint8Array(65536 * 3).fill(9), channels: 3, body, line, relief };
     const painted = parametersWith({ 'body.strength': 1, 'line.strength': 0, 'ground.paper': 0 });
     expect(largestDifference(run(strata, painted, 16, 3), body)).toBe(0);
     const ground = Uint8Array.from({ length: 256 * 4 }, (_, i) => i >> 2);
     const bare = parametersWith({ 'body.strength': 0, 'line.strength': 0, 'ground.paper': 0 });
-    const small: Strata = { ground, channels: 4, body: body.slice(0, 768), line: line.slice(0, 256) };
+    const small: Strata = {
+      ground,
+      channels: 4,
+      body: body.slice(0, 768),
+      line: line.slice(0, 256),
+      relief: relief.slice(0, 256),
+    };
     expect(run(small, bare, 16, 4)).toEqual(Uint16Array.from(ground, (value) => value * 257));
+  });
+
+  it('leaves every tone as it is where the surface is flat', () => {
+    const body = Uint16Array.from({ length: 65536 * 3 }, (_, i) => Math.floor(i / 3));
+    const line = new Uint8Array(65536);
+    const relief = new Uint8Array(65536).fill(127);
+    const strata: Strata = { ground: new Uint8Array(65536 * 3), channels: 3, body, line, relief };
+    const lit = parametersWith({ 'body.strength': 1, 'line.strength': 0, 'relief.strength': 1 });
+    expect(largestDifference(run(strata, lit, 16, 3), body)).toBe(0);
   });
 
   it('makes opaque pixels where the ground has no alpha', () => {

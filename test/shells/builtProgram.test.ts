@@ -178,6 +178,7 @@ async function composeAsTheWindowDoes(
     groundChannels,
     body: put(body!.byteLength, body),
     line: put(line!.byteLength, line),
+    relief: 0,
   };
   const settings = put(compositionSettingsBytes);
   const out = put(count * 3);

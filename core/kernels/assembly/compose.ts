@@ -1,4 +1,8 @@
-// Lays the strata over one another: ground, body at strength, line at strength and blend.
+// Lays the strata over one another: ground, body at strength, line at strength and blend, relief at strength.
+import { flatRelief } from './relief';
+
+/** Bytes of the relief → hard light's source, the flat surface being exactly the half that changes nothing. */
+const reliefUnit: f32 = 1 / 254;
 
 // Blend modes, numbered as in core/composition/blendModes.ts. Formulas: W3C Compositing and Blending Level 1,
 // section 10; `b` is the backdrop (the paint), `s` the source (the ink).
@@ -67,7 +71,8 @@ function loadSamples(at: usize, bytesPerSample: i32): v128 {
 // @ts-ignore: decorator
 @inline
 function composeRun(
-  ground: usize, groundBytes: i32, groundChannels: i32, hasBody: bool, body: usize, hasLine: bool, line: usize, count: i32, settings: usize,
+  ground: usize, groundBytes: i32, groundChannels: i32, hasBody: bool, body: usize, hasLine: bool, line: usize,
+  hasRelief: bool, relief: usize, count: i32, settings: usize,
   mode: i32, out: usize, outBytes: i32, outChannels: i32,
 ): void {
   const ink = v128.load(settings, 16);
@@ -83,6 +88,7 @@ function composeRun(
   const alphaScale = f32x4.splat(top / groundTop);
   const unit = f32x4.splat(1 / top), scale = f32x4.splat(top), opaque = scale;
   const zero = f32x4.splat(0), one = f32x4.splat(1);
+  const reliefShare = f32x4.splat(load<f32>(settings, 36));
   const groundStep = <usize>(groundBytes * groundChannels);
   const outStep = <usize>(outBytes * outChannels);
   for (let i = 0; i < count; i++, ground += groundStep, out += outStep) {
@@ -100,6 +106,15 @@ function composeRun(
         const backdrop = f32x4.pmin(f32x4.mul(x, unit), one);
         const inked = f32x4.add(backdrop, f32x4.mul(alpha, f32x4.sub(blended(mode, backdrop, ink), backdrop)));
         x = f32x4.mul(f32x4.pmin(f32x4.pmax(inked, zero), one), scale);
+      }
+    }
+    if (hasRelief) {
+      const light = load<u8>(relief);
+      relief += 1;
+      if (light != flatRelief) {
+        const backdrop = f32x4.pmin(f32x4.mul(x, unit), one);
+        const lit = hardLight(backdrop, f32x4.splat(<f32>light * reliefUnit));
+        x = f32x4.mul(f32x4.add(backdrop, f32x4.mul(reliefShare, f32x4.sub(lit, backdrop))), scale);
       }
     }
     const alpha = groundChannels == 4 ? f32x4.mul(source, alphaScale) : opaque;
@@ -137,19 +152,20 @@ function storeSamples(out: usize, whole: v128, outBytes: i32, outChannels: i32):
  * @param ground interleaved, 3 or 4 channels of 1 or 2 bytes; four bytes past the end must be readable
  * @param body R, G, B of 2 bytes, or 0 where body strength is 0
  * @param line ink coverage, 1 byte, or 0 where line strength is 0
- * @param settings 12 float32: paper R, G, B, paper strength; ink R, G, B, line strength; body strength
+ * @param relief light on the surface, 1 byte, 127 where it is flat, or 0 where relief strength is 0
+ * @param settings 12 float32: paper R, G, B, paper strength; ink R, G, B, line strength; body and relief strength
  * @param out 3 or 4 channels of 1 or 2 bytes; the ground's alpha is carried over, or opaque
  */
 export function compose(
-  ground: usize, groundBytes: i32, groundChannels: i32, body: usize, line: usize, count: i32, settings: usize,
-  mode: i32, out: usize, outBytes: i32, outChannels: i32,
+  ground: usize, groundBytes: i32, groundChannels: i32, body: usize, line: usize, relief: usize, count: i32,
+  settings: usize, mode: i32, out: usize, outBytes: i32, outChannels: i32,
 ): void {
   // The window's case, with its layout known while compiling: a fifth faster than asking at every pixel.
-  if (groundBytes == 1 && groundChannels == 3 && outBytes == 1 && outChannels == 4 && body != 0 && line != 0) {
-    composeRun(ground, 1, 3, true, body, true, line, count, settings, mode, out, 1, 4);
+  if (groundBytes == 1 && groundChannels == 3 && outBytes == 1 && outChannels == 4 && body != 0 && line != 0 && relief == 0) {
+    composeRun(ground, 1, 3, true, body, true, line, false, 0, count, settings, mode, out, 1, 4);
   } else {
     composeRun(
-      ground, groundBytes, groundChannels, body != 0, body, line != 0, line, count, settings, mode, out, outBytes,
-      outChannels);
+      ground, groundBytes, groundChannels, body != 0, body, line != 0, line, relief != 0, relief, count, settings,
+      mode, out, outBytes, outChannels);
   }
 }

@@ -15,4 +15,5 @@ export * from './luma';
 export * from './dog';
 export * from './streamline';
 export * from './ink';
+export * from './relief';
 export * from './fixedPoint';

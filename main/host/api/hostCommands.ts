@@ -17,7 +17,7 @@ export interface HostCommands {
   awaitPhoto: { input: { photoId: string }; output: OpenedPhoto };
   /** Gives the photo's memory back; painting that is under way is cancelled. */
   closePhoto: { input: { photoId: string }; output: Done };
-  /** Paints one level, or a region of it, as strata: planes `ground`, `body`, `line`. */
+  /** Paints one level, or a region of it, as strata: planes `ground`, `body`, `line`, and `relief` where its strength is above 0. */
   paintStrata: { input: PaintStrataInput; frame: StrataHeader };
   /** Paints and composes a small picture: plane `rgba`, 8 bits. For presets, states and recents. */
   paintSmallPicture: { input: PaintSmallPictureInput; frame: SmallPictureHeader };
