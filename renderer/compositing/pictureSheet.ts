@@ -43,7 +43,13 @@ export class PictureSheet {
   /** The photo alone: all paint lifted off, no paper over it. */
   bareCanvas(parameters: Parameters): OffscreenCanvas {
     this.bare ??= new ComposedPicture(this.held, undefined);
-    this.bare.compose({ ...parameters, 'ground.paper': 0, 'body.strength': 0, 'line.strength': 0 });
+    this.bare.compose({
+      ...parameters,
+      'ground.paper': 0,
+      'body.strength': 0,
+      'line.strength': 0,
+      'relief.strength': 0,
+    });
     return this.bare.canvas;
   }
 

@@ -66,6 +66,7 @@ export const keyCommands: readonly KeyCommand[] = [
   { keys: ['g'], shown: 'G', does: 'Controls of the ground', run: () => chooseStratum('ground') },
   { keys: ['b'], shown: 'B', does: 'Controls of the body', run: () => chooseStratum('body') },
   { keys: ['i'], shown: 'I', does: 'Controls of the line, the ink', run: () => chooseStratum('line') },
+  { keys: ['r'], shown: 'R', does: 'Controls of the relief', run: () => chooseStratum('relief') },
   {
     keys: ['escape'],
     shown: 'Escape',

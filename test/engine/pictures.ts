@@ -48,7 +48,10 @@ export function sameSamples(a: Uint8Array | Uint16Array, b: Uint8Array | Uint16A
 
 /** Which strata differ, by name: nothing where two paintings are the same to the bit. */
 export function differingStrata(a: Strata, b: Strata): string[] {
-  return (['ground', 'body', 'line'] as const).filter((name) => !sameSamples(a[name], b[name]));
+  return (['ground', 'body', 'line', 'relief'] as const).filter((name) => {
+    const [one, other] = [a[name], b[name]];
+    return one && other ? !sameSamples(one, other) : one !== other;
+  });
 }
 
 /** The part of strata inside a rectangle. */

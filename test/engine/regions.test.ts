@@ -42,6 +42,11 @@ const looks: [string, Partial<Parameters>][] = [
     'multi-scale, wide ink from the photo',
     { 'body.brush': '13px', 'line.width': '19px', 'line.source': 'photo', 'line.softness': 1 },
   ],
+  ['relief of fine bristle', { 'body.brush': '24px', 'relief.strength': 0.7, 'relief.bristle': '2px' }],
+  [
+    'relief of wide bristle',
+    { 'body.method': 'grain-wise', 'body.brush': '9px', 'relief.strength': 0.7, 'relief.bristle': '9px' },
+  ],
   ['grain-wise', { 'body.method': 'grain-wise', 'body.brush': '10px', 'body.pull': 2 }],
   ['sectors', { 'body.method': 'sectors', 'body.brush': '9px' }],
   ['quadrant', { 'body.method': 'quadrant', 'body.brush': '22px' }],

@@ -42,6 +42,7 @@ const looks: [string, Partial<Parameters>][] = [
     'multi-scale, no coats, pull 2',
     { 'body.method': 'multi-scale', 'body.brush': '17px', 'body.pull': 2, 'body.coats': 0 },
   ],
+  ['multi-scale with relief', { 'body.brush': '24px', 'relief.strength': 0.8, 'relief.bristle': '5px' }],
   ['grain-wise', { 'body.method': 'grain-wise', 'body.brush': '9px' }],
   ['sectors', { 'body.method': 'sectors', 'body.brush': '8px', 'body.crispness': 5 }],
   ['quadrant', { 'body.method': 'quadrant', 'body.brush': '14px' }],
