@@ -1,7 +1,7 @@
 import type { Kernels } from '../kernels/module.ts';
 import type { Rect } from '../pixels/photo.ts';
 import { cellPx, findVectors, layOutGrained, readLuma } from './grainedTile.ts';
-import { evenUp, type InkJob, type LineJob, type TileGrid } from './jobs.ts';
+import { evenUp, type InkJob, type LineJob } from './jobs.ts';
 import { streamlineStepPx } from './linePlan.ts';
 
 /** S where no ink can come: any value above every threshold. */
@@ -108,9 +108,4 @@ export function lineRegion(
   const x1 = Math.min(lastX, Math.ceil((region.xPx + region.widthPx) / side) + 1);
   const y1 = Math.min(lastY, Math.ceil((region.yPx + region.heightPx) / side) + 1);
   return { xPx: x0, yPx: y0, widthPx: x1 - x0, heightPx: y1 - y0 };
-}
-
-/** Tiles of a line's level. */
-export function lineGrid(region: Rect, tileWidthPx: number, tileHeightPx: number): TileGrid {
-  return { ...region, tileWidthPx, tileHeightPx };
 }

@@ -6,22 +6,18 @@ import {
   type PaintJob,
   type SourcePicture,
   type TensorPlanes,
-  type TileGrid,
 } from '../../core/pipeline/jobs.ts';
 import { closingFloorShare } from '../../core/pipeline/paintTile.ts';
 import { layOutScratch } from '../../core/pipeline/scratch.ts';
 import type { Rect } from '../../core/pixels/photo.ts';
+import { BodyRows, stackRows } from './bodyRows.ts';
 import { CoarseLevel } from './coarseLevel.ts';
 import type { HeldPhoto } from './heldPhoto.ts';
+import type { PhotoRows } from './photoRows.ts';
+import { cutIntoTiles, type TileSize } from './regions.ts';
 import type { SharedHeap } from './sharedHeap.ts';
 import type { TableStore, Tables } from './tableStore.ts';
 import type { WorkerPool } from './workerPool.ts';
-
-/** How pictures are cut. Even numbers; any give the same pixels. */
-export interface TileSize {
-  widthPx: number;
-  heightPx: number;
-}
 
 /** Milliseconds, summed over the workers. */
 export interface PassTimes {
@@ -34,13 +30,18 @@ export interface BodyOptions {
   onProgress?: (fraction01: number) => void;
 }
 
+export interface BodyRowsOptions extends BodyOptions {
+  /** Sliding rows are painted in multiples of this; even. */
+  chunkRows: number;
+}
+
 /** One pass over a region of a level. */
-interface Pass {
+export interface Pass {
   source: SourcePicture;
   region: Rect;
   destination: Destination;
   /** Coarser level to merge with; coats go over finished paint and have none. */
-  coarse: CoarseLevel | null;
+  coarse: SourcePicture | null;
   /** The coarser level's tensor, which flat areas take their orientation from. */
   orientation: TensorPlanes | null;
   /** Receives the tensor for the finer level. */
@@ -68,61 +69,71 @@ export class BodyPainter {
   ) {}
 
   /**
-   * Paints a region of `level` into a body stratum.
+   * Prepares to paint a region of `level` into a body stratum, row by row from the top. Coarse levels that are
+   * held whole are painted now; larger ones slide along with the finest.
    * @param region even corner, inside the level
-   * @param body pointer to u16 × 3 for region.widthPx × region.heightPx
+   * @param levels the photo as this painting reads it
    */
-  async paint(
+  async rows(
     photo: HeldPhoto,
+    levels: PhotoRows,
     plan: BodyPlan,
     level: number,
     region: Rect,
-    body: number,
-    options: BodyOptions = {},
-  ): Promise<PassTimes> {
+    options: BodyRowsOptions,
+  ): Promise<BodyRows> {
     const times: PassTimes = { grainMs: 0, totalMs: 0 };
-    const progress = weighProgress(photo, plan, level, region, options.onProgress);
-    const coarse = await this.#coarseLevelFor(
+    const levelCount = Math.min(plan.levelCount, photo.levels.length - level);
+    const firstWhole = Math.max(1, photo.firstWholeLevel - level);
+    const progress = weighProgress(photo, plan, level, region, firstWhole, options.onProgress);
+    const whole = await this.#wholeCoarse(
       photo,
       plan,
       level,
+      { firstWhole, levelCount },
       { ...options, onProgress: progress.coarse },
       times,
     );
+    const stack = new BodyRows(times, progress.coarseShare01, whole);
     try {
-      const destination: Destination = {
-        kind: 'body',
-        pointer: body,
-        strideElements: region.widthPx,
-        originX: region.xPx,
-        originY: region.yPx,
-      };
-      const source = await photo.level(level, this.pool, options.signal);
       const finest = { ...options, onProgress: progress.finest };
-      const orientation = coarse?.tensor ?? null;
-      const { noiseFloor } = plan;
-      const pass: Pass = { source, region, destination, coarse, orientation, tensorOut: null, noiseFloor };
-      await this.#run(plan, pass, finest, times);
-    } finally {
-      coarse?.letGo();
+      const run = (pass: Pass, isFinest: boolean) =>
+        this.#run(plan, pass, isFinest ? finest : { ...options, onProgress: undefined }, times);
+      await stackRows(stack, {
+        photo,
+        levels,
+        plan,
+        level,
+        region,
+        haloPx: haloOf(plan),
+        depths: Math.min(firstWhole, levelCount),
+        whole,
+        coatFloorFactor,
+        chunkRows: options.chunkRows,
+        heap: this.heap,
+        run,
+      });
+      return stack;
+    } catch (error) {
+      stack.close();
+      throw error;
     }
-    return times;
   }
 
-  /** The level just above the finest, from what is kept or painted anew; null for a single level. */
-  async #coarseLevelFor(
+  /** The finest of the coarse levels that are held whole, from what is kept or painted anew; null for none. */
+  async #wholeCoarse(
     photo: HeldPhoto,
     plan: BodyPlan,
     level: number,
+    { firstWhole, levelCount }: { firstWhole: number; levelCount: number },
     options: BodyOptions,
     times: PassTimes,
   ): Promise<CoarseLevel | null> {
-    const levelCount = Math.min(plan.levelCount, photo.levels.length - level);
-    if (levelCount < 2) return null;
+    if (levelCount <= firstWhole) return null;
     const key = JSON.stringify([plan, level]);
     if (photo.kept?.key === key) return photo.kept.coarse.hold();
     let coarse: CoarseLevel | null = null;
-    for (let depth = levelCount - 1; depth >= 1; depth--) {
+    for (let depth = levelCount - 1; depth >= firstWhole; depth--) {
       const finer = await this.#paintCoarse(photo, plan, level, depth, coarse, options, times).finally(() =>
         coarse?.letGo(),
       );
@@ -164,7 +175,8 @@ export class BodyPainter {
       });
       const common = { region: whole, orientation: coarse?.tensor ?? null, tensorOut: tensor };
       const levelFloor = plan.noiseFloor / 2 ** depth;
-      const first = { ...common, source, destination: into(to), coarse, noiseFloor: levelFloor };
+      const merged = coarse?.picture ?? null;
+      const first = { ...common, source, destination: into(to), coarse: merged, noiseFloor: levelFloor };
       await this.#run(plan, first, options, times);
       for (let coat = 0; coat < plan.coats; coat++) {
         const paint: SourcePicture = { pointer: to, widthPx, heightPx, bytesPerSample: 0, channels: 4 };
@@ -187,10 +199,7 @@ export class BodyPainter {
 
   async #run(plan: BodyPlan, pass: Pass, options: BodyOptions, times: PassTimes): Promise<void> {
     const grid = cutIntoTiles(pass.region, this.tileSize);
-    const haloPx =
-      plan.method === 'quadrant' || plan.method === 'bilateral'
-        ? evenUp(Math.ceil(plan.radiusPx))
-        : passHaloPx(plan);
+    const haloPx = haloOf(plan);
     // One stride for every pass of a plan: the bank's distances hold for it.
     const strideElements = this.tileSize.widthPx + 4 * haloPx;
     const leastFloor = pass.noiseFloor * (pass.coarse ? closingFloorShare : 1);
@@ -202,7 +211,7 @@ export class BodyPainter {
       source: pass.source,
       destination: pass.destination,
       method: plan.method === 'multi-scale' ? 'grain-wise' : plan.method,
-      coarse: pass.coarse?.picture ?? null,
+      coarse: pass.coarse,
       coarseTensor: pass.orientation,
       tensorOut: pass.tensorOut,
       haloPx,
@@ -228,8 +237,11 @@ export class BodyPainter {
   }
 }
 
-function cutIntoTiles(region: Rect, size: TileSize): TileGrid {
-  return { ...region, tileWidthPx: size.widthPx, tileHeightPx: size.heightPx };
+/** Halo of one smoothing. */
+function haloOf(plan: BodyPlan): number {
+  return plan.method === 'quadrant' || plan.method === 'bilateral'
+    ? evenUp(Math.ceil(plan.radiusPx))
+    : passHaloPx(plan);
 }
 
 /** Shares the progress between the coarse levels, pass by pass, and the finest. */
@@ -238,16 +250,24 @@ function weighProgress(
   plan: BodyPlan,
   level: number,
   region: Rect,
+  firstWhole: number,
   report?: (fraction01: number) => void,
-): { coarse?: (fraction01: number) => void; finest?: (fraction01: number) => void } {
-  if (!report) return {};
+): {
+  coarseShare01: number;
+  coarse?: (fraction01: number) => void;
+  finest?: (fraction01: number) => void;
+} {
   const { widthPx, heightPx } = photo.levels[level];
   const finestCost = 2 * region.widthPx * region.heightPx;
-  const coarseCost = plan.levelCount > 1 ? ((widthPx * heightPx) / 3) * (2 + plan.coats) : 0;
+  // All levels together, from the first whole one on: a third more than that one alone.
+  const coarsePixels = ((widthPx * heightPx) / 4 ** firstWhole) * (4 / 3);
+  const coarseCost = plan.levelCount > firstWhole ? coarsePixels * (2 + plan.coats) : 0;
   const share = coarseCost / (coarseCost + finestCost);
+  if (!report) return { coarseShare01: share };
   let done = 0;
   let last = 0;
   return {
+    coarseShare01: share,
     coarse: (fraction01) => {
       // Passes follow one another; each starts at 0 again. Coarse passes are short, the first finer one dominates.
       if (fraction01 < last) done += (1 - done) * 0.4;

@@ -50,6 +50,32 @@ export interface OpenOptions {
   toneMap?: ToneMap | null;
 }
 
+/** A photo whose rows are read as they are needed, from a file say: upright, encoded values, as `DecodedPhoto`. */
+export interface RowSource {
+  readonly widthPx: number;
+  readonly heightPx: number;
+  readonly channels: 3 | 4;
+  readonly bytesPerSample: 1 | 2;
+  /** Fills `to`, which is shared memory, with whole rows, interleaved samples in the machine's byte order. */
+  readRows(topRow: number, rowCount: number, to: Uint8Array, signal?: AbortSignal): Promise<void>;
+}
+
+export interface BandOptions extends Omit<PaintOptions, 'onProgress'> {
+  depth?: 8 | 16;
+  /** Rows of a band; any number gives the same pixels. */
+  bandRows?: number;
+  /** Of the whole painting. */
+  onProgress?: (fraction01: number) => void;
+}
+
+/** Composed rows of a picture. */
+export interface PaintedBand {
+  topRow: number;
+  rowCount: number;
+  /** Interleaved, the photo's channels. A view of shared memory, good until the receiver's promise settles. */
+  pixels: Uint8Array | Uint16Array;
+}
+
 /** A composed picture in the shared memory. */
 export interface ComposedPicture {
   /** Interleaved, the photo's channels. A view of shared memory: read it or write it to a file, then release it. */
@@ -64,6 +90,12 @@ export interface Engine {
   readonly workers: number;
   /** Takes the pixels in (copied) and measures the noise; the pyramid is built when first needed. */
   open(photo: DecodedPhoto, options?: OpenOptions): Promise<EnginePhoto>;
+  /**
+   * Takes a photo that is too large to be held: its rows are read as they are needed, now once to measure the
+   * noise. Everything painted of it equals, to the bit, what `open` would give.
+   * @param source has to answer until the photo is closed and its paintings have ended
+   */
+  openRows(source: RowSource, options?: OpenOptions): Promise<EnginePhoto>;
   /**
    * Paints one pyramid level, or a region of it, as strata. At level 0 the pixels equal the file's. Coarse
    * levels are kept with the photo, so that moving to another region of the same parameters is quick.
@@ -81,5 +113,16 @@ export interface Engine {
     parameters: Parameters,
     options?: PaintOptions & { depth?: 8 | 16 },
   ): Promise<ComposedPicture>;
+  /**
+   * Paints at full resolution from top to bottom and hands the composed rows over band by band: the same pixels
+   * as `paintPicture`, in memory that does not grow with the height.
+   * @param receive the next band waits for it; bands are contiguous
+   */
+  paintBands(
+    photo: EnginePhoto,
+    parameters: Parameters,
+    receive: (band: PaintedBand) => Promise<void> | void,
+    options?: BandOptions,
+  ): Promise<StageTimes>;
   close(): Promise<void>;
 }

@@ -1,11 +1,13 @@
 import type { Kernels } from '../../core/kernels/module.ts';
-import type { BodyWindow, LineJob } from '../../core/pipeline/jobs.ts';
+import { type BodyWindow, evenUp, type LineJob } from '../../core/pipeline/jobs.ts';
 import { edgeEmphasis, type LinePlan, streamlineStepPx } from '../../core/pipeline/linePlan.ts';
-import { lineGrid, lineRegion, lineScratchBytes } from '../../core/pipeline/lineTile.ts';
+import { lineRegion, lineScratchBytes } from '../../core/pipeline/lineTile.ts';
 import type { Rect } from '../../core/pixels/photo.ts';
-import type { TileSize } from './bodyPainter.ts';
 import type { HeldPhoto } from './heldPhoto.ts';
+import type { PhotoRows } from './photoRows.ts';
+import { cutIntoTiles, type TileSize } from './regions.ts';
 import type { SharedHeap } from './sharedHeap.ts';
+import type { RowReader } from './slidingRows.ts';
 import type { WorkerPool } from './workerPool.ts';
 
 /** Draws ink lines: S at the line's own level, then coverage at the painted one. */
@@ -17,9 +19,23 @@ export class LinePainter {
     readonly tileSize: TileSize,
   ) {}
 
+  /** What a line that is drawn from the photo reads. */
+  async reader(
+    photo: HeldPhoto,
+    levels: PhotoRows,
+    plan: LinePlan,
+    level: number,
+    region: Rect,
+  ): Promise<RowReader> {
+    const shift = shiftFor(plan, photo, level);
+    const area = lineRegion(region, shift, photo.levels[level]);
+    return (await levels.level(level + shift)).reader(area.yPx - readHaloPx(plan));
+  }
+
   /**
    * @param body the painted body, which covers the region and the line's halo around it; not read where the plan
    *   draws from the photo
+   * @param fromPhoto what `reader` gave where it does
    * @param line receives coverage, one byte a pixel of the region
    */
   async paint(
@@ -28,25 +44,26 @@ export class LinePainter {
     level: number,
     region: Rect,
     body: BodyWindow,
+    fromPhoto: RowReader | null,
     line: number,
     options: { signal?: AbortSignal; onProgress?: (fraction01: number) => void } = {},
   ): Promise<void> {
     const picture = photo.levels[level];
-    const shift = Math.min(plan.shift, photo.levels.length - 1 - level);
+    const shift = shiftFor(plan, photo, level);
     const area = lineRegion(region, shift, picture);
-    const fromPhoto = plan.source === 'photo';
-    const source = fromPhoto ? await photo.level(level + shift, this.pool, options.signal) : null;
+    const haloPx = readHaloPx(plan);
+    await fromPhoto?.need(area.yPx - haloPx, evenUp(area.yPx + area.heightPx) + haloPx);
     const tables = this.#makeTables(plan);
     const field = this.heap.allocate(area.widthPx * area.heightPx * 4);
     try {
       const job: LineJob = {
         kind: 'line',
-        grid: lineGrid(area, this.tileSize.widthPx, this.tileSize.heightPx),
+        grid: cutIntoTiles(area, this.tileSize),
         pictureWidthPx: picture.widthPx,
         pictureHeightPx: picture.heightPx,
         shift,
         body: fromPhoto ? null : body,
-        photo: source,
+        photo: fromPhoto?.picture ?? null,
         plan,
         tables,
         out: field,
@@ -90,4 +107,14 @@ export class LinePainter {
     );
     return tables;
   }
+}
+
+/** The line's level is never beyond the coarsest. */
+function shiftFor(plan: LinePlan, photo: HeldPhoto, level: number): number {
+  return Math.min(plan.shift, photo.levels.length - 1 - level);
+}
+
+/** Pixels of the line's level that are read around what is drawn of it. */
+function readHaloPx(plan: LinePlan): number {
+  return plan.marginPx + plan.lumaHaloPx + 4;
 }

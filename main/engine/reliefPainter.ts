@@ -1,12 +1,12 @@
 import type { Kernels } from '../../core/kernels/module.ts';
 import type { BodyWindow, SurfaceJob } from '../../core/pipeline/jobs.ts';
 import { streamlineStepPx } from '../../core/pipeline/linePlan.ts';
-import { lineGrid, lineRegion } from '../../core/pipeline/lineTile.ts';
+import { lineRegion } from '../../core/pipeline/lineTile.ts';
 import type { ReliefPlan } from '../../core/pipeline/reliefPlan.ts';
 import { surfaceScratchBytes } from '../../core/pipeline/reliefTile.ts';
 import type { Rect } from '../../core/pixels/photo.ts';
-import type { TileSize } from './bodyPainter.ts';
-import { type HeldPhoto, rowGrid } from './heldPhoto.ts';
+import type { HeldPhoto } from './heldPhoto.ts';
+import { cutIntoTiles, rowGrid, type TileSize } from './regions.ts';
 import type { SharedHeap } from './sharedHeap.ts';
 import type { WorkerPool } from './workerPool.ts';
 
@@ -46,7 +46,7 @@ export class ReliefPainter {
     try {
       const surface: SurfaceJob = {
         kind: 'surface',
-        grid: lineGrid(area, this.tileSize.widthPx, this.tileSize.heightPx),
+        grid: cutIntoTiles(area, this.tileSize),
         pictureWidthPx: picture.widthPx,
         pictureHeightPx: picture.heightPx,
         shift,

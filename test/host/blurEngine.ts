@@ -1,6 +1,14 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
-import type { ComposedPicture, Engine, EnginePhoto, PaintOptions } from '../../main/engine/engineApi.ts';
+import type {
+  BandOptions,
+  ComposedPicture,
+  Engine,
+  EnginePhoto,
+  PaintedBand,
+  PaintOptions,
+  RowSource,
+} from '../../main/engine/engineApi.ts';
 
 interface HeldPhoto extends EnginePhoto {
   /** One picture a level, 8 bits. */
@@ -43,6 +51,14 @@ export class BlurEngine implements Engine {
       },
     };
     return held;
+  }
+
+  async openRows(source: RowSource, options: { signal?: AbortSignal } = {}): Promise<EnginePhoto> {
+    const { widthPx, heightPx, channels, bytesPerSample } = source;
+    const bytes = new Uint8Array(widthPx * heightPx * channels * bytesPerSample);
+    await source.readRows(0, heightPx, bytes, options.signal);
+    const pixels = bytesPerSample === 1 ? bytes : new Uint16Array(bytes.buffer);
+    return this.open({ widthPx, heightPx, channels, pixels }, options);
   }
 
   async paintStrata(
@@ -89,6 +105,18 @@ export class BlurEngine implements Engine {
         this.composedHeld -= 1;
       },
     };
+  }
+
+  async paintBands(
+    photo: EnginePhoto,
+    parameters: Parameters,
+    receive: (band: PaintedBand) => Promise<void> | void,
+    { onProgress: _, ...options }: BandOptions = {},
+  ): Promise<ReturnType<typeof noTimes>> {
+    const { pixels, release } = await this.paintPicture(photo, parameters, options);
+    await receive({ topRow: 0, rowCount: photo.heightPx, pixels });
+    release();
+    return noTimes();
   }
 
   async close(): Promise<void> {}
