@@ -1,7 +1,8 @@
 import { extname } from 'node:path';
 import { FileError } from './fileError.ts';
 import { isOpaque } from './opaque.ts';
-import type { OutputFormat, PictureFile } from './photoFile.ts';
+import type { OutputFormat } from './photoFile.ts';
+import type { PixelHolder } from './pictureRows.ts';
 
 const formatOfExtension: Record<string, OutputFormat> = {
   '.jpg': 'jpeg',
@@ -56,21 +57,30 @@ export function outputDepth(format: OutputFormat, wanted: 8 | 16): 8 | 16 {
  */
 export async function assertFormatHolds(
   path: string,
-  picture: Pick<PictureFile, 'widthPx' | 'heightPx' | 'channels' | 'pixels'>,
+  picture: PixelHolder,
   signal?: AbortSignal,
   format: OutputFormat = outputFormatFor(path),
 ): Promise<void> {
-  const edgePx = Math.max(picture.widthPx, picture.heightPx);
-  if (edgePx > longestEdgePx[format])
-    throw new FileError(
-      path,
-      `${nameOf[format]} holds at most ${longestEdgePx[format]} pixels an edge, this picture has ${edgePx}`,
-      'Choose TIFF or PNG.',
-    );
+  assertSizeFits(path, picture, format);
   if (format === 'jpeg' && !(await isOpaque(picture, signal)))
     throw new FileError(
       path,
       'the picture is partly transparent, which JPEG cannot hold',
       'Choose PNG, TIFF or WebP.',
+    );
+}
+
+/** @throws FileError where a format does not hold so many pixels an edge */
+export function assertSizeFits(
+  path: string,
+  { widthPx, heightPx }: { widthPx: number; heightPx: number },
+  format: OutputFormat,
+): void {
+  const edgePx = Math.max(widthPx, heightPx);
+  if (edgePx > longestEdgePx[format])
+    throw new FileError(
+      path,
+      `${nameOf[format]} holds at most ${longestEdgePx[format]} pixels an edge, this picture has ${edgePx}`,
+      'Choose TIFF or PNG.',
     );
 }

@@ -1,4 +1,5 @@
 import type { DecodedPhoto } from '../../core/pixels/photo.ts';
+import type { SpilledPixels } from './spilledPixels.ts';
 
 /** A photo read from a file, with what has to travel on to the painted file. */
 export interface PhotoFile extends DecodedPhoto {
@@ -17,8 +18,11 @@ export interface PhotoFile extends DecodedPhoto {
 
 export type OutputFormat = 'jpeg' | 'png' | 'tiff' | 'webp';
 
-/** What a painted file is made of. */
-export interface PictureFile extends DecodedPhoto {
+/** What a painted file is made of, but for its pixels. */
+export interface PictureFacts {
+  widthPx: number;
+  heightPx: number;
+  channels: 3 | 4;
   format: OutputFormat;
   iccProfile?: Uint8Array;
   densityPpi?: number;
@@ -29,3 +33,16 @@ export interface PictureFile extends DecodedPhoto {
   /** 1…100, for JPEG and WebP. */
   quality?: number;
 }
+
+/** A painted file. */
+export interface PictureFile extends PictureFacts {
+  pixels: Uint8Array | Uint16Array;
+}
+
+/** A painted file whose pixels are in a temporary TIFF, being too many to be held. */
+export interface SpilledPictureFile extends PictureFacts {
+  pixels: SpilledPixels;
+}
+
+/** A picture to be written, wherever its pixels are. */
+export type AnyPictureFile = PictureFile | SpilledPictureFile;

@@ -9,7 +9,7 @@ import type { PhotoFile } from './photoFile.ts';
 import { openPhoto, type PhotoHeader, readHeader } from './photoHeader.ts';
 
 /** What becomes of the colours while reading. */
-interface ColourPlan {
+export interface ColourPlan {
   /** Numbers kept as stored, or converted by the library through the embedded profile to sRGB. */
   convert: boolean;
   iccProfile?: Uint8Array;
@@ -30,24 +30,37 @@ export async function readPhoto(path: string, options: { signal?: AbortSignal } 
   const opened = await openPhoto(path, { wholeFile: true, signal });
   const header = await readHeader(path, opened, signal);
   const colours = planColours(header.metadata);
-  const decoded = await decode(path, opened.source, header, colours, signal);
+  const decoded = await decode({ path, source: opened.source, header, colours }, signal);
   const upright = await turnUpright(decoded, header.orientation, signal);
   return {
-    path,
-    format: header.format,
-    depth: header.depth,
+    ...factsOf(path, header, colours, decoded.remarks),
     widthPx: upright.widthPx,
     heightPx: upright.heightPx,
     channels: decoded.channels,
     pixels: upright.pixels,
-    iccProfile: colours.iccProfile,
-    densityPpi: writtenDensity(header.metadata),
-    exif: header.metadata.exif && asPlainBytes(header.metadata.exif),
-    remarks: [...colours.remarks, ...decoded.remarks, ...pageRemarks(header.metadata)],
   };
 }
 
-function planColours(metadata: Metadata): ColourPlan {
+/** What travels on to the painted file. */
+export function factsOf(
+  path: string,
+  header: PhotoHeader,
+  colours: ColourPlan,
+  remarks: string[],
+): Omit<PhotoFile, 'widthPx' | 'heightPx' | 'channels' | 'pixels'> {
+  const { metadata } = header;
+  return {
+    path,
+    format: header.format,
+    depth: header.depth,
+    iccProfile: colours.iccProfile,
+    densityPpi: writtenDensity(metadata),
+    exif: metadata.exif && asPlainBytes(metadata.exif),
+    remarks: [...colours.remarks, ...remarks, ...pageRemarks(metadata)],
+  };
+}
+
+export function planColours(metadata: Metadata): ColourPlan {
   const embedded = metadata.icc && asPlainBytes(metadata.icc);
   const space = metadata.space;
   const described = embedded && profileSpace(embedded);
@@ -88,12 +101,15 @@ function writtenDensity(metadata: Metadata): number | undefined {
   return metadata.density && metadata.density !== 72 ? metadata.density : undefined;
 }
 
-function pipeline(
-  source: Buffer | string,
-  header: PhotoHeader,
-  colours: ColourPlan,
-  failOn: Strictness,
-): Sharp {
+/** A photo that is about to be decoded. */
+export interface PhotoToDecode {
+  path: string;
+  source: Buffer | string;
+  header: PhotoHeader;
+  colours: ColourPlan;
+}
+
+function pipeline({ source, header, colours }: PhotoToDecode, failOn: Strictness): Sharp {
   const image = sharp(source, {
     failOn,
     limitInputPixels: false, // The header was held against our own limit.
@@ -101,45 +117,47 @@ function pipeline(
     sequentialRead: true,
   });
   // Asking for 16-bit output alone silently gives 8-bit values: the working space must be 16-bit too.
-  return header.depth === 16 ? image.toColourspace('rgb16').raw({ depth: 'ushort' }) : image.raw();
+  return header.depth === 16 ? image.toColourspace('rgb16') : image;
 }
 
 /**
  * Decodes strictly first. A file that only drew warnings is decoded again without minding them, with a remark;
  * one that is cut off, or breaks the decoder, is refused.
+ * @param run lets the library decode to wherever the pixels shall go
  */
-async function decode(
-  path: string,
-  source: Buffer | string,
-  header: PhotoHeader,
-  colours: ColourPlan,
+export async function decodeWith<T>(
+  photo: PhotoToDecode,
+  run: (image: Sharp) => Promise<T>,
   signal?: AbortSignal,
-) {
-  const remarks: string[] = [];
-  const attempt = async (failOn: Strictness) =>
-    unlessAborted(pipeline(source, header, colours, failOn).toBuffer({ resolveWithObject: true }), signal);
-  let result: Awaited<ReturnType<typeof attempt>>;
+): Promise<{ result: T; remarks: string[] }> {
+  const attempt = (failOn: Strictness) => unlessAborted(run(pipeline(photo, failOn)), signal);
   try {
-    result = await attempt('warning');
+    return { result: await attempt('warning'), remarks: [] };
   } catch (strictFailure) {
     signal?.throwIfAborted();
-    const fault = whyUndecodable(path, strictFailure);
+    const fault = whyUndecodable(photo.path, strictFailure);
     try {
-      result = await attempt('truncated');
+      const result = await attempt('truncated');
+      return { result, remarks: [`The file ${fault.problem}: parts of the picture may look wrong.`] };
     } catch (failure) {
       signal?.throwIfAborted();
-      throw whyUndecodable(path, failure);
+      throw whyUndecodable(photo.path, failure);
     }
-    remarks.push(`The file ${fault.problem}: parts of the picture may look wrong.`);
   }
+}
+
+async function decode(photo: PhotoToDecode, signal?: AbortSignal) {
+  const { path, header } = photo;
+  const { result, remarks } = await decodeWith(
+    photo,
+    (image) =>
+      (header.depth === 16 ? image.raw({ depth: 'ushort' }) : image.raw()).toBuffer({
+        resolveWithObject: true,
+      }),
+    signal,
+  );
   const { data, info } = result;
-  if (info.channels !== 3 && info.channels !== 4)
-    throw new FileError(
-      path,
-      `holds ${info.channels} channels`,
-      'Export it as an RGB picture and open that.',
-    );
-  const channels: 3 | 4 = info.channels;
+  const channels = paintableChannels(path, info.channels);
   const pixels = header.depth === 16 ? asSamples16(data) : asPlainBytes(data);
   if (pixels.length !== info.width * info.height * channels)
     throw new FileError(
@@ -148,6 +166,12 @@ async function decode(
       'Export it again as RGB and open that.',
     );
   return { pixels, widthPx: info.width, heightPx: info.height, channels, remarks };
+}
+
+/** @throws FileError where a photo decodes to anything but RGB, with or without alpha */
+export function paintableChannels(path: string, channels: number): 3 | 4 {
+  if (channels === 3 || channels === 4) return channels;
+  throw new FileError(path, `holds ${channels} channels`, 'Export it as an RGB picture and open that.');
 }
 
 /** The same memory without Buffer's own methods, which differ from those of a plain array (`slice`). */

@@ -3,7 +3,9 @@ import { promisify } from 'node:util';
 import { deflate } from 'node:zlib';
 import type { CarriedParts } from './carriedParts.ts';
 import { Turns } from './interruption.ts';
-import type { PictureFile } from './photoFile.ts';
+import type { AnyPictureFile } from './photoFile.ts';
+import { depthOf, samplesOf } from './pictureRows.ts';
+import type { PixelFacts } from './spilledPixels.ts';
 import type { UnfinishedFile } from './unfinishedFile.ts';
 
 // Written here and not by the image library: strips go to the disk as they are packed, on every core, so no
@@ -23,6 +25,10 @@ const bytesOfType: Record<number, number> = {
   [undefinedType]: 1,
 };
 
+/** Where the pixels of an uncompressed TIFF begin. */
+export const tiffPixelsAt = 8;
+
+const noCompression = 1;
 const deflateCompression = 8;
 const horizontalPredictor = 2;
 const rgbPhotometric = 2;
@@ -44,21 +50,45 @@ const littleEndian = endianness() === 'LE';
 /** Writes a picture as a baseline TIFF 6.0 with deflate and horizontal differencing; 16 bits stay 16 bits. */
 export async function writeTiff(
   file: UnfinishedFile,
-  picture: PictureFile,
+  picture: AnyPictureFile,
   parts: CarriedParts,
   signal?: AbortSignal,
 ): Promise<void> {
-  const header = Buffer.alloc(8);
-  header.write(littleEndian ? 'II' : 'MM', 'latin1');
-  writeUint16(header, 42, 2);
-  await file.append(header);
+  await file.append(fileHeader(0));
   const strips = await writeStrips(file, picture, signal);
   // Directories start on a word boundary.
   if (file.bytesWritten % 2 === 1) await file.append(Uint8Array.of(0));
   const directoryAt = Buffer.alloc(4);
   writeUint32(directoryAt, file.bytesWritten, 0);
-  await file.append(directoryBytes(fieldsOf(picture, parts, strips), file.bytesWritten), signal);
+  const layout = { ...strips, bits: depthOf(picture), compression: deflateCompression };
+  await file.append(directoryBytes(fieldsOf(picture, parts, layout), file.bytesWritten), signal);
   await file.patch(directoryAt, 4);
+}
+
+/** What stands before and behind the pixels of an uncompressed TIFF whose pixels begin at `tiffPixelsAt`. */
+export function uncompressedTiff(facts: PixelFacts): {
+  header: Uint8Array;
+  tail: Uint8Array;
+  tailAt: number;
+} {
+  const rowBytes = facts.widthPx * facts.channels * facts.bytesPerSample;
+  const rows = Math.max(1, Math.floor(stripBytes / rowBytes));
+  const count = Math.ceil(facts.heightPx / rows);
+  const offsets = Array.from({ length: count }, (_, k) => tiffPixelsAt + k * rows * rowBytes);
+  const sizes = offsets.map((_, k) => Math.min(rows, facts.heightPx - k * rows) * rowBytes);
+  const end = tiffPixelsAt + facts.heightPx * rowBytes;
+  const tailAt = end + (end % 2);
+  const bits = facts.bytesPerSample * 8;
+  const fields = fieldsOf(facts, {}, { rows, offsets, sizes, bits, compression: noCompression });
+  return { header: fileHeader(tailAt), tail: directoryBytes(fields, tailAt), tailAt };
+}
+
+function fileHeader(directoryAt: number): Uint8Array {
+  const header = Buffer.alloc(tiffPixelsAt);
+  header.write(littleEndian ? 'II' : 'MM', 'latin1');
+  writeUint16(header, 42, 2);
+  writeUint32(header, directoryAt, 4);
+  return header;
 }
 
 interface Strips {
@@ -69,15 +99,13 @@ interface Strips {
 
 async function writeStrips(
   file: UnfinishedFile,
-  picture: PictureFile,
+  picture: AnyPictureFile,
   signal?: AbortSignal,
 ): Promise<Strips> {
-  const { pixels, heightPx } = picture;
+  const { heightPx } = picture;
   const rowSamples = picture.widthPx * picture.channels;
-  const rows = Math.max(
-    1,
-    Math.min(heightPx, Math.floor(stripBytes / (rowSamples * pixels.BYTES_PER_ELEMENT))),
-  );
+  const rowBytes = (rowSamples * depthOf(picture)) / 8;
+  const rows = Math.max(1, Math.min(heightPx, Math.floor(stripBytes / rowBytes)));
   const strips: Strips = { rows, offsets: [], sizes: [] };
   const turns = new Turns(signal);
   const packing: Promise<Uint8Array>[] = [];
@@ -91,7 +119,7 @@ async function writeStrips(
     for (let top = 0; top < heightPx; top += rows) {
       const bottom = Math.min(top + rows, heightPx);
       const differences = differencesAlongRows(
-        pixels.subarray(top * rowSamples, bottom * rowSamples),
+        await samplesOf(picture, top, bottom, signal),
         rowSamples,
         picture.channels,
       );
@@ -120,14 +148,17 @@ function differencesAlongRows(
   return new Uint8Array(differences.buffer, differences.byteOffset, differences.byteLength);
 }
 
-function fieldsOf(picture: PictureFile, parts: CarriedParts, strips: Strips): Field[] {
+function fieldsOf(
+  picture: { widthPx: number; heightPx: number; channels: 3 | 4 },
+  parts: CarriedParts,
+  { bits, compression, ...strips }: Strips & { bits: number; compression: number },
+): Field[] {
   const { channels } = picture;
-  const bits = picture.pixels.BYTES_PER_ELEMENT * 8;
   const fields: Field[] = [
     { tag: 256, type: longType, values: [picture.widthPx] },
     { tag: 257, type: longType, values: [picture.heightPx] },
     { tag: 258, type: shortType, values: Array(channels).fill(bits) },
-    { tag: 259, type: shortType, values: [deflateCompression] },
+    { tag: 259, type: shortType, values: [compression] },
     { tag: 262, type: shortType, values: [rgbPhotometric] },
     { tag: 273, type: longType, values: strips.offsets },
     { tag: 274, type: shortType, values: [1] },
@@ -135,8 +166,9 @@ function fieldsOf(picture: PictureFile, parts: CarriedParts, strips: Strips): Fi
     { tag: 278, type: longType, values: [strips.rows] },
     { tag: 279, type: longType, values: strips.sizes },
     { tag: 284, type: shortType, values: [1] },
-    { tag: 317, type: shortType, values: [horizontalPredictor] },
   ];
+  if (compression !== noCompression)
+    fields.push({ tag: 317, type: shortType, values: [horizontalPredictor] });
   if (parts.densityPpi) {
     const resolution = [Math.round(parts.densityPpi * 1000), 1000];
     fields.push({ tag: 282, type: rationalType, values: resolution });

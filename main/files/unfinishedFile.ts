@@ -11,11 +11,27 @@ const writeBytes = promisify(write);
 const flush = promisify(fsync);
 
 const machine = createHash('sha256').update(hostname()).digest('hex').slice(0, 8);
-const namePattern = /^\.oxgall-([0-9a-f]{8})-(\d+)-[0-9a-f]+\.part$/;
+const namePattern = /^\.oxgall-([0-9a-f]{8})-(\d+)-[0-9a-f]+\.part(\.v)?$/;
 // Bounded, so that an abort is noticed soon.
 const writeAtMostBytes = 8 * 2 ** 20;
 
-const underWay = new Set<UnfinishedFile>();
+/** Whatever leaves a file behind unless it is discarded. */
+export interface Discardable {
+  discard(): void;
+}
+
+const underWay = new Set<Discardable>();
+
+/** Has `discardUnfinished` discard it too, until it is taken off the list. */
+export function listUnderWay(file: Discardable): () => boolean {
+  underWay.add(file);
+  return () => underWay.delete(file);
+}
+
+/** A name in a folder that tells whose file it is, so that what a killed run leaves can be cleared away. */
+export function temporaryPath(folder: string): string {
+  return join(folder, `.oxgall-${machine}-${process.pid}-${randomBytes(6).toString('hex')}.part`);
+}
 
 /**
  * A file being written beside its target. It takes the target's name only when complete and flushed, so the
@@ -32,8 +48,7 @@ export class UnfinishedFile {
     readonly targetPath: string,
     private readonly finalPath: string,
   ) {
-    const name = `.oxgall-${machine}-${process.pid}-${randomBytes(6).toString('hex')}.part`;
-    this.temporaryPath = join(dirname(finalPath), name);
+    this.temporaryPath = temporaryPath(dirname(finalPath));
     // Created in the same turn as it is listed, so that discardUnfinished never misses one.
     this.#descriptor = openSync(
       this.temporaryPath,
@@ -156,7 +171,7 @@ function isRunning(processId: number): boolean {
   }
 }
 
-function removeQuietly(path: string): void {
+export function removeQuietly(path: string): void {
   try {
     unlinkSync(path);
   } catch {

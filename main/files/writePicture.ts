@@ -1,19 +1,16 @@
-import type { Sharp } from 'sharp';
 import type { CarriedParts } from './carriedParts.ts';
+import { type EncodedPicture, encodePicture } from './encodePicture.ts';
 import { exifForPainting } from './exifBlock.ts';
 import { FileError } from './fileError.ts';
 import { sharp } from './imageLibrary.ts';
-import { unlessAborted } from './interruption.ts';
-import { jpegLimits, jpegWithParts } from './jpegParts.ts';
+import { jpegLimits } from './jpegParts.ts';
 import { assertFormatHolds, outputDepth } from './outputFormat.ts';
-import type { PictureFile } from './photoFile.ts';
-import { pngWithParts } from './pngParts.ts';
+import type { AnyPictureFile } from './photoFile.ts';
+import { depthOf } from './pictureRows.ts';
+import { SpilledPixels } from './spilledPixels.ts';
 import { fileErrorFrom } from './systemErrors.ts';
 import { writeTiff } from './tiffWriter.ts';
 import { UnfinishedFile } from './unfinishedFile.ts';
-import { webpWithParts } from './webpParts.ts';
-
-const defaultQuality = 92;
 
 /** What was written. */
 export interface WrittenPicture {
@@ -30,7 +27,7 @@ export interface WrittenPicture {
  */
 export async function writePicture(
   path: string,
-  picture: PictureFile,
+  picture: AnyPictureFile,
   options: { signal?: AbortSignal } = {},
 ): Promise<WrittenPicture> {
   const { signal } = options;
@@ -40,10 +37,13 @@ export async function writePicture(
   const remarks: string[] = [];
   const parts = partsToCarry(picture, remarks);
   // Encoded before the file is begun, so that a temporary file exists only while bytes go into it.
-  const pieces = picture.format === 'tiff' ? undefined : await encode(picture, parts, path, signal);
-  const file = await UnfinishedFile.begin(path);
+  const encoded = picture.format === 'tiff' ? undefined : await encodePicture(picture, parts, path, signal);
+  const file = await UnfinishedFile.begin(path).catch((failure) => {
+    encoded?.rest?.discard();
+    throw failure;
+  });
   try {
-    if (pieces) for (const piece of pieces) await file.append(piece, signal);
+    if (encoded) await appendEncoded(file, encoded, signal);
     else await writeTiff(file, picture, parts, signal);
     await verify(file.temporaryPath, path, picture, parts);
     signal?.throwIfAborted();
@@ -53,19 +53,40 @@ export async function writePicture(
     throw fileErrorFrom(path, failure);
   } finally {
     file.discard();
+    encoded?.rest?.discard();
   }
 }
 
-function requireSoundPicture({ widthPx, heightPx, channels, pixels, format }: PictureFile): void {
+const copyBytes = 4 * 2 ** 20;
+
+async function appendEncoded(
+  file: UnfinishedFile,
+  { pieces, rest, restAt }: EncodedPicture,
+  signal?: AbortSignal,
+): Promise<void> {
+  for (const piece of pieces) await file.append(piece, signal);
+  if (!rest) return;
+  const end = rest.bytes;
+  for (let at = restAt; at < end; at += copyBytes) {
+    const piece = new Uint8Array(Math.min(copyBytes, end - at));
+    await rest.read(piece, at, signal);
+    await file.append(piece, signal);
+  }
+}
+
+function requireSoundPicture(picture: AnyPictureFile): void {
+  const { widthPx, heightPx, channels, pixels, format } = picture;
   const expected = widthPx * heightPx * channels;
-  if (pixels.length !== expected || expected === 0)
-    throw new RangeError(`Expected ${expected} samples for pixels but received ${pixels.length}`);
-  const depth = pixels.BYTES_PER_ELEMENT === 2 ? 16 : 8;
+  const received =
+    pixels instanceof SpilledPixels ? pixels.widthPx * pixels.heightPx * pixels.channels : pixels.length;
+  if (received !== expected || expected === 0)
+    throw new RangeError(`Expected ${expected} samples for pixels but received ${received}`);
+  const depth = depthOf(picture);
   if (outputDepth(format, depth) !== depth)
     throw new RangeError(`Expected 8-bit pixels for ${format} but received ${depth}-bit ones`);
 }
 
-function partsToCarry(picture: PictureFile, remarks: string[]): CarriedParts {
+function partsToCarry(picture: AnyPictureFile, remarks: string[]): CarriedParts {
   const parts: CarriedParts = { iccProfile: picture.iccProfile, densityPpi: picture.densityPpi };
   const hasRoomForExif = picture.format !== 'tiff';
   if (picture.exif && hasRoomForExif) {
@@ -84,68 +105,15 @@ function partsToCarry(picture: PictureFile, remarks: string[]): CarriedParts {
   return parts;
 }
 
-/**
- * Compresses pixels alone; profile, density and EXIF are put in afterwards. The library would convert pixels to
- * a profile it is given, and the way round it (a TIFF in memory) costs a copy of the whole picture.
- */
-async function encode(
-  picture: PictureFile,
-  parts: CarriedParts,
-  path: string,
-  signal?: AbortSignal,
-): Promise<Uint8Array[]> {
-  const { widthPx, heightPx, channels, pixels } = picture;
-  const raw = sharp(pixels, {
-    raw: { width: widthPx, height: heightPx, channels },
-    limitInputPixels: false,
-  });
-  let encoded: Uint8Array;
-  try {
-    encoded = await unlessAborted(compress(raw, picture).toBuffer(), signal);
-  } catch (failure) {
-    signal?.throwIfAborted();
-    const reason = failure instanceof Error ? failure.message.split('\n')[0] : String(failure);
-    throw new FileError(
-      path,
-      `could not be compressed (${reason})`,
-      'Choose another format or a smaller size.',
-      {
-        cause: failure,
-      },
-    );
-  }
-  if (picture.format === 'jpeg') return jpegWithParts(encoded, parts);
-  if (picture.format === 'png') return pngWithParts(encoded, parts);
-  return webpWithParts(encoded, parts, picture);
-}
-
-/**
- * Settings chosen by time and size of a smooth picture of 24 megapixels, one thread, sharp 0.35.5 on two shared
- * cores. PNG, 8 bits: level 1 0.6 s 47 MB, level 2 1.1 s 36 MB, level 2 with filters 1.9 s 22 MB, level 6 2.0 s
- * 32 MB. PNG, 16 bits: filters take 6.6 s. WebP: effort 2 1.9 s, effort 4 3.2 s, 5 % smaller.
- */
-function compress(raw: Sharp, picture: PictureFile): Sharp {
-  const quality = picture.quality ?? defaultQuality;
-  if (picture.format === 'jpeg')
-    // Optimised Huffman tables save 6 % and take five times as long.
-    return raw.removeAlpha().jpeg({ quality, chromaSubsampling: '4:4:4', optimiseCoding: false });
-  if (picture.format === 'webp')
-    // exact: colours under transparent pixels are kept.
-    return raw.webp({ quality, alphaQuality: 100, exact: true, effort: 2 });
-  const is16Bit = picture.pixels.BYTES_PER_ELEMENT === 2;
-  const image = is16Bit ? raw.toColourspace('rgb16') : raw;
-  return image.png({ compressionLevel: 2, adaptiveFiltering: !is16Bit });
-}
-
 /** Reads the header back with the library: a file that says something else than asked is not delivered. */
 async function verify(
   writtenPath: string,
   path: string,
-  picture: PictureFile,
+  picture: AnyPictureFile,
   parts: CarriedParts,
 ): Promise<void> {
   const found = await sharp(writtenPath, { limitInputPixels: false }).metadata();
-  const is16Bit = picture.pixels.BYTES_PER_ELEMENT === 2;
+  const is16Bit = depthOf(picture) === 16;
   const faults = [
     found.width === picture.widthPx && found.height === picture.heightPx ? '' : 'size',
     picture.format === 'jpeg' || found.channels === picture.channels ? '' : 'channels',

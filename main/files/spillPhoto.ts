@@ -1,0 +1,111 @@
+import { endianness } from 'node:os';
+import type { Sharp } from 'sharp';
+import { FileError } from './fileError.ts';
+import { swapsEdges, turnUpright } from './orientation.ts';
+import type { PhotoFile } from './photoFile.ts';
+import { openPhoto, readHeader } from './photoHeader.ts';
+import { decodeWith, factsOf, paintableChannels, planColours } from './readPhoto.ts';
+import { type PixelFacts, SpilledPixels } from './spilledPixels.ts';
+import { SpillFile } from './spillFile.ts';
+
+/** A photo whose pixels are in a temporary file; discard them in the end. */
+export interface SpilledPhoto extends Omit<PhotoFile, 'pixels'> {
+  pixels: SpilledPixels;
+}
+
+/** Rows turned at a time. */
+const turnRows = 256;
+
+/**
+ * Reads a photo as `readPhoto` does, the pixels going to a temporary file instead of memory.
+ * @throws FileError naming the file, what is wrong with it and what to do
+ * @throws the signal's reason when it is aborted
+ */
+export async function spillPhoto(
+  path: string,
+  options: { signal?: AbortSignal } = {},
+): Promise<SpilledPhoto> {
+  const { signal } = options;
+  signal?.throwIfAborted();
+  const opened = await openPhoto(path, { wholeFile: false, signal });
+  const header = await readHeader(path, opened, signal);
+  const colours = planColours(header.metadata);
+  const stored = await SpillFile.create('.v');
+  let decoding: Promise<unknown> = Promise.resolve();
+  const decode = (image: Sharp) => {
+    decoding = image.toFile(stored.path);
+    return decoding;
+  };
+  try {
+    const { remarks } = await decodeWith({ path, source: opened.source, header, colours }, decode, signal);
+    const pixels = await uncompressedPixels(path, stored);
+    const expected = header.depth === 16 ? 2 : 1;
+    if (pixels.bytesPerSample !== expected)
+      throw new FileError(path, 'decodes to a wrong bit depth', 'Export it again as RGB and open that.');
+    const upright = await turned(pixels, header.orientation, signal);
+    const { widthPx, heightPx, channels } = upright;
+    return { ...factsOf(path, header, colours, remarks), widthPx, heightPx, channels, pixels: upright };
+  } catch (failure) {
+    stored.discardBehind(decoding);
+    throw failure;
+  }
+}
+
+/** Header of the image library's uncompressed format, in the machine's byte order. */
+const headerBytes = 64;
+const magic = 0x08f2a6b6;
+const formatOfBytes = { 1: 0, 2: 2 } as const;
+
+async function uncompressedPixels(path: string, file: SpillFile): Promise<SpilledPixels> {
+  const bytes = new Uint8Array(headerBytes);
+  await file.read(bytes, 0);
+  const view = new DataView(bytes.buffer);
+  const isLittle = endianness() === 'LE';
+  const int = (at: number) => view.getInt32(at, isLittle);
+  const [widthPx, heightPx, format] = [int(4), int(8), int(20)];
+  const channels = paintableChannels(path, int(12));
+  const bytesPerSample = format === formatOfBytes[2] ? 2 : 1;
+  const isSound = view.getUint32(0, false) === magic || view.getUint32(0, true) === magic;
+  const isKnown = format === formatOfBytes[bytesPerSample];
+  const pixels = new SpilledPixels(file, { widthPx, heightPx, channels, bytesPerSample }, headerBytes);
+  if (!isSound || !isKnown || file.bytes < headerBytes + widthPx * heightPx * pixels.pixelBytes)
+    throw new FileError(path, 'could not be unpacked', 'Export it again as RGB and open that.');
+  return pixels;
+}
+
+/**
+ * The pixels upright, in a file of their own where anything is to be done; the stored ones go then. Blocks of rows
+ * are turned one at a time; after a quarter turn they stand side by side as strips.
+ */
+async function turned(
+  stored: SpilledPixels,
+  orientation: number,
+  signal?: AbortSignal,
+): Promise<SpilledPixels> {
+  if (orientation === 1) return stored;
+  const isQuarter = swapsEdges(orientation);
+  const isReversed = [3, 4, 6, 7].includes(orientation);
+  const { widthPx, heightPx, channels, bytesPerSample, pixelBytes } = stored;
+  const facts: PixelFacts = isQuarter
+    ? { widthPx: heightPx, heightPx: widthPx, channels, bytesPerSample }
+    : { widthPx, heightPx, channels, bytesPerSample };
+  const edges: number[] = [];
+  const file = await SpillFile.create();
+  try {
+    for (let top = 0; top < heightPx; top += turnRows) {
+      const rows = Math.min(turnRows, heightPx - top);
+      const block = { pixels: await stored.samples(top, rows, signal), widthPx, heightPx: rows, channels };
+      const { pixels } = await turnUpright(block, orientation, signal);
+      // Where the block's first row, or column, comes to lie.
+      const first = isReversed ? heightPx - top - rows : top;
+      edges.push(first);
+      const piece = new Uint8Array(pixels.buffer, pixels.byteOffset, pixels.byteLength);
+      await file.write(piece, first * widthPx * pixelBytes, signal);
+    }
+    stored.discard();
+    return new SpilledPixels(file, facts, 0, isQuarter ? edges.sort((a, b) => a - b) : [0]);
+  } catch (failure) {
+    file.discard();
+    throw failure;
+  }
+}
