@@ -37,6 +37,8 @@ export interface EnginePhoto {
   readonly levels: readonly { widthPx: number; heightPx: number }[];
   /** The noise floor that `auto` stands for, measured at full resolution, encoded units 0…1. */
   readonly noiseFloor: number;
+  /** Its pixels are not in memory: better painted in bands. */
+  readonly isReadByRows: boolean;
   /** Gives the memory back; safe while a painting of it is under way, and more than once. */
   close(): void;
 }
@@ -58,6 +60,8 @@ export interface RowSource {
   readonly bytesPerSample: 1 | 2;
   /** Fills `to`, which is shared memory, with whole rows, interleaved samples in the machine's byte order. */
   readRows(topRow: number, rowCount: number, to: Uint8Array, signal?: AbortSignal): Promise<void>;
+  /** Called once no row will be asked for any more. */
+  close(): void;
 }
 
 export interface BandOptions extends Omit<PaintOptions, 'onProgress'> {
@@ -93,7 +97,7 @@ export interface Engine {
   /**
    * Takes a photo that is too large to be held: its rows are read as they are needed, now once to measure the
    * noise. Everything painted of it equals, to the bit, what `open` would give.
-   * @param source has to answer until the photo is closed and its paintings have ended
+   * @param source closed with the photo, when its paintings have ended; at once where it cannot be taken
    */
   openRows(source: RowSource, options?: OpenOptions): Promise<EnginePhoto>;
   /**

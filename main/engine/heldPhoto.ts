@@ -49,7 +49,7 @@ export class HeldPhoto implements EnginePhoto, LevelSource {
   #isClosed = false;
 
   private constructor(
-    facts: Omit<RowSource, 'readRows'>,
+    facts: Omit<RowSource, 'readRows' | 'close'>,
     source: RowSource | null,
     heap: SharedHeap,
     wholeLevelPixels: number,
@@ -272,6 +272,7 @@ export class HeldPhoto implements EnginePhoto, LevelSource {
   #freeIfUnused(): void {
     if (!this.#isClosed || this.#users > 0) return;
     this.dropKept();
+    this.#source?.close();
     for (const picture of this.#pictures.splice(0)) if (picture) this.#heap.free(picture.pointer);
     if (this.#tone) {
       this.#heap.free(this.#tone.settings);

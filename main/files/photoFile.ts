@@ -39,10 +39,7 @@ export interface PictureFile extends PictureFacts {
   pixels: Uint8Array | Uint16Array;
 }
 
-/** A painted file whose pixels are in a temporary TIFF, being too many to be held. */
-export interface SpilledPictureFile extends PictureFacts {
-  pixels: SpilledPixels;
+/** A painted file whose pixels are in memory or, where they are too many to be held, in a temporary TIFF. */
+export interface AnyPictureFile extends PictureFacts {
+  pixels: Uint8Array | Uint16Array | SpilledPixels;
 }
-
-/** A picture to be written, wherever its pixels are. */
-export type AnyPictureFile = PictureFile | SpilledPictureFile;

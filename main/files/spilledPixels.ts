@@ -54,6 +54,11 @@ export class SpilledPixels implements RowSource {
     return this.bytesPerSample === 1 ? bytes : new Uint16Array(bytes.buffer);
   }
 
+  /** As `discard`: whoever reads the rows has had them all. */
+  close(): void {
+    this.discard();
+  }
+
   discard(): void {
     this.file.discard();
   }

@@ -1,8 +1,10 @@
 import { createHash } from 'node:crypto';
 import type { Parameters } from '../../core/parameters/table.ts';
-import type { Engine, EnginePhoto, PaintOptions, StageTimes } from '../engine/engineApi.ts';
-import { outputDepth } from '../files/outputFormat.ts';
-import type { OutputFormat, PhotoFile, PictureFile } from '../files/photoFile.ts';
+import type { Engine, EnginePhoto, StageTimes } from '../engine/engineApi.ts';
+import { assertSizeFits, outputDepth } from '../files/outputFormat.ts';
+import type { AnyPictureFile, OutputFormat, PhotoFile } from '../files/photoFile.ts';
+import type { SpilledPixels } from '../files/spilledPixels.ts';
+import { paintSpilled } from './paintSpilled.ts';
 
 /** A photo that was read and is held by an engine; its own pixels are not needed any more. */
 export interface HeldPhotoFile {
@@ -25,7 +27,7 @@ export interface PaintingOrder {
 
 export type WritePicture = (
   path: string,
-  picture: PictureFile,
+  picture: AnyPictureFile,
   options: { signal?: AbortSignal },
 ) => Promise<unknown>;
 
@@ -73,29 +75,16 @@ export async function deliverPainting(
   const { enginePhoto, file } = photo;
   const { widthPx, heightPx, channels, iccProfile, densityPpi, exif } = file;
   const depth = outputDepth(order.format, order.depth ?? file.depth);
-  const options: PaintOptions = {
-    signal,
-    printLongEdgeMm: order.printLongEdgeMm,
-    onProgress:
-      onProgress && ((fraction01, stage) => onProgress(paintShare01 * wholeOf(stage, fraction01), stage)),
-  };
-  const painted = await engine.paintPicture(enginePhoto, order.parameters, { ...options, depth });
+  // Found out before the painting: of a very large picture that takes minutes.
+  assertSizeFits(order.out, file, order.format);
+  const painted = await paint(engine, enginePhoto, { ...order, depth }, { signal, onProgress });
   try {
     signal?.throwIfAborted();
-    const pixelsSha256 = createHash('sha256').update(bytesOf(painted.pixels)).digest('hex');
     onProgress?.(paintShare01, 'writing');
     const startMs = performance.now();
-    const picture: PictureFile = {
-      widthPx,
-      heightPx,
-      channels,
-      pixels: painted.pixels,
-      iccProfile,
-      densityPpi,
-      exif,
-      format: order.format,
-      quality: order.quality,
-    };
+    const { pixels, pixelsSha256 } = painted;
+    const parts = { iccProfile, densityPpi, exif, format: order.format, quality: order.quality };
+    const picture: AnyPictureFile = { widthPx, heightPx, channels, pixels, ...parts };
     const remarks = [...file.remarks];
     const path = await place(
       order.out,
@@ -111,6 +100,37 @@ export async function deliverPainting(
   } finally {
     painted.release();
   }
+}
+
+interface PaintedPixels {
+  pixels: Uint8Array | Uint16Array | SpilledPixels;
+  pixelsSha256: string;
+  times: StageTimes;
+  release(): void;
+}
+
+/** Paints to memory, or to a file where the photo itself is in one. */
+async function paint(
+  engine: Engine,
+  photo: EnginePhoto,
+  { parameters, depth, printLongEdgeMm }: PaintingOrder & { depth: 8 | 16 },
+  { signal, onProgress }: Pick<DeliveryOptions, 'signal' | 'onProgress'>,
+): Promise<PaintedPixels> {
+  if (photo.isReadByRows) {
+    const report = onProgress && ((fraction01: number) => onProgress(paintShare01 * fraction01, 'body'));
+    const options = { depth, printLongEdgeMm, signal, onProgress: report };
+    const painted = await paintSpilled(engine, photo, parameters, options);
+    return { ...painted, release: () => painted.pixels.discard() };
+  }
+  const painted = await engine.paintPicture(photo, parameters, {
+    depth,
+    printLongEdgeMm,
+    signal,
+    onProgress:
+      onProgress && ((fraction01, stage) => onProgress(paintShare01 * wholeOf(stage, fraction01), stage)),
+  });
+  const pixelsSha256 = createHash('sha256').update(bytesOf(painted.pixels)).digest('hex');
+  return { ...painted, pixelsSha256 };
 }
 
 async function placeAsNamed(out: string, write: (path: string) => Promise<unknown>): Promise<string> {

@@ -1,6 +1,6 @@
 import type { Engine } from '../engine/engineApi.ts';
 import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
-import { readPhoto } from '../files/readPhoto.ts';
+import { removeAbandonedSpills } from '../files/spillFile.ts';
 import { writePicture } from '../files/writePicture.ts';
 import {
   type DeliveredPainting,
@@ -8,6 +8,7 @@ import {
   deliverPainting,
   type PaintingOrder,
 } from './deliverPainting.ts';
+import { holdPhoto, letGo, readAnyPhoto } from './holdPhoto.ts';
 
 /** A painting made from a photo's file. */
 export interface PaintedFile extends DeliveredPainting {
@@ -27,18 +28,25 @@ export async function paintToFile(
   engine: Engine | Promise<Engine>,
   photoPath: string,
   order: PaintingOrder,
-  options: Omit<DeliveryOptions, 'writePicture'> = {},
+  options: Omit<DeliveryOptions, 'writePicture'> & { inMemoryPixels?: number } = {},
 ): Promise<PaintedFile> {
-  const { signal } = options;
+  const { signal, inMemoryPixels } = options;
   const startMs = performance.now();
   await refuseOverwritingOriginal(photoPath, order.out);
-  const photo = await readPhoto(photoPath, { signal });
-  // Checked once there is something to paint: a bad photo must leave no trace of a trial file.
-  await assertWritable(order.out);
+  await removeAbandonedSpills();
+  const photo = await readAnyPhoto(photoPath, { signal, inMemoryPixels });
+  let painter: Engine;
   const readMs = performance.now() - startMs;
-  const painter = await engine;
+  try {
+    // Checked once there is something to paint: a bad photo must leave no trace of a trial file.
+    await assertWritable(order.out);
+    painter = await engine;
+  } catch (failure) {
+    letGo(photo);
+    throw failure;
+  }
   const openStartMs = performance.now();
-  const enginePhoto = await painter.open(photo, { signal });
+  const enginePhoto = await holdPhoto(painter, photo, { signal });
   const openMs = performance.now() - openStartMs;
   try {
     const { pixels: _, ...file } = photo;

@@ -34,12 +34,17 @@ class CountedRows implements RowSource {
   readonly bytesPerSample: 1 | 2;
   most = 0;
   total = 0;
+  closed = 0;
 
   constructor(readonly photo: DecodedPhoto) {
     this.widthPx = photo.widthPx;
     this.heightPx = photo.heightPx;
     this.channels = photo.channels;
     this.bytesPerSample = photo.pixels.BYTES_PER_ELEMENT as 1 | 2;
+  }
+
+  close(): void {
+    this.closed += 1;
   }
 
   async readRows(topRow: number, rowCount: number, to: Uint8Array): Promise<void> {
@@ -214,7 +219,10 @@ describe('a photo read by rows', () => {
     await paintedInBands(sliding[0], held, parametersWith({ 'body.brush': '40px' }), 36);
     expect(rows.total).toBe(1600);
     expect(rows.most).toBeLessThan(400);
+    expect(rows.closed).toBe(0);
     held.close();
+    held.close();
+    expect(rows.closed).toBe(1);
   });
 });
 

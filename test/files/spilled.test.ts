@@ -91,7 +91,10 @@ describe('a photo unpacked to a file has the pixels and facts of one in memory',
   it.each([2, 3, 4, 5, 6, 7, 8])('orientation %i, 8 and 16 bits', async (orientation) => {
     const jpeg = await scattered(3, 8).withMetadata({ orientation }).jpeg().toBuffer();
     await expectAsInMemory(await folder.file(`o${orientation}.jpg`, jpeg));
-    const tiff = await scattered(4, 16, 257, 513).withMetadata({ orientation }).tiff({ compression: 'deflate' }).toBuffer();
+    const tiff = await scattered(4, 16, 257, 513)
+      .withMetadata({ orientation })
+      .tiff({ compression: 'deflate' })
+      .toBuffer();
     const path = await folder.file(`o${orientation}.tif`, tiff);
     expect(await sharp(path).metadata()).toMatchObject({ orientation, depth: 'ushort', channels: 4 });
     await expectAsInMemory(path);

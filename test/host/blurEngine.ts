@@ -44,6 +44,7 @@ export class BlurEngine implements Engine {
       channels: photo.channels,
       levels: pictures.map(({ widthPx, heightPx }) => ({ widthPx, heightPx })),
       noiseFloor: 0.0125,
+      isReadByRows: false,
       pictures,
       close: () => {
         if (isOpen) this.openPhotos -= 1;
@@ -57,6 +58,7 @@ export class BlurEngine implements Engine {
     const { widthPx, heightPx, channels, bytesPerSample } = source;
     const bytes = new Uint8Array(widthPx * heightPx * channels * bytesPerSample);
     await source.readRows(0, heightPx, bytes, options.signal);
+    source.close();
     const pixels = bytesPerSample === 1 ? bytes : new Uint16Array(bytes.buffer);
     return this.open({ widthPx, heightPx, channels, pixels }, options);
   }
