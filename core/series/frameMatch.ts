@@ -10,6 +10,8 @@ export interface FrameMatch {
   readonly toneMap: ToneMap | null;
   /** Takes the place of `body.noiseFloor`. */
   readonly noiseFloor: number | 'auto' | null;
+  /** Takes the place of `body.hold`. */
+  readonly hold: number | null;
   /** Takes the place of `line.threshold`. */
   readonly threshold: number | null;
 }
@@ -18,17 +20,19 @@ export interface FrameMatch {
 export interface MatchParts {
   readonly tone: boolean;
   readonly noise: boolean;
+  /** As much detail held, so that as large a share of the picture is flat. */
+  readonly detail: boolean;
   readonly ink: boolean;
 }
 
-export const allMatchParts: MatchParts = { tone: true, noise: true, ink: true };
+export const allMatchParts: MatchParts = { tone: true, noise: true, detail: true, ink: true };
 
 /** What the lead gets, and every frame of a run without matching: nothing is changed, to the bit. */
-export const noMatch: FrameMatch = { toneMap: null, noiseFloor: null, threshold: null };
+export const noMatch: FrameMatch = { toneMap: null, noiseFloor: null, hold: null, threshold: null };
 
 /** Whether a match changes nothing. */
 export function isNoMatch(match: FrameMatch): boolean {
-  return match.toneMap === null && match.noiseFloor === null && match.threshold === null;
+  return match.toneMap === null && changesNoParameter(match);
 }
 
 /**
@@ -36,10 +40,15 @@ export function isNoMatch(match: FrameMatch): boolean {
  * @param parameters of the frame's state; not modified, and returned as they are where nothing changes
  */
 export function parametersWithMatch(parameters: Parameters, match: FrameMatch): Parameters {
-  if (match.noiseFloor === null && match.threshold === null) return parameters;
+  if (changesNoParameter(match)) return parameters;
   return {
     ...parameters,
     'body.noiseFloor': match.noiseFloor ?? parameters['body.noiseFloor'],
+    'body.hold': match.hold ?? parameters['body.hold'],
     'line.threshold': match.threshold ?? parameters['line.threshold'],
   };
+}
+
+function changesNoParameter({ noiseFloor, hold, threshold }: FrameMatch): boolean {
+  return noiseFloor === null && hold === null && threshold === null;
 }

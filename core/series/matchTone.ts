@@ -1,10 +1,5 @@
 import type { Triple } from '../colour/lab.ts';
-import {
-  mongeKantorovichMap,
-  partOfMap,
-  type StretchLimits,
-  stretchLimits,
-} from './mongeKantorovich.ts';
+import { mongeKantorovichMap, partOfMap, type StretchLimits, stretchLimits } from './mongeKantorovich.ts';
 import { momentsOf, type Palette, type ToneFigures, toneFiguresOf } from './palette.ts';
 import { roundedToneMap, type ToneMap } from './toneMap.ts';
 
