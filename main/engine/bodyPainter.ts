@@ -31,8 +31,8 @@ export interface BodyOptions {
 }
 
 export interface BodyRowsOptions extends BodyOptions {
-  /** Sliding rows are painted in multiples of this; even. */
-  chunkRows: number;
+  /** Sliding rows are painted in multiples of this, even; exactly those that are asked for where it is null. */
+  chunkRows: number | null;
 }
 
 /** One pass over a region of a level. */

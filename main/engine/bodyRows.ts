@@ -25,7 +25,7 @@ interface PassSettings {
   /** A coat takes its orientation from rows of the coarser level that the first pass has asked for. */
   orientation: TensorPlanes | null;
   tensorOut: TensorPlanes | null;
-  chunkRows: number;
+  chunkRows: number | null;
   run: (pass: Pass) => Promise<void>;
 }
 
@@ -136,7 +136,7 @@ export interface BodyStack {
   /** The first coarser one that is. */
   whole: CoarseLevel | null;
   coatFloorFactor: number;
-  chunkRows: number;
+  chunkRows: number | null;
   heap: SharedHeap;
   run(pass: Pass, isFinest: boolean): Promise<void>;
 }

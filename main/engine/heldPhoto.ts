@@ -36,13 +36,14 @@ export class HeldPhoto implements EnginePhoto, LevelSource {
   readonly channels: 3 | 4;
   readonly levels: { widthPx: number; heightPx: number }[];
   readonly firstWholeLevel: number;
+  readonly isReadByRows: boolean;
   noiseFloor = 0;
   /** Coarse levels of the last painting, kept for its neighbours: see PaintEngine. */
   kept: { key: string; coarse: CoarseLevel } | null = null;
   readonly #heap: SharedHeap;
   /** Level 0 and those from `firstWholeLevel` on, where they are held. */
   readonly #pictures: (SourcePicture | undefined)[] = [];
-  readonly #source: RowSource | null;
+  #source: RowSource | null;
   #bytesPerSample: 1 | 2;
   #tone: ToneTables | null = null;
   #users = 0;
@@ -65,6 +66,7 @@ export class HeldPhoto implements EnginePhoto, LevelSource {
     );
     this.firstWholeLevel = firstSmall < 0 ? this.levels.length : firstSmall;
     this.#source = source;
+    this.isReadByRows = source !== null;
     this.#heap = heap;
   }
 
@@ -86,9 +88,6 @@ export class HeldPhoto implements EnginePhoto, LevelSource {
     return new HeldPhoto(source, source, heap, wholeLevelPixels);
   }
 
-  get isReadByRows(): boolean {
-    return this.#source !== null;
-  }
 
   /** Of the pixels that are painted: 2 for a photo whose tones are mapped. */
   get bytesPerSample(): 1 | 2 {
@@ -273,6 +272,7 @@ export class HeldPhoto implements EnginePhoto, LevelSource {
     if (!this.#isClosed || this.#users > 0) return;
     this.dropKept();
     this.#source?.close();
+    this.#source = null;
     for (const picture of this.#pictures.splice(0)) if (picture) this.#heap.free(picture.pointer);
     if (this.#tone) {
       this.#heap.free(this.#tone.settings);

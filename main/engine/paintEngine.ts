@@ -29,10 +29,8 @@ import { WorkerPool } from './workerPool.ts';
 
 /** Levels of more pixels are not kept whole, 16 bytes a pixel, but made again by each painting that reads them. */
 const defaultWholeLevelPixels = 9_000_000;
-/** Sliding rows are painted a tile's height at a time; or exactly those that are asked for. */
-const exactRows = 2;
 /** Of a band: its halos are kept from one to the next, so it need not be large. */
-const bandPixels = 8_000_000;
+const bandPixels = 6_000_000;
 /** Tiles of half a thousand pixels: their halo costs little, their rows fit the second-level cache. */
 const defaultTileSize: TileSize = { widthPx: 512, heightPx: 256 };
 
@@ -122,7 +120,7 @@ class PaintEngine implements Engine {
     const { level } = where;
     const size = held.levels[level];
     const region = insideOrThrow(where.region ?? { xPx: 0, yPx: 0, ...size }, size);
-    const order = { held, parameters, level, region, wantsAll: true, chunkRows: exactRows };
+    const order = { held, parameters, level, region, wantsAll: true, chunkRows: null };
     return this.#painting(held, order, options, async (painting) => {
       painting.start();
       const { body, line, relief } = await painting.layers(region.yPx, region.yPx + region.heightPx);
@@ -147,7 +145,7 @@ class PaintEngine implements Engine {
   ): Promise<ComposedPicture> {
     const held = photo as HeldPhoto;
     const { heap } = this.#painters;
-    return this.#painting(held, wholePicture(held, parameters, exactRows), options, async (painting) => {
+    return this.#painting(held, wholePicture(held, parameters, null), options, async (painting) => {
       const composing = await BandComposer.begin(painting, options.depth ?? held.depth);
       const out = heap.allocate(composing.bytesOf(held.heightPx));
       try {
@@ -231,7 +229,7 @@ class PaintEngine implements Engine {
   }
 }
 
-function wholePicture(held: HeldPhoto, parameters: Parameters, chunkRows: number): StrataOrder {
+function wholePicture(held: HeldPhoto, parameters: Parameters, chunkRows: number | null): StrataOrder {
   const region = { xPx: 0, yPx: 0, widthPx: held.widthPx, heightPx: held.heightPx };
   return { held, parameters, level: 0, region, wantsAll: false, chunkRows };
 }

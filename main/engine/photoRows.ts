@@ -9,8 +9,10 @@ import type { WorkerPool } from './workerPool.ts';
 
 /** Side of a tile when a picture is halved. */
 export const halveTilePx = 256;
-/** Rows read, or halved, at a time. */
-const chunkRows = 64;
+/** Rows read at a time. */
+const readRows = 256;
+/** Rows halved at a time. */
+const halvedRows = 128;
 /** Rows of a band when colours are mapped. */
 const toneRows = 32;
 
@@ -32,7 +34,7 @@ export class SourceRows extends SlidingRows {
     readonly signal?: AbortSignal,
   ) {
     const bytesPerSample = tone ? 2 : source.bytesPerSample;
-    super(heap, source.widthPx * source.channels * bytesPerSample, whole(source), chunkRows);
+    super(heap, source.widthPx * source.channels * bytesPerSample, whole(source), readRows);
   }
 
   get picture(): SourcePicture {
@@ -93,7 +95,7 @@ export class HalvedRows extends SlidingRows {
     heap: SharedHeap,
     readonly signal?: AbortSignal,
   ) {
-    super(heap, size.widthPx * 16, whole(size), chunkRows);
+    super(heap, size.widthPx * 16, whole(size), halvedRows);
   }
 
   get picture(): SourcePicture {

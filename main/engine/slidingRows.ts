@@ -1,4 +1,4 @@
-import type { SourcePicture } from '../../core/pipeline/jobs.ts';
+import { evenUp, type SourcePicture } from '../../core/pipeline/jobs.ts';
 import type { Rect } from '../../core/pixels/photo.ts';
 import { RowWindow } from './rowWindow.ts';
 import type { SharedHeap } from './sharedHeap.ts';
@@ -33,13 +33,13 @@ export abstract class SlidingRows implements PictureRows {
 
   /**
    * @param region what will be made: whole rows where the picture is to be read, even corner
-   * @param chunkRows rows are made in multiples of this; even
+   * @param chunkRows rows are made in multiples of this, even; exactly those that are asked for where it is null
    */
   constructor(
     heap: SharedHeap,
     rowBytes: number,
     readonly region: Rect,
-    readonly chunkRows: number,
+    readonly chunkRows: number | null,
   ) {
     this.window = new RowWindow(heap, rowBytes);
   }
@@ -67,7 +67,7 @@ export abstract class SlidingRows implements PictureRows {
     return this.#cursors.length > 0;
   }
 
-  /** The first row that any reader has asked to begin with. */
+  /** The first row that any reader may still ask for. */
   protected get firstRow(): number {
     return Math.min(...this.#cursors);
   }
@@ -76,13 +76,18 @@ export abstract class SlidingRows implements PictureRows {
     return Math.max(this.region.yPx, row & ~1);
   }
 
+  /** A chunk at a time, so that what this is made from need not be at hand for more than a chunk. */
   async #reach(to: number): Promise<void> {
-    const wanted = Math.ceil(to / this.chunkRows) * this.chunkRows;
-    const bottom = Math.min(this.region.yPx + this.region.heightPx, wanted);
-    if (bottom <= this.window.bottom) return;
-    this.window.slide(Math.min(...this.#cursors), bottom);
-    await this.produce(this.window.bottom, bottom);
-    this.window.bottom = bottom;
+    const { chunkRows, region, window } = this;
+    const wanted = chunkRows ? Math.ceil(to / chunkRows) * chunkRows : evenUp(to);
+    const last = Math.min(region.yPx + region.heightPx, wanted);
+    while (window.bottom < last) {
+      const top = Math.max(window.bottom, this.firstRow);
+      const bottom = chunkRows ? Math.min(last, (Math.floor(top / chunkRows) + 1) * chunkRows) : last;
+      window.slide(this.firstRow, bottom);
+      await this.produce(top, bottom);
+      window.bottom = bottom;
+    }
   }
 
   close(): void {

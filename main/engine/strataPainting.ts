@@ -38,8 +38,8 @@ export interface StrataOrder {
    * Also the body and the line that the parameters' strengths hide: a preview may show them later without asking.
    */
   wantsAll: boolean;
-  /** Sliding rows are painted in multiples of this; even. */
-  chunkRows: number;
+  /** Sliding rows are painted in multiples of this, even; exactly those that are asked for where it is null. */
+  chunkRows: number | null;
 }
 
 /** The layers of some rows; good until the next rows are painted. */
