@@ -38,9 +38,11 @@ export function coverageAt(histogram: InkHistogram, threshold: number, softness:
 }
 
 /** Rounds of halving the interval: a hundred-thousandth of it is left. */
-const halvings = 17;
-/** Thresholds tried: below 0 even black takes no ink, above the soft pen's nothing is known. */
-const highest = softPen['line.threshold'];
+const halvings = 18;
+/** Lowest threshold tried: hardly a response lies below. */
+const lowest = -0.4;
+/** Highest, as a multiple of the preset's own: beyond, plain dark planes would be inked over. */
+const highestFactor = 2;
 
 /**
  * The ink threshold that makes a frame's line coverage equal the lead's (coverage rises with the threshold).
@@ -53,7 +55,8 @@ export function thresholdForCoverage(
   wanted: number,
   parameters: Parameters,
 ): number {
-  let [low, high]: [number, number] = [0, highest];
+  const highest = Math.min(softPen['line.threshold'], highestFactor * parameters['line.threshold']);
+  let [low, high]: [number, number] = [lowest, highest];
   for (let round = 0; round < halvings; round++) {
     const middle = (low + high) / 2;
     if (coverageAt(histogram, middle, parameters['line.softness']) < wanted) low = middle;

@@ -1,10 +1,10 @@
 import type { DecodedPhoto } from '../../core/pixels/photo.ts';
 
 /** Windows along each edge of the photo. */
-const windowsAcross = 3;
+const windowsAcross = 6;
 /** Side of a window, and what is painted around it but not looked at, as shares of the long edge. */
-const windowShare = 0.08;
-const marginShare = 0.008;
+const windowShare = 0.045;
+const marginShare = 0.006;
 const leastMarginPx = 8;
 
 /** Windows of a photo at full resolution, set side by side in one picture. */
