@@ -17,12 +17,12 @@ export function sizeWords(widthPx: number, heightPx: number, ppi?: number): stri
   return `${pixels} · ${mm(widthPx)} × ${mm(heightPx)} mm at ${Math.round(ppi)} ppi`;
 }
 
-/** The figures of a frame that a client can see, on one line. */
+/** The figures of a frame that a client can see; the units of lightness and chroma are left to those who ask. */
 export function figureWords(figures: FrameFigures): string {
   const words = captionFigures.map((key) => {
     const { label, unit, digits } = figureTable[key];
     const value = unit === '%' ? figures[key] * 100 : figures[key];
-    return `${label} ${value.toFixed(digits)}${unit ? ` ${unit}` : ''}`;
+    return `${label} ${value.toFixed(digits)}${unit === '%' ? ' %' : ''}`;
   });
   return words.join(' · ');
 }

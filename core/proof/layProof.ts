@@ -227,9 +227,9 @@ function placeRow(
     const xPt = sheet.marginPt + column * (sheet.cellPt + gutterPt);
     const { widthPt, heightPt } = cell;
     const place = { xPt, yPt: standPt - heightPt, widthPt, heightPt };
-    const frame = frames[cell.frame];
-    if (frame.sizePx) page.pictures.push({ frame: cell.frame, ...place });
-    else addFault(page, place, frame.fault, type);
+    const { sizePx, fault } = frames[cell.frame];
+    if (sizePx) page.pictures.push({ frame: cell.frame, sizePx, ...place });
+    else addFault(page, place, fault, type);
     let yPt = standPt + captionGapPt;
     for (const { text, style } of cell.caption) {
       yPt += styleTable[style].leadingPt;

@@ -91,6 +91,8 @@ export interface RectPt {
 export interface PlacedPicture extends RectPt {
   /** Index into the frames. */
   frame: number;
+  /** Of the whole picture. */
+  sizePx: { widthPx: number; heightPx: number };
 }
 
 /** A line of text on its baseline, from its left end. */

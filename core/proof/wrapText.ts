@@ -2,8 +2,10 @@ import type { TypeMeasure, TypeStyle } from './proofPage.ts';
 
 const ellipsis = '…';
 
-/** Where a line of a file's name may end, beside spaces: behind these. */
-const breakBehind = /[\s\-_./,;:·)]/;
+/** Where a line of a file's name may end, beside spaces: behind these. Not behind a dot: an extension stays on. */
+const breakBehind = /[\s\-_/,;:·)]/;
+/** A dot between two figures is not needed where the line ends. */
+const looseEnd = /[\s·]+$/;
 
 /**
  * Breaks a text into lines.
@@ -27,7 +29,7 @@ export function wrapText(
     }
     const count = fittingCount(rest, style, widthPt, type);
     const end = breakBefore(rest, count);
-    lines.push(rest.slice(0, end).join('').trimEnd());
+    lines.push(rest.slice(0, end).join('').replace(looseEnd, ''));
     rest = [...rest.slice(end).join('').trimStart()];
   }
   return lines;

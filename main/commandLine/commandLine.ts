@@ -4,9 +4,10 @@ import { FileError } from '../files/fileError.ts';
 import { discardUnfinished } from '../files/unfinishedFile.ts';
 import { paramsCommand, presetsCommand } from './listCommands.ts';
 import { paintCommand } from './paintCommand.ts';
+import { proofCommand } from './proofCommand.ts';
 import { describeCommand, describeProgram, exitCode, UsageError } from './usage.ts';
 
-const commands = [paintCommand, presetsCommand, paramsCommand];
+const commands = [paintCommand, proofCommand, presetsCommand, paramsCommand];
 
 /**
  * Runs one command.

@@ -10,6 +10,7 @@ const stageWords = {
   relief: 'Lighting the surface',
   compose: 'Laying the strata',
   writing: 'Writing',
+  proof: 'Setting the sheet',
 };
 
 /** A line on the terminal that says how far long work is; says nothing where the output is no terminal. */

@@ -1,0 +1,105 @@
+import PDFDocument from 'pdfkit';
+import { hairlineColour, type ProofPage, pointsPerInch, styleTable } from '../../core/proof/proofPage.ts';
+import { fileErrorFrom } from '../files/systemErrors.ts';
+import { UnfinishedFile } from '../files/unfinishedFile.ts';
+import type { PrintPictures } from './printPictures.ts';
+import type { ProofType } from './proofType.ts';
+
+/** More than the fewest a print needs, so that a look through a glass shows paint and not pixels. */
+const picturePpi = 240;
+const hairlinePt = 0.4;
+
+/**
+ * Writes the pages as a PDF, whole or not at all: type as embedded subsets, pictures as JPEGs.
+ * @param date goes into the document's own data
+ * @throws FileError where the file cannot be written; the signal's reason when it is aborted
+ */
+export async function writeProofPdf(
+  out: string,
+  pages: readonly ProofPage[],
+  sheet: { title: string; date: Date; type: ProofType; pictures: PrintPictures },
+  signal?: AbortSignal,
+): Promise<void> {
+  const { title, date, type, pictures } = sheet;
+  const file = await UnfinishedFile.begin(out);
+  try {
+    const pdf = new PDFDocument({
+      autoFirstPage: false,
+      margin: 0,
+      // No default typeface: its metrics would be looked for in a file.
+      font: '',
+      lang: 'en',
+      displayTitle: true,
+      info: { Title: title, Creator: 'Oxgall', Producer: 'Oxgall', CreationDate: date, ModDate: date },
+    });
+    for (const [key, bytes] of type.fontBytes()) pdf.registerFont(key, bytes);
+    const pieces: Uint8Array[] = [];
+    pdf.on('data', (piece: Uint8Array) => pieces.push(piece));
+    const ended = new Promise<void>((resolve, reject) => {
+      pdf.once('end', resolve);
+      pdf.once('error', reject);
+    });
+    const flush = async () => {
+      for (const piece of pieces.splice(0)) await file.append(piece, signal);
+    };
+    for (const page of pages) {
+      pdf.addPage({ size: [page.widthPt, page.heightPt], margin: 0 });
+      await drawPictures(pdf, page, pictures, flush, signal);
+      drawRules(pdf, page);
+      for (const text of page.texts) drawText(pdf, text, type);
+      await flush();
+    }
+    pdf.end();
+    await ended;
+    await flush();
+    await file.finish();
+  } catch (failure) {
+    throw fileErrorFrom(out, failure);
+  } finally {
+    file.discard();
+  }
+}
+
+type Pdf = InstanceType<typeof PDFDocument>;
+
+async function drawPictures(
+  pdf: Pdf,
+  page: ProofPage,
+  pictures: PrintPictures,
+  flush: () => Promise<void>,
+  signal?: AbortSignal,
+): Promise<void> {
+  for (const place of page.pictures) {
+    const jpeg = await pictures.jpeg(page, place, picturePpi / pointsPerInch, signal);
+    if (!jpeg) continue;
+    pdf.image(jpeg, place.xPt, place.yPt, { width: place.widthPt, height: place.heightPt });
+    await flush();
+  }
+}
+
+function drawRules(pdf: Pdf, page: ProofPage): void {
+  pdf.lineWidth(hairlinePt).strokeColor(hairlineColour);
+  for (const { xPt, yPt, widthPt } of page.rules)
+    pdf
+      .moveTo(xPt, yPt)
+      .lineTo(xPt + widthPt, yPt)
+      .stroke();
+  for (const { xPt, yPt, widthPt, heightPt } of page.boxes) pdf.rect(xPt, yPt, widthPt, heightPt).stroke();
+}
+
+function drawText(pdf: Pdf, { text, style, xPt, baselinePt }: ProofPage['texts'][number], type: ProofType) {
+  const { sizePt, colour } = styleTable[style];
+  // Where the typeface draws a box instead of a letter, the letter itself can still be searched and copied.
+  const isWhole = type.hasAll(text, style);
+  if (!isWhole) pdf.markContent('Span', { actual: text });
+  let leftPt = xPt;
+  for (const run of type.runs(text, style)) {
+    pdf
+      .font(run.font)
+      .fontSize(sizePt)
+      .fillColor(colour)
+      .text(run.text, leftPt, baselinePt, { lineBreak: false, baseline: 'alphabetic' });
+    leftPt += run.widthPt;
+  }
+  if (!isWhole) pdf.endMarkedContent();
+}
