@@ -11,10 +11,11 @@ import './styles/page.css';
 import './styles/easel.css';
 import './styles/controls.css';
 import './styles/sheets.css';
+import './styles/states.css';
 import { createRoot } from 'react-dom/client';
-import { startKeepingDrafts } from './app/draftWork.ts';
 import { startEaselWork } from './app/easelWork.ts';
 import { takeHostEvent } from './app/hostEvents.ts';
+import { startTellingWork } from './app/memoryWork.ts';
 import { openPhoto, refreshSession } from './app/photoWork.ts';
 import { listenToHost } from './host/listenToHost.ts';
 import { App } from './shell/App.tsx';
@@ -22,7 +23,7 @@ import { startKeys } from './shell/keyCommands.ts';
 import { sessionStore } from './state/photoStore.ts';
 
 startEaselWork();
-startKeepingDrafts();
+startTellingWork();
 startKeys();
 createRoot(document.getElementById('root')!).render(<App />);
 

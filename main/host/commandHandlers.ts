@@ -5,6 +5,7 @@ import type { CheckedInput } from './api/commandSchemas.ts';
 import type { Choice, CommandName, HostCommands, OpenedPhoto, Session } from './api/hostCommands.ts';
 import { allowOpening, type HostState } from './host.ts';
 import { listFolder, listPlaces } from './listFolder.ts';
+import { createMemoryHandlers, readShelf } from './memoryHandlers.ts';
 import type { OpenPhoto } from './openPhoto.ts';
 import { PaintCommands } from './paintCommands.ts';
 import { Refusal } from './refusal.ts';
@@ -23,9 +24,10 @@ export type CommandHandlers = {
 
 /** Binds the commands to what they share; each is described where the contract lists it. */
 export function createCommandHandlers(state: HostState): CommandHandlers {
-  const { photos, drafts, recents, grants, parts, calls } = state;
+  const { photos, memories, recents, grants, parts, calls } = state;
   const paint = new PaintCommands(parts, calls);
   return {
+    ...createMemoryHandlers(state),
     startSession: () => startSession(state),
     openPhoto: ({ path }, call) => openPhoto(state, path, call),
     awaitPhoto: async ({ photoId }, call) => {
@@ -34,7 +36,7 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
       return present(state, photo);
     },
     closePhoto: async ({ photoId }) => {
-      await photos.close(photoId, 'asked');
+      await Promise.all([photos.close(photoId, 'asked'), memories.close(photoId)]);
       return {};
     },
     paintStrata: (input, call) => paint.paintStrata(photos.find(input.photoId), input, call),
@@ -46,6 +48,7 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
         grants,
         events: state.events,
         openPaths: () => photos.all.map((photo) => photo.path),
+        memories,
       }),
     listFolder: async ({ path }) => {
       const places = await listPlaces();
@@ -60,14 +63,6 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
     forgetRecent: async ({ path }) => {
       await recents.forget(path);
       return { recents: await recents.list() };
-    },
-    keepDraft: async ({ photoId, draft }) => {
-      const { path } = photos.find(photoId);
-      return { keptAt: await drafts.keep(path, draft as Parameters<typeof drafts.keep>[1]) };
-    },
-    dropDraft: async ({ path }) => {
-      await drafts.drop(grants.checkPhoto(path));
-      return {};
     },
     openDemo: async () => {
       if (!parts.demo) throw new Refusal('NotFound', 'The demo plates are not installed.');
@@ -93,14 +88,11 @@ async function warmUp(parts: HostState['parts']): Promise<void> {
 }
 
 async function startSession(state: HostState): Promise<Session> {
-  const { parts, recents, drafts } = state;
-  const [presets, recentList, draftList] = await Promise.all([
-    parts.loadPresets(),
-    recents.list(),
-    drafts.list(),
-  ]);
+  const { parts, recents } = state;
+  const { presets: presetStore } = await parts.loadStores();
+  const [shelf, recentList] = await Promise.all([readShelf(presetStore), recents.list()]);
   // What the user opened in an earlier session counts as chosen.
-  for (const { path } of [...recentList, ...draftList]) allowOpening(state, path);
+  for (const { path } of recentList) allowOpening(state, path);
   const { opening } = state;
   state.opening = null;
   // The window is up: what the first photo needs is loaded while the user looks for it.
@@ -112,9 +104,9 @@ async function startSession(state: HostState): Promise<Session> {
     platform: process.platform,
     workers: parts.workers,
     desktop: parts.desktop.capabilities,
-    presets,
+    presets: shelf.presets,
+    presetProblems: shelf.problems,
     recents: recentList,
-    drafts: draftList,
     demo: { available: parts.demo !== null, title: parts.demo?.title ?? '' },
     opening,
     homePath: homedir(),
@@ -124,6 +116,8 @@ async function startSession(state: HostState): Promise<Session> {
 async function openPhoto(state: HostState, given: string, call: RunningCall): Promise<OpenedPhoto> {
   const path = state.grants.checkPhoto(given);
   const photo = await state.photos.open(path, call.signal);
+  await state.memories.open(photo.photoId, path);
+  await state.memories.keepOnly(state.photos.all.map(({ photoId }) => photoId));
   allowOpening(state, path);
   const opened = await present(state, photo);
   void state.recents.add(opened).then(() => state.events.send('recentsChanged', {}));
@@ -131,7 +125,7 @@ async function openPhoto(state: HostState, given: string, call: RunningCall): Pr
 }
 
 async function present(state: HostState, photo: OpenPhoto): Promise<OpenedPhoto> {
-  return { ...photo.describe(), draft: await state.drafts.read(photo.path) };
+  return { ...photo.describe(), memory: await state.memories.view(photo.photoId) };
 }
 
 async function chooseWithDialog(state: HostState, input: CheckedInput<'chooseWithDialog'>): Promise<Choice> {

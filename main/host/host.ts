@@ -5,12 +5,13 @@ import { callIdHeader, newCallId } from '../../core/hostProtocol/hostCaller.ts';
 import { commandSchemas, commonBodyLimitBytes } from './api/commandSchemas.ts';
 import type { CommandName, HostCommands } from './api/hostCommands.ts';
 import type { MenuCommand } from './api/hostEvents.ts';
+import { carriesDocument, documentBodyLimitBytes } from './api/memorySchemas.ts';
 import { type CommandHandlers, createCommandHandlers } from './commandHandlers.ts';
-import { Drafts } from './drafts.ts';
 import { EventHub } from './eventHub.ts';
 import type { HostParts } from './hostParts.ts';
 import { OpenPhotos } from './openPhotos.ts';
 import { PathGrants } from './pathGrants.ts';
+import { PhotoMemories } from './photoMemories.ts';
 import { RecentPhotos } from './recentPhotos.ts';
 import { describeError, Refusal } from './refusal.ts';
 import { readJsonBody } from './requestBody.ts';
@@ -25,7 +26,7 @@ export interface Host {
   /** A file dropped on the window: it may be opened from now on. */
   allowDropped(path: string): void;
   menu(command: MenuCommand): void;
-  /** Cancels what is under way and gives everything back; drafts are on the disk when it resolves. */
+  /** Cancels what is under way and gives everything back; every change is on the disk when it resolves. */
   close(): Promise<void>;
 }
 
@@ -37,7 +38,7 @@ export interface HostState {
   calls: RunningCalls;
   photos: OpenPhotos;
   recents: RecentPhotos;
-  drafts: Drafts;
+  memories: PhotoMemories;
   /** What the program was started with; told once. */
   opening: { kind: 'photo' | 'folder'; path: string } | null;
 }
@@ -62,7 +63,7 @@ export function createHost(parts: HostParts): Host {
       maximum: parts.maximumOpenPhotos ?? maximumOpenPhotos,
     }),
     recents: new RecentPhotos(parts.dataFolder),
-    drafts: new Drafts(parts.dataFolder),
+    memories: new PhotoMemories({ loadStores: () => parts.loadStores(), events }),
     opening: null,
   };
   const app = routes(state);
@@ -107,7 +108,8 @@ async function answer(
   try {
     return await state.calls.run(callId, request.signal, async (call) => {
       signal = call.signal;
-      const input = checkInput(name, await readJsonBody(request, commonBodyLimitBytes));
+      const limitBytes = carriesDocument.has(name) ? documentBodyLimitBytes : commonBodyLimitBytes;
+      const input = checkInput(name, await readJsonBody(request, limitBytes));
       const result = await run(handlers, name, input, call);
       call.signal.throwIfAborted();
       return result instanceof Uint8Array
@@ -189,6 +191,6 @@ async function offerPath(state: HostState, given: string): Promise<void> {
 async function closeHost(state: HostState): Promise<void> {
   state.calls.cancelAll();
   await state.photos.closeAll();
-  await Promise.all([state.drafts.flush(), state.recents.flush()]);
+  await Promise.all([state.memories.flush(), state.recents.flush()]);
   state.events.close();
 }

@@ -1,14 +1,15 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { DecodedPhoto, Strata } from '../../core/pixels/photo.ts';
 import type { Engine } from '../engine/engineApi.ts';
-import type { PhotoFile, PictureFile } from '../files/photoFile.ts';
-import type { ChooseInput, DemoSeries, DesktopCapabilities, PresetOffer } from './api/hostCommands.ts';
+import type { AnyPictureFile, PhotoFile } from '../files/photoFile.ts';
+import type { ChooseInput, DemoSeries, DesktopCapabilities } from './api/hostCommands.ts';
+import type { Stores } from './photoMemories.ts';
 
 /** Reads and writes pictures. */
 export interface HostFiles {
   readPhoto(path: string, options?: { signal?: AbortSignal }): Promise<PhotoFile>;
   /** Writes `path`, which must not appear half-written whatever happens. */
-  writePicture(path: string, picture: PictureFile, options?: { signal?: AbortSignal }): Promise<unknown>;
+  writePicture(path: string, picture: AnyPictureFile, options?: { signal?: AbortSignal }): Promise<unknown>;
   /** Size and kind without decoding; null where only decoding can tell. */
   readFacts(path: string): Promise<PhotoFacts | null>;
   /** A quick decode at 1/2^`level` of the size; null where the format has no short cut. */
@@ -45,11 +46,11 @@ export interface HostParts {
   workers: number;
   loadEngine(): Promise<Engine>;
   loadFiles(): Promise<HostFiles>;
-  loadPresets(): Promise<PresetOffer[]>;
+  loadStores(): Promise<Stores>;
   loadComposeSmall(): Promise<ComposeSmall>;
   demo: { title: string; prepare(): Promise<DemoSeries> } | null;
   desktop: Desktop;
-  /** Where recents and drafts are kept. */
+  /** Where recents, presets and copies of recipes are kept. */
   dataFolder: string;
   /** How many photos stay open; 3 unless given. */
   maximumOpenPhotos?: number;

@@ -1,9 +1,9 @@
 import { availableParallelism } from 'node:os';
 import type { Engine } from '../engine/engineApi.ts';
-import type { PresetOffer } from './api/hostCommands.ts';
 import { dataFolder } from './dataFolder.ts';
 import { findDemo } from './demoSeries.ts';
 import type { ComposeSmall, Desktop, HostFiles, HostParts } from './hostParts.ts';
+import type { Stores } from './photoMemories.ts';
 
 /**
  * The parts of the program as it is installed. Engine, image library and kernels are imported when they are
@@ -33,15 +33,9 @@ export function installedParts(options: {
       ]);
       return { readPhoto, writePicture, readFacts: quick.readFacts, readQuick: quick.readQuick };
     }),
-    loadPresets: once<PresetOffer[]>(async () => {
-      const { loadBuiltInPresets } = await import('../store/builtInPresets.ts');
-      const presets = await loadBuiltInPresets();
-      return presets.map(({ name, title, summary, parameters }) => ({
-        name,
-        title,
-        description: summary,
-        parameters,
-      }));
+    loadStores: once<Stores>(async () => {
+      const { openStores } = await import('./openStores.ts');
+      return openStores(dataFolder());
     }),
     loadComposeSmall: once<ComposeSmall>(async () => (await import('./composeSmall.ts')).loadComposeSmall()),
     closeEngine: async () => {

@@ -128,7 +128,7 @@ export class OpenPhoto {
   }
 
   /** The photo as the interface sees it. */
-  describe(): Omit<OpenedPhoto, 'draft'> {
+  describe(): Omit<OpenedPhoto, 'memory'> {
     const file = this.#whole?.file ?? null;
     const known = file ?? this.#facts;
     if (!known) throw cancelled();

@@ -1,16 +1,17 @@
-import { stat } from 'node:fs/promises';
 import { basename, dirname, extname, join } from 'node:path';
 import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import type { Engine } from '../engine/engineApi.ts';
 import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
 import { deliverPainting } from '../painting/deliverPainting.ts';
+import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
 import type { OutputFormatName, SavedPainting } from './api/hostCommands.ts';
 import type { EventHub } from './eventHub.ts';
 import type { HostFiles } from './hostParts.ts';
 import type { OpenPhoto } from './openPhoto.ts';
 import type { PathGrants } from './pathGrants.ts';
+import type { PhotoMemories } from './photoMemories.ts';
 import { firstFree, placeNew, placeOver } from './placeFile.ts';
 import { Refusal } from './refusal.ts';
 import type { RunningCall } from './runningCalls.ts';
@@ -34,6 +35,7 @@ export interface SaveParts {
   events: EventHub;
   /** Every open photo: none of their files is ever written over. */
   openPaths(): string[];
+  memories: PhotoMemories;
 }
 
 /**
@@ -66,7 +68,7 @@ export async function savePainting(
     quality: input.quality,
     printLongEdgeMm: input.printLongEdgeMm ?? defaultPrintLongEdgeMm,
   };
-  const { path, widthPx, heightPx } = await photo.paint(0, call.signal, ({ enginePhoto }, signal) =>
+  const delivered = await photo.paint(0, call.signal, ({ enginePhoto }, signal) =>
     deliverPainting(engine, { enginePhoto, file }, order, {
       signal,
       onProgress: report,
@@ -75,15 +77,29 @@ export async function savePainting(
     }),
   );
   report(1, 'writing');
-  const { size } = await stat(path);
+  const { path, widthPx, heightPx } = delivered;
+  const { sizeBytes, sha256 } = await fingerprintPhoto(path);
+  const memory = await parts.memories.noteDelivered(photo.photoId, {
+    path,
+    sha256,
+    pixelsSha256: delivered.pixelsSha256,
+    parameters,
+    output: {
+      format: input.format,
+      depth: delivered.depth,
+      printLongEdgeMm: order.printLongEdgeMm,
+      ...(input.quality !== undefined && { quality: input.quality }),
+    },
+  });
   return {
     path,
     name: basename(path),
     folder: dirname(path),
     widthPx,
     heightPx,
-    sizeBytes: size,
+    sizeBytes,
     tookMs: Math.round(performance.now() - started),
+    memory,
   };
 }
 
@@ -101,8 +117,15 @@ function progressReporter(callId: string, events: EventHub): (fraction01: number
   };
 }
 
-/** The name with the format's extension; one that is not a plain file name is refused. */
+/** The name with the format's extension. */
 export function checkName(name: string, format: OutputFormatName): string {
+  const trimmed = checkFileName(name);
+  const fits = extensions[format].includes(extname(trimmed).toLowerCase());
+  return fits ? trimmed : `${trimmed}${extensions[format][0]}`;
+}
+
+/** @throws Refusal where the name is not that of a plain file */
+export function checkFileName(name: string): string {
   const trimmed = name.trim();
   const fault = forbiddenInName.exec(trimmed);
   if (fault || trimmed.startsWith('.') || trimmed.endsWith('.') || deviceName.test(trimmed) || !trimmed)
@@ -111,8 +134,7 @@ export function checkName(name: string, format: OutputFormatName): string {
       `${JSON.stringify(name)} cannot be a file name.`,
       'Use letters, figures, spaces and hyphens; choose the folder separately.',
     );
-  const fits = extensions[format].includes(extname(trimmed).toLowerCase());
-  return fits ? trimmed : `${trimmed}${extensions[format][0]}`;
+  return trimmed;
 }
 
 async function checkReplacing(target: string, parts: SaveParts): Promise<void> {

@@ -6,11 +6,15 @@ import { type PlacedView, placeView } from '../geometry/viewTransform.ts';
 import { PaintDirector } from '../painting/paintDirector.ts';
 import { forgetPresetPictures, paintPresetPictures } from '../presets/presetPictures.ts';
 import { currentLook, type Look, lookStore, strataBottomUp, strengthOf } from '../state/lookStore.ts';
+import { comparisonStore } from '../state/memoryStore.ts';
 import { paintStore } from '../state/paintStore.ts';
 import { photoStore } from '../state/photoStore.ts';
 import { placedViewStore, type ViewState, viewStore } from '../state/viewStore.ts';
+import { lookOfSide } from '../states/comparing.ts';
 
 export const director = new PaintDirector(compositor);
+/** Paints what is compared with the easel; idle while nothing is. */
+const leftDirector = new PaintDirector(compositor, 'left');
 
 /** The bands as they stand for a look, in device pixels. */
 export function placeBands(look: Look, view: ViewState) {
@@ -28,6 +32,12 @@ export function placeBandSpan(placed: PlacedView, view: ViewState) {
   });
 }
 
+/** What stands on the easel: the look at hand, or the right one of two that are compared. */
+function easelLook(): Look | null {
+  const compared = comparisonStore.get();
+  return compared ? lookOfSide(compared.right) : currentLook();
+}
+
 let isSceneAwaited = false;
 
 function showSoon(): void {
@@ -41,8 +51,10 @@ function showSoon(): void {
 
 function showScene(): void {
   const photo = photoStore.get();
-  const look = currentLook();
+  const look = easelLook();
   const view = viewStore.get();
+  const compared = comparisonStore.get();
+  const leftLook = compared && lookOfSide(compared.left);
   const placed = placedViewStore.get();
   if (!photo || !look || !placed || view.stage.widthPx === 0) return;
   compositor.show({
@@ -60,6 +72,7 @@ function showScene(): void {
     bands: placeBands(look, view),
     bandSpan: placeBandSpan(placed, view),
     shown: director.shown,
+    left: leftLook && { parameters: leftLook.parameters, shown: leftDirector.shown },
   });
 }
 
@@ -75,7 +88,9 @@ function placeStage(): void {
   const isSame =
     last?.scale === next.scale && last.originXPx === next.originXPx && last.originYPx === next.originYPx;
   if (!isSame) placedViewStore.set(next);
-  director.setStageView({ view: next, stage: view.stage, devicePixelRatio: view.devicePixelRatio });
+  const stageView = { view: next, stage: view.stage, devicePixelRatio: view.devicePixelRatio };
+  director.setStageView(stageView);
+  leftDirector.setStageView(stageView);
 }
 
 /** Starts the work; called once. */
@@ -86,6 +101,7 @@ export function startEaselWork(): void {
       trouble: { message, remedy: 'Close the window and open it again; your changes are kept.' },
     }));
   director.onShown = showSoon;
+  leftDirector.onShown = showSoon;
   director.onSettled = () => {
     const photo = photoStore.get();
     if (photo) paintPresetPictures(photo.photoId, currentLook()?.printLongEdgeMm);
@@ -96,10 +112,15 @@ export function startEaselWork(): void {
     if (!photoStore.get()) forgetPresetPictures();
     showSoon();
   });
-  lookStore.subscribe(() => {
-    director.setLook(currentLook());
+  const layLooks = () => {
+    const compared = comparisonStore.get();
+    director.setLook(easelLook());
+    leftDirector.setPhoto(compared ? photoStore.get() : null);
+    leftDirector.setLook(compared && lookOfSide(compared.left));
     showSoon();
-  });
+  };
+  lookStore.subscribe(layLooks);
+  comparisonStore.subscribe(layLooks);
   viewStore.subscribe(() => {
     placeStage();
     showSoon();

@@ -6,6 +6,7 @@ import { takeProgress } from '../saving/saveWork.ts';
 import { redoLook, undoLook } from '../state/lookStore.ts';
 import { dialogStore } from '../state/panelStore.ts';
 import { photoStore, sessionStore } from '../state/photoStore.ts';
+import { refreshMemory } from './memoryWork.ts';
 import { closePhoto, openPhoto } from './photoWork.ts';
 
 /** What the window does about the host's events. */
@@ -15,7 +16,7 @@ export function takeHostEvent(event: HostEvent): void {
       takeProgress(event.data);
       return;
     case 'photoClosed':
-      // Closed to make room while it stands on the easel: it is opened again, its draft brings the look back.
+      // Closed to make room while it stands on the easel: it is opened again, its recipe brings the look back.
       if (event.data.reason === 'madeRoom' && event.data.photoId === photoStore.get()?.photoId)
         void openPhoto(photoStore.get()!.path);
       return;
@@ -30,6 +31,9 @@ export function takeHostEvent(event: HostEvent): void {
         .call('listRecents', {})
         .then(({ recents }) => sessionStore.update((session) => session && { ...session, recents }))
         .catch(() => undefined);
+      return;
+    case 'memoryChanged':
+      void refreshMemory(event.data.photoId);
       return;
     case 'photoReady':
       // `awaitPhoto` answers the same.

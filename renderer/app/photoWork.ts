@@ -1,15 +1,10 @@
-import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
-import { defaultParameters, type Parameters } from '../../core/parameters/table.ts';
-import type { OpenedPhoto, PresetOffer } from '../../main/host/api/hostCommands.ts';
+import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { host, isUnwanted, troubleOf } from '../host/host.ts';
-import { endLook, type Look, startLook } from '../state/lookStore.ts';
+import { changeLook, endLook, startLook } from '../state/lookStore.ts';
 import { addNotice } from '../state/noticeStore.ts';
 import { openingStore, photoStore, sessionStore } from '../state/photoStore.ts';
 import { changeView, viewStore } from '../state/viewStore.ts';
-import { flushDraft, followDraft, forgetDraft } from './draftWork.ts';
-
-/** What a photo that was never worked on starts from. */
-const firstPresetName = 'low-water';
+import { followMemory, lookOf, tellWork } from './memoryWork.ts';
 
 let opening: AbortController | null = null;
 
@@ -20,7 +15,7 @@ export async function openPhoto(path: string): Promise<void> {
   opening = abort;
   openingStore.set({ path, trouble: null });
   try {
-    await flushDraft();
+    await tellWork();
     const photo = await host.call('openPhoto', { path }, { signal: abort.signal });
     if (abort.signal.aborted) return;
     openingStore.set({ path: null, trouble: null });
@@ -44,61 +39,29 @@ async function finishDecoding(photo: OpenedPhoto, signal: AbortSignal): Promise<
 
 function setOnEasel(photo: OpenedPhoto): void {
   const previous = photoStore.get();
-  const preset = presetByName(photo.draft?.presetName ?? null);
-  const fresh = freshLook(preset);
+  const { memory } = photo;
   changeView({ intent: { kind: 'fit' }, split01: null, bare: false });
   endLook();
-  if (photo.draft) {
-    const { view } = photo.draft;
-    startLook({
-      ...fresh,
-      parameters: { ...fresh.parameters, ...photo.draft.parameters } as Parameters,
-      printLongEdgeMm:
-        typeof view.printLongEdgeMm === 'number' ? view.printLongEdgeMm : fresh.printLongEdgeMm,
-    });
-    if (typeof view.cut01 === 'number') changeView({ cut01: view.cut01 });
+  const look = lookOf(memory);
+  startLook(look);
+  photoStore.set(photo);
+  for (const remark of [...photo.remarks, ...memory.remarks]) addNotice(remark);
+  if (Object.keys(memory.recipe.work.changes).length > 0)
     addNotice(`Your changes to ${photo.name} are as you left them.`, {
       label: 'Start afresh',
-      run: () => startAfresh(fresh),
+      run: () => changeLook({ parameters: look.presetParameters }, 'Start afresh'),
     });
-  } else startLook(fresh);
-  photoStore.set(photo);
-  for (const remark of photo.remarks) addNotice(remark);
-  followDraft(photo);
+  followMemory(memory);
   if (previous && previous.photoId !== photo.photoId) void closeQuietly(previous.photoId);
 }
 
-function startAfresh(look: Look): void {
-  startLook(look);
-  void forgetDraft();
-}
-
-export function presetByName(name: string | null): PresetOffer {
-  const presets = sessionStore.get()?.presets ?? [];
-  return (
-    presets.find((preset) => preset.name === name) ??
-    presets.find((preset) => preset.name === firstPresetName) ??
-    presets[0] ?? { name: 'plain', title: 'Plain', description: '', parameters: defaultParameters() }
-  );
-}
-
-function freshLook(preset: PresetOffer): Look {
-  return {
-    presetId: preset.name,
-    presetParameters: preset.parameters,
-    parameters: preset.parameters,
-    printLongEdgeMm: defaultPrintLongEdgeMm,
-    lifted: {},
-  };
-}
-
-/** Back to the first screen; changes are kept as a draft. */
+/** Back to the first screen; changes are kept. */
 export async function closePhoto(): Promise<void> {
   const photo = photoStore.get();
   if (!photo) return;
   opening?.abort();
-  await flushDraft();
-  followDraft(null);
+  await tellWork();
+  followMemory(null);
   photoStore.set(null);
   endLook();
   viewStore.update((view) => ({ ...view, split01: null, bare: false }));

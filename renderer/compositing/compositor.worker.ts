@@ -4,7 +4,7 @@
  */
 import { type Composer, createComposer } from './composer.ts';
 import { drawPicture, drawSection } from './drawScene.ts';
-import type { FromCompositor, PaintedPiece, PieceSlot, Scene, ToCompositor } from './messages.ts';
+import type { FromCompositor, PaintedPiece, PieceSlot, Scene, SceneSide, ToCompositor } from './messages.ts';
 import { PictureSheet } from './pictureSheet.ts';
 
 /** What a dedicated worker's global scope has and the DOM's types know as a window's. */
@@ -16,7 +16,7 @@ const scope = self as unknown as {
 const tell = (message: FromCompositor, transfer: Transferable[] = []) => scope.postMessage(message, transfer);
 
 const ready: Promise<Composer> = createComposer();
-const sheets: Partial<Record<PieceSlot, PictureSheet>> = {};
+const sheets: Record<SceneSide, Partial<Record<PieceSlot, PictureSheet>>> = { easel: {}, left: {} };
 let pictureContext: OffscreenCanvasRenderingContext2D | null = null;
 let sectionContext: OffscreenCanvasRenderingContext2D | null = null;
 let scene: Scene | null = null;
@@ -34,29 +34,36 @@ function drawSoon(): void {
 function draw(): void {
   if (!scene || !pictureContext || !sectionContext) return;
   const startMs = performance.now();
-  const drawn = scene.shown.map((slot) => sheets[slot]).filter((sheet) => sheet !== undefined);
+  const drawn = shownOf('easel', scene.shown);
+  const left = scene.left && scene.split01 !== null ? shownOf('left', scene.left.shown) : null;
   let composed = false;
   for (const sheet of drawn) if (!scene.bare && sheet.composePaint(scene.parameters)) composed = true;
-  drawPicture(pictureContext, scene, drawn);
+  for (const sheet of left ?? [])
+    if (!scene.bare && sheet.composePaint(scene.left!.parameters)) composed = true;
+  drawPicture(pictureContext, scene, drawn, left);
   drawSection(sectionContext, scene, drawn);
   tell({ kind: 'drawn', sceneId: scene.id, frameMs: performance.now() - startMs, composed });
 }
 
-function replaceSheet(slot: PieceSlot, piece: PaintedPiece, composer: Composer): void {
-  const old = sheets[slot];
+function shownOf(side: SceneSide, slots: readonly PieceSlot[]): PictureSheet[] {
+  return slots.map((slot) => sheets[side][slot]).filter((sheet) => sheet !== undefined);
+}
+
+function replaceSheet(side: SceneSide, slot: PieceSlot, piece: PaintedPiece, composer: Composer): void {
+  const old = sheets[side][slot];
   const ground = piece.strata.ground ?? old?.held.strata.ground;
   if (!ground) throw new Error('A piece came without its ground, and none was held.');
   // The ground may lie in the old sheet's memory: that is given back last.
-  sheets[slot] = new PictureSheet(piece, { ...piece.strata, ground }, composer, old);
+  sheets[side][slot] = new PictureSheet(piece, { ...piece.strata, ground }, composer, old);
   old?.release();
   // All is copied: the window may read the next piece into the same memory.
   const { buffer } = piece.strata.body;
   if (buffer instanceof ArrayBuffer) tell({ kind: 'spent', buffer }, [buffer]);
 }
 
-function dropSheet(slot: PieceSlot): void {
-  sheets[slot]?.release();
-  delete sheets[slot];
+function dropSheet(side: SceneSide, slot: PieceSlot): void {
+  sheets[side][slot]?.release();
+  delete sheets[side][slot];
 }
 
 // Messages that come before the kernels are loaded wait for them, in order.
@@ -76,11 +83,11 @@ function take(message: ToCompositor, composer: Composer): void {
       tell({ kind: 'ready' });
       return;
     case 'piece':
-      replaceSheet(message.slot, message.piece, composer);
+      replaceSheet(message.side, message.slot, message.piece, composer);
       drawSoon();
       return;
     case 'dropPiece':
-      dropSheet(message.slot);
+      dropSheet(message.side, message.slot);
       drawSoon();
       return;
     case 'scene':

@@ -1,4 +1,4 @@
-import type { FromCompositor, PaintedPiece, PieceSlot, Scene, ToCompositor } from './messages.ts';
+import type { FromCompositor, PaintedPiece, PieceSlot, Scene, SceneSide, ToCompositor } from './messages.ts';
 
 /** How long a frame took; also sent to the window as an event, so that it can be measured from outside. */
 export interface FrameTime {
@@ -31,12 +31,12 @@ export class CompositorClient {
     this.send({ kind: 'start', picture, section }, [picture, section]);
   }
 
-  setPiece(slot: PieceSlot, piece: PaintedPiece): void {
-    this.send({ kind: 'piece', slot, piece }, buffersOf(piece));
+  setPiece(side: SceneSide, slot: PieceSlot, piece: PaintedPiece): void {
+    this.send({ kind: 'piece', side, slot, piece }, buffersOf(piece));
   }
 
-  dropPiece(slot: PieceSlot): void {
-    this.send({ kind: 'dropPiece', slot });
+  dropPiece(side: SceneSide, slot: PieceSlot): void {
+    this.send({ kind: 'dropPiece', side, slot });
   }
 
   show(scene: Omit<Scene, 'id'>): number {
@@ -71,8 +71,8 @@ export class CompositorClient {
 }
 
 function buffersOf(piece: PaintedPiece): Transferable[] {
-  const { ground, body, line } = piece.strata;
-  const buffers = [ground?.buffer, body.buffer, line.buffer].filter(
+  const { ground, body, line, relief } = piece.strata;
+  const buffers = [ground?.buffer, body.buffer, line.buffer, relief?.buffer].filter(
     (buffer) => buffer instanceof ArrayBuffer,
   );
   return [...new Set(buffers)];

@@ -20,26 +20,36 @@ function setSmoothing(context: Context, magnification: number): void {
   context.imageSmoothingQuality = magnification < 1 ? 'medium' : 'low';
 }
 
-/** Draws the picture, or the photo, or both on either side of the split. `sheets` lie one over the other. */
-export function drawPicture(context: Context, scene: Scene, sheets: readonly PictureSheet[]): void {
+/**
+ * Draws the picture, or the photo, or two on either side of the split.
+ * @param sheets lie one over the other
+ * @param left what stands on the left of the split; null for the photo alone
+ */
+export function drawPicture(
+  context: Context,
+  scene: Scene,
+  sheets: readonly PictureSheet[],
+  left: readonly PictureSheet[] | null,
+): void {
   fitCanvas(context, scene.stage.widthPx, scene.stage.heightPx);
   const { view, photo } = scene;
   const widthPx = Math.round(photo.widthPx * view.scale);
   const heightPx = Math.round(photo.heightPx * view.scale);
   const splitPx = scene.split01 === null ? 0 : Math.round(widthPx * scene.split01);
-  const bareWidthPx = scene.bare ? widthPx : splitPx;
-  for (const side of ['bare', 'painted'] as const) {
-    const leftPx = side === 'bare' ? 0 : bareWidthPx;
-    const rightPx = side === 'bare' ? bareWidthPx : widthPx;
+  const leftWidthPx = scene.bare ? widthPx : splitPx;
+  for (const side of ['left', 'right'] as const) {
+    const leftPx = side === 'left' ? 0 : leftWidthPx;
+    const rightPx = side === 'left' ? leftWidthPx : widthPx;
+    const isBare = side === 'left' && (scene.bare || left === null);
     if (rightPx <= leftPx) continue;
     context.save();
     context.beginPath();
     context.rect(view.originXPx + leftPx, view.originYPx, rightPx - leftPx, heightPx);
     context.clip();
-    for (const sheet of sheets) {
+    for (const sheet of side === 'left' && !isBare ? left! : sheets) {
       const place = sheet.place(view);
       setSmoothing(context, place.magnification);
-      const canvas = side === 'bare' ? sheet.bareCanvas(scene.parameters) : sheet.paintedCanvas;
+      const canvas = isBare ? sheet.bareCanvas(scene.parameters) : sheet.paintedCanvas;
       context.drawImage(canvas, place.x, place.y, place.width, place.height);
     }
     context.restore();

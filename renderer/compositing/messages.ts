@@ -18,6 +18,8 @@ export interface Scene {
   bandSpan: { leftPx: number; rightPx: number };
   /** The pieces to draw, the lowest first. */
   shown: readonly PieceSlot[];
+  /** What stands on the left of the split; null for the photo alone. */
+  left: { parameters: Parameters; shown: readonly PieceSlot[] } | null;
 }
 
 /** Strata of a level or of a part of it, as the host painted them. */
@@ -34,10 +36,13 @@ export interface PaintedPiece {
  */
 export type PieceSlot = 'rough' | 'base' | 'detail';
 
+/** Two sets of pieces: what lies on the easel, and what it is compared with on the left of the split. */
+export type SceneSide = 'easel' | 'left';
+
 export type ToCompositor =
   | { kind: 'start'; picture: OffscreenCanvas; section: OffscreenCanvas }
-  | { kind: 'piece'; slot: PieceSlot; piece: PaintedPiece }
-  | { kind: 'dropPiece'; slot: PieceSlot }
+  | { kind: 'piece'; side: SceneSide; slot: PieceSlot; piece: PaintedPiece }
+  | { kind: 'dropPiece'; side: SceneSide; slot: PieceSlot }
   | { kind: 'scene'; scene: Scene };
 
 export type FromCompositor =

@@ -178,6 +178,7 @@ export function compositionKey(parameters: Parameters): string {
     parameters['ground.paper'],
     parameters['ground.colour'],
     parameters['body.strength'],
+    parameters['relief.strength'],
     parameters['line.strength'],
     parameters['line.blend'],
     parameters['line.colour'],

@@ -2,6 +2,9 @@ import { useCallback, useRef } from 'react';
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { compositor } from '../compositing/compositor.ts';
 import type { Look } from '../state/lookStore.ts';
+import { comparisonStore } from '../state/memoryStore.ts';
+import { useStore } from '../state/store.ts';
+import { ComparePage } from '../states/ComparePage.tsx';
 import { Panel } from './Panel.tsx';
 import { Section } from './Section.tsx';
 import { Stage } from './Stage.tsx';
@@ -28,6 +31,7 @@ function handOver(): void {
 
 /** One photo being worked: picture, Section, controls. */
 export function Easel({ photo, look }: { photo: OpenedPhoto; look: Look }) {
+  const comparison = useStore(comparisonStore);
   const room = useRef<HTMLElement>(null);
   const holdPicture = useCallback((element: HTMLDivElement | null) => {
     handOver();
@@ -41,7 +45,7 @@ export function Easel({ photo, look }: { photo: OpenedPhoto; look: Look }) {
     <main className="easel" ref={room}>
       <Stage photo={photo} canvasHost={holdPicture} />
       <Section photo={photo} look={look} canvasHost={holdSection} />
-      <Panel photo={photo} look={look} />
+      {comparison ? <ComparePage comparison={comparison} /> : <Panel photo={photo} look={look} />}
     </main>
   );
 }

@@ -1,8 +1,10 @@
 import { type KeyboardEvent, type PointerEvent, useEffect, useRef } from 'react';
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { nextScale, type Point } from '../geometry/viewTransform.ts';
+import { lookStore } from '../state/lookStore.ts';
 import { useStore } from '../state/store.ts';
 import { changeView, placedViewStore, viewStore } from '../state/viewStore.ts';
+import { compare, stateDragType } from '../states/comparing.ts';
 import { Cut } from './Cut.tsx';
 import { SplitDivider } from './SplitDivider.tsx';
 import { StageFoot } from './StageFoot.tsx';
@@ -73,6 +75,10 @@ export function Stage({ photo, canvasHost }: StageProps) {
         onPointerUp={endDrag}
         onPointerCancel={endDrag}
         onKeyDown={onKeyDown}
+        onDragOver={(event) => {
+          if (event.dataTransfer.types.includes(stateDragType)) event.preventDefault();
+        }}
+        onDrop={(event) => dropState(event.dataTransfer.getData(stateDragType))}
       >
         <div className="stage-canvas" ref={canvasHost} />
       </section>
@@ -82,6 +88,12 @@ export function Stage({ photo, canvasHost }: StageProps) {
       <StageFoot photo={photo} />
     </section>
   );
+}
+
+/** A state dropped on the picture is compared with it. */
+function dropState(stateId: string): void {
+  const preset = lookStore.get()?.present.presetId;
+  if (stateId && preset) compare({ kind: 'state', preset, stateId });
 }
 
 /** Keeps the stage's size in device pixels. */

@@ -47,10 +47,7 @@ export function FirstScreen() {
 }
 
 function Earlier({ session, isBusy }: { session: Session; isBusy: boolean }) {
-  const draftPaths = new Set(session.drafts.map((draft) => draft.path));
-  const recentPaths = new Set(session.recents.map((recent) => recent.path));
-  const lost = session.drafts.filter((draft) => !recentPaths.has(draft.path));
-  if (session.recents.length + lost.length === 0)
+  if (session.recents.length === 0)
     return (
       <section className="first-earlier" aria-label="Earlier photographs">
         <p className="first-none">The photographs you open will be listed here.</p>
@@ -60,26 +57,8 @@ function Earlier({ session, isBusy }: { session: Session; isBusy: boolean }) {
     <section className="first-earlier" aria-labelledby="earlier-name">
       <h2 id="earlier-name">Lately on the easel</h2>
       <ul>
-        {lost.map((draft) => (
-          <li key={draft.path}>
-            <button
-              type="button"
-              className="row-button row-recent"
-              disabled={isBusy || !draft.present}
-              onClick={() => void openPhoto(draft.path)}
-            >
-              <span className="recent-name">{draft.name}</span>
-              <span className="row-note">changes kept</span>
-            </button>
-          </li>
-        ))}
         {session.recents.map((recent) => (
-          <RecentRow
-            key={recent.path}
-            recent={recent}
-            hasDraft={draftPaths.has(recent.path)}
-            isBusy={isBusy}
-          />
+          <RecentRow key={recent.path} recent={recent} isBusy={isBusy} />
         ))}
       </ul>
     </section>
@@ -88,11 +67,10 @@ function Earlier({ session, isBusy }: { session: Session; isBusy: boolean }) {
 
 interface RecentRowProps {
   recent: Recent;
-  hasDraft: boolean;
   isBusy: boolean;
 }
 
-function RecentRow({ recent, hasDraft, isBusy }: RecentRowProps) {
+function RecentRow({ recent, isBusy }: RecentRowProps) {
   return (
     <li className="recent">
       <button
@@ -106,9 +84,7 @@ function RecentRow({ recent, hasDraft, isBusy }: RecentRowProps) {
         <span className="recent-where">
           <bdi>{recent.folder}</bdi>
         </span>
-        <span className="row-note">
-          {recent.present ? (hasDraft ? 'changes kept' : dayInWords(recent.openedAt)) : 'no longer there'}
-        </span>
+        <span className="row-note">{recent.present ? dayInWords(recent.openedAt) : 'no longer there'}</span>
       </button>
       <button
         type="button"

@@ -1,8 +1,10 @@
 import { useEffect, useState } from 'react';
 import type { DesktopBridge } from '../../main/host/api/desktopBridge.ts';
+import { takeLookOf } from '../app/memoryWork.ts';
 import { openPhoto } from '../app/photoWork.ts';
+import { importPresets } from '../app/presetWork.ts';
 import { dialogStore } from '../state/panelStore.ts';
-import { openingStore } from '../state/photoStore.ts';
+import { openingStore, photoStore } from '../state/photoStore.ts';
 
 declare global {
   interface Window {
@@ -26,7 +28,7 @@ export function useDrop(): boolean {
       event.preventDefault();
       setOver(false);
       const file = event.dataTransfer?.files[0];
-      if (file) void openDropped(file);
+      if (file) void takeDropped(file);
     };
     window.addEventListener('dragover', onDragOver);
     window.addEventListener('dragleave', onDragLeave);
@@ -38,6 +40,14 @@ export function useDrop(): boolean {
     };
   }, []);
   return isOver;
+}
+
+/** A recipe gives its look to the photo on the easel, a file of presets goes to the shelf, all else is a photo. */
+async function takeDropped(file: File): Promise<void> {
+  const name = file.name.toLowerCase();
+  if (name.endsWith('.oxgall.json') && photoStore.get()) await takeLookOf(file.name, await file.text());
+  else if (name.endsWith('.oxgall-presets.json')) await importPresets(file);
+  else await openDropped(file);
 }
 
 async function openDropped(file: File): Promise<void> {

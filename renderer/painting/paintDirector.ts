@@ -1,7 +1,7 @@
 import type { Rect } from '../../core/pixels/photo.ts';
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import type { CompositorClient } from '../compositing/compositorClient.ts';
-import type { PieceSlot } from '../compositing/messages.ts';
+import type { PieceSlot, SceneSide } from '../compositing/messages.ts';
 import { fitMargin } from '../easel/stageMeasures.ts';
 import { baseLevel, contains, levelForScale, visibleRegion } from '../geometry/levels.ts';
 import type { PlacedView, Size } from '../geometry/viewTransform.ts';
@@ -55,7 +55,11 @@ export class PaintDirector {
   /** Called each time the picture is sharp and nothing else waits. */
   onSettled: () => void = () => {};
 
-  constructor(private readonly compositor: CompositorClient) {}
+  /** @param side whose picture it sees to; only the easel's own is reported on the screen */
+  constructor(
+    private readonly compositor: CompositorClient,
+    private readonly side: SceneSide = 'easel',
+  ) {}
 
   setPhoto(photo: OpenedPhoto | null): void {
     const isSame = photo?.photoId === this.photo?.photoId;
@@ -65,12 +69,12 @@ export class PaintDirector {
       return;
     }
     this.stopAll();
-    for (const slot of Object.keys(this.held) as PieceSlot[]) this.compositor.dropPiece(slot);
+    for (const slot of Object.keys(this.held) as PieceSlot[]) this.compositor.dropPiece(this.side, slot);
     this.held = {};
     this.wantedKey = '';
     this.wantedBase = -1;
     this.setShown([]);
-    paintStore.set(idlePaint);
+    this.report(idlePaint);
     this.considerLook();
   }
 
@@ -216,7 +220,7 @@ export class PaintDirector {
     try {
       const omitGround = this.holdsGround(slot, level, region, photo);
       const received = await requestPiece(
-        { photoId: photo.photoId, ...look, slot, level, region, omitGround },
+        { photoId: photo.photoId, ...look, side: this.side, slot, level, region, omitGround },
         abort.signal,
         this.compositor.makeRoom,
       );
@@ -236,11 +240,12 @@ export class PaintDirector {
   }
 
   private take(slot: PieceSlot, key: string, { piece, header }: ReceivedPiece): void {
-    this.compositor.setPiece(slot, piece);
+    this.compositor.setPiece(this.side, slot, piece);
     this.held[slot] = { key, level: header.level, region: header.region, source: header.source };
     this.showHeld();
     this.report({ trouble: null });
-    window.dispatchEvent(new CustomEvent('oxgall:piece', { detail: { slot, level: header.level, key } }));
+    const detail = { side: this.side, slot, level: header.level, key };
+    window.dispatchEvent(new CustomEvent('oxgall:piece', { detail }));
   }
 
   /** The base where it is of the wanted strata, else the rough one; the detail over it where it still holds. */
@@ -285,7 +290,7 @@ export class PaintDirector {
   }
 
   private report(change: Partial<PaintState>): void {
-    paintStore.update((state) => ({ ...state, ...change }));
+    if (this.side === 'easel') paintStore.update((state) => ({ ...state, ...change }));
   }
 }
 

@@ -1,13 +1,14 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { Rect } from '../../core/pixels/photo.ts';
 import type { StrataHeader } from '../../main/host/api/hostCommands.ts';
-import type { PaintedPiece, PieceSlot } from '../compositing/messages.ts';
+import type { PaintedPiece, PieceSlot, SceneSide } from '../compositing/messages.ts';
 import { host } from '../host/host.ts';
 
 export interface PieceRequest {
   photoId: string;
   parameters: Parameters;
   printLongEdgeMm: number;
+  side: SceneSide;
   slot: PieceSlot;
   level: number;
   region?: Rect;
@@ -33,7 +34,7 @@ export async function requestPiece(
       parameters: request.parameters,
       level: request.level,
       region: request.region,
-      view: `easel-${request.slot}`,
+      view: `${request.side}-${request.slot}`,
       rough: request.slot === 'rough',
       omit: request.omitGround ? ['ground'] : undefined,
       printLongEdgeMm: request.printLongEdgeMm,

@@ -1,6 +1,7 @@
 import { newCallId } from '../../core/hostProtocol/hostCaller.ts';
 import type { OutputFormatName, SavedPainting, SavePaintingInput } from '../../main/host/api/hostCommands.ts';
 import type { HostEvents } from '../../main/host/api/hostEvents.ts';
+import { takeDelivered } from '../app/memoryWork.ts';
 import { host, isUnwanted, type Trouble, troubleOf } from '../host/host.ts';
 import { addNotice } from '../state/noticeStore.ts';
 import { dialogStore } from '../state/panelStore.ts';
@@ -36,6 +37,7 @@ export async function startSave(input: SavePaintingInput): Promise<void> {
   });
   try {
     const saved = await host.call('savePainting', input, { signal: abort.signal, callId });
+    takeDelivered(saved.memory);
     change({ progress: null, saved: dialogStore.get() === 'save' ? saved : null });
     if (dialogStore.get() !== 'save') addNotice(`Saved as ${saved.name}.`);
   } catch (error) {

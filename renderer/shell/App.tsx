@@ -9,6 +9,7 @@ import { paintStore } from '../state/paintStore.ts';
 import { dialogStore } from '../state/panelStore.ts';
 import { openingStore, photoStore } from '../state/photoStore.ts';
 import { useStore } from '../state/store.ts';
+import { ThreadRow } from '../states/ThreadRow.tsx';
 import { KeysSheet } from './KeysSheet.tsx';
 import { Notices } from './Notices.tsx';
 import { TopBar } from './TopBar.tsx';
@@ -30,6 +31,7 @@ export function App() {
       {isAtWork ? (
         <>
           <TopBar photo={photo} />
+          <ThreadRow photo={photo} look={look} />
           <Easel photo={photo} look={look} />
         </>
       ) : (

@@ -7,6 +7,8 @@ import { paintStore } from '../state/paintStore.ts';
 import { chooseStratum, dialogStore, panelStore } from '../state/panelStore.ts';
 import { photoStore } from '../state/photoStore.ts';
 import { changeView, viewStore } from '../state/viewStore.ts';
+import { endComparing, toggleFlicker } from '../states/comparing.ts';
+import { keepingStore } from '../states/ThreadRow.tsx';
 
 /** A key that works wherever nothing is being typed. */
 export interface KeyCommand {
@@ -23,7 +25,13 @@ export interface KeyCommand {
 }
 
 export function toggleSplit(): void {
-  changeView({ split01: viewStore.get().split01 === null ? 0.5 : null });
+  if (viewStore.get().split01 === null) changeView({ split01: 0.5 });
+  else endComparing();
+}
+
+/** The present state, so that the arrow keys go on from it. */
+function focusThread(): void {
+  document.querySelector<HTMLElement>('.thread-state.is-present')?.focus();
 }
 
 export const keyCommands: readonly KeyCommand[] = [
@@ -62,6 +70,14 @@ export const keyCommands: readonly KeyCommand[] = [
     release: () => changeView({ bare: false }),
   },
   { keys: ['c'], shown: 'C', does: 'Compare photograph and painting side by side', run: toggleSplit },
+  {
+    keys: ['k'],
+    shown: 'K',
+    does: 'Keep the easel as a new state',
+    run: () => keepingStore.set(true),
+  },
+  { keys: ['t'], shown: 'T', does: 'The states: arrows walk, Enter opens', run: focusThread },
+  { keys: ['v'], shown: 'V', does: 'Let two compared states take turns', run: toggleFlicker },
   { keys: ['p'], shown: 'P', does: 'Presets', run: () => panelStore.set('presets') },
   { keys: ['g'], shown: 'G', does: 'Controls of the ground', run: () => chooseStratum('ground') },
   { keys: ['b'], shown: 'B', does: 'Controls of the body', run: () => chooseStratum('body') },
@@ -73,7 +89,7 @@ export const keyCommands: readonly KeyCommand[] = [
     does: 'Stop painting; end comparing',
     run: () => {
       if (paintStore.get().busy !== 'no') director.stop();
-      else if (viewStore.get().split01 !== null) changeView({ split01: null });
+      else if (viewStore.get().split01 !== null) endComparing();
     },
   },
   {

@@ -18,7 +18,9 @@ import {
 /** What undo and redo go through: everything that decides how the photo is painted. */
 export interface Look {
   presetId: string;
-  /** The preset's own values: the marks on the controls, and what a reset returns to. */
+  /** The state that the parameters are changes of. */
+  stateId: string;
+  /** That state's own values: the marks on the controls, and what a reset returns to. */
   presetParameters: Parameters;
   parameters: Parameters;
   printLongEdgeMm: number;

@@ -28,8 +28,8 @@ const refusalOf = (promise: Promise<unknown>) =>
 describe('the session', () => {
   it('tells what the first screen needs', async () => {
     const session = await t.caller.call('startSession', {});
-    expect(session.presets.map((preset) => preset.name)).toEqual(['plain']);
-    expect(session).toMatchObject({ shell: 'loopback', opening: null, recents: [], drafts: [] });
+    expect(session.presets.find(({ name }) => name === 'low-water')).toMatchObject({ isBuiltIn: true });
+    expect(session).toMatchObject({ shell: 'loopback', opening: null, recents: [], presetProblems: [] });
   });
 
   it('tells once what the program was started with', async () => {
@@ -321,52 +321,26 @@ describe('what the user chose', () => {
   });
 });
 
-describe('recents and drafts', () => {
-  it('remembers photos and unsaved changes for the next session', async () => {
+describe('recents', () => {
+  it('are remembered for the next session', async () => {
     const photo = await openFresh();
-    const draft = {
-      parameters: { 'body.hold': 0.5 },
-      presetName: 'plain',
-      view: { zoom: 1.5, cut: 0.62, fit: false },
-    };
-    await t.caller.call('keepDraft', { photoId: photo.photoId, draft });
     await t.host.close();
     const next = await makeTestHost({ dataFolder: t.parts.dataFolder });
     try {
       const session = await next.caller.call('startSession', {});
       expect(session.recents).toMatchObject([{ path: photo.path, widthPx: 120, present: true }]);
-      expect(session.drafts).toMatchObject([{ path: photo.path, present: true }]);
-      const again = await next.caller.call('openPhoto', { path: photo.path });
-      expect(again.draft).toEqual(draft);
-      await next.caller.call('dropDraft', { path: photo.path });
-      expect((await next.caller.call('startSession', {})).drafts).toEqual([]);
       expect((await next.caller.call('forgetRecent', { path: photo.path })).recents).toEqual([]);
     } finally {
       await next.close();
     }
   });
 
-  it('keeps the newest of many drafts that come at once', async () => {
-    const photo = await openFresh();
-    const draft = (hold: number) => ({ parameters: { 'body.hold': hold }, presetName: null, view: {} });
-    await Promise.all(
-      [0.1, 0.2, 0.3, 0.4].map((hold) =>
-        t.caller.call('keepDraft', { photoId: photo.photoId, draft: draft(hold) }),
-      ),
-    );
-    expect((await t.caller.call('openPhoto', { path: photo.path })).draft).toEqual(draft(0.4));
-  });
-
-  it('starts all the same where its own files are damaged', async () => {
-    const photo = await openFresh();
-    const draft = { parameters: {}, presetName: null, view: {} };
-    await t.caller.call('keepDraft', { photoId: photo.photoId, draft });
+  it('start empty where their file is damaged', async () => {
+    await openFresh();
     await t.host.close();
-    const drafts = join(t.parts.dataFolder, 'drafts');
-    for (const name of await readdir(drafts)) await writeFile(join(drafts, name), '{"format":');
     await writeFile(join(t.parts.dataFolder, 'recents.json'), '[]');
     const next = await makeTestHost({ dataFolder: t.parts.dataFolder });
-    expect(await next.caller.call('startSession', {})).toMatchObject({ recents: [], drafts: [] });
+    expect(await next.caller.call('startSession', {})).toMatchObject({ recents: [] });
     await next.close();
   });
 });

@@ -81,7 +81,7 @@ describe('requests the host does not take', () => {
 
   it('refuses a call id that is in use and one that is no plain word', async () => {
     const headers = { 'x-oxgall-call': 'one' };
-    const slow = await makeTestHost({ loadPresets: () => new Promise(() => undefined) });
+    const slow = await makeTestHost({ loadStores: () => new Promise(() => undefined) });
     void slow.post('startSession', {}, headers);
     expect(await refused(await slow.post('listRecents', {}, headers))).toMatchObject({ name: 'BadRequest' });
     expect(await refused(await t.post('listRecents', {}, { 'x-oxgall-call': 'a b' }))).toMatchObject({

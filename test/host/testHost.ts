@@ -3,12 +3,12 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import sharp from 'sharp';
 import { createHostCaller, type HostCaller } from '../../core/hostProtocol/hostCaller.ts';
-import { defaultParameters } from '../../core/parameters/table.ts';
 import { readPhoto } from '../../main/files/readPhoto.ts';
 import { writePicture } from '../../main/files/writePicture.ts';
 import type { HostCommands } from '../../main/host/api/hostCommands.ts';
 import { createHost, type Host } from '../../main/host/host.ts';
 import type { HostParts } from '../../main/host/hostParts.ts';
+import { openStores } from '../../main/host/openStores.ts';
 import { readFacts, readQuick } from '../../main/host/quickPicture.ts';
 import { BlurEngine } from './blurEngine.ts';
 
@@ -39,9 +39,7 @@ export async function makeTestHost(changes: Partial<HostParts> = {}): Promise<Te
     workers: 1,
     loadEngine: async () => engine,
     loadFiles: async () => ({ readPhoto, writePicture, readFacts, readQuick }),
-    loadPresets: async () => [
-      { name: 'plain', title: 'Plain', description: 'As it comes.', parameters: defaultParameters() },
-    ],
+    loadStores: async () => openStores(join(folder, 'data')),
     loadComposeSmall: async () => async (strata) => {
       const rgba = new Uint8Array(strata.widthPx * strata.heightPx * 4).fill(255);
       for (let i = 0; i < strata.widthPx * strata.heightPx; i += 1)

@@ -93,22 +93,29 @@ describe('the built program', () => {
     expect(seen.size).toBe(presets.length);
   });
 
-  it('keeps unsaved changes when it is killed', async () => {
+  it('keeps changes that were saved when it is killed in the middle of the next ones', async () => {
     const first = await start();
-    const { photoId } = await first.caller.call('openPhoto', { path: photo });
-    const draft = { parameters: { 'body.hold': 0.4 }, presetName: null, view: { cut: 0.5 } };
-    await first.caller.call('keepDraft', { photoId, draft });
+    const { photoId, memory } = await first.caller.call('openPhoto', { path: photo });
+    const { preset, stateId } = memory.recipe.work;
+    const lay = (hold: number) =>
+      first.caller.call('layWork', {
+        photoId,
+        work: { preset, stateId, parameters: { 'body.hold': hold } },
+      });
+    await lay(0.4);
+    await expect
+      .poll(async () => (await first.caller.call('readMemory', { photoId })).saved.kind)
+      .toBe('saved');
     // More are on their way when it is killed; whichever was written last must be whole.
-    const later = Array.from({ length: 20 }, (_, i) =>
-      first.caller
-        .call('keepDraft', { photoId, draft: { ...draft, view: { cut: i / 100 } } })
-        .catch(() => undefined),
-    );
+    const later = Array.from({ length: 20 }, (_, i) => lay(0.5 + i / 100).catch(() => undefined));
     await first.kill();
     await Promise.all(later);
     const second = await start([]);
     const again = await second.caller.call('openPhoto', { path: photo });
-    expect(again.draft).toMatchObject({ parameters: draft.parameters, presetName: null });
+    const { changes } = again.memory.recipe.work;
+    expect(changes['body.hold']).toBeGreaterThanOrEqual(0.4);
+    expect(again.memory.remarks).toEqual([]);
+    await rm(again.memory.recipePath);
   });
 
   it('leaves the old file or none when it is killed in the middle of a save', async () => {

@@ -181,13 +181,13 @@ describe('what a page may do', () => {
     const path = await makePhoto(join(folder, 'heron.png'), 20, 20);
     const dropped = recorded.ipc.get('oxgall:dropped') as (event: unknown, path: unknown) => void;
     const open = async () =>
-      (await post('listFolder', { path })).status + (await post('dropDraft', { path })).status;
+      (await post('listFolder', { path })).status + (await post('openPhoto', { path })).status;
     const refusedBoth = 403 + 403;
     expect(await open()).toBe(refusedBoth);
     dropped({ senderFrame: { url: 'https://evil.example/' } }, path);
     expect(await open()).toBe(refusedBoth);
     dropped({ senderFrame: { url: 'oxgall://app/' } }, path);
-    expect((await post('dropDraft', { path })).status).toBe(200);
+    expect((await post('openPhoto', { path })).status).toBe(200);
   });
 
   it('opens what was chosen in the dialog', async () => {
@@ -195,7 +195,7 @@ describe('what a page may do', () => {
     const path = await makePhoto(join(folder, 'ferry.png'), 20, 20);
     vi.stubEnv('OXGALL_TEST_CHOICE', path);
     expect(await (await post('chooseWithDialog', { kind: 'photo' })).json()).toMatchObject({ path });
-    expect((await post('dropDraft', { path })).status).toBe(200);
+    expect((await post('openPhoto', { path })).status).toBe(200);
     expect(await (await post('chooseWithDialog', { kind: 'save' })).json()).toMatchObject({ path: null });
   });
 });

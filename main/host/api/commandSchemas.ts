@@ -1,5 +1,7 @@
 import { z } from 'zod';
 import type { HostCommands } from './hostCommands.ts';
+import { parameters, path, photoId } from './inputParts.ts';
+import { memorySchemas } from './memorySchemas.ts';
 
 /**
  * What each command takes, checked on entry. Paths are only ever used after the host's own list of what
@@ -7,14 +9,7 @@ import type { HostCommands } from './hostCommands.ts';
  * than it means to.
  */
 
-const path = z.string().min(1).max(4096);
-const photoId = z.string().min(1).max(64);
 const callId = z.string().min(1).max(64);
-
-/** Key → value; the values themselves are checked against the parameter table. */
-const parameters = z
-  .record(z.string().max(40), z.union([z.string().max(64), z.number()]))
-  .refine((values) => Object.keys(values).length <= 128, 'at most 128 parameters');
 
 const pixelCount = z.int().min(0).max(1_000_000);
 
@@ -29,15 +24,8 @@ const printLongEdgeMm = z.number().min(10).max(10_000).optional();
 
 const outputFormat = z.enum(['jpeg', 'png', 'tiff', 'webp']);
 
-/** Anything the interface wants back after a crash, as long as it stays small (see the host's body limit). */
-const draft = z.strictObject({
-  parameters,
-  presetName: z.string().max(120).nullable(),
-  /** The interface's own notes: zoom, cut, chosen stratum. Kept as they are. */
-  view: z.record(z.string().max(40), z.union([z.string().max(200), z.number(), z.boolean(), z.null()])),
-});
-
 export const commandSchemas = {
+  ...memorySchemas,
   startSession: z.strictObject({}),
   openPhoto: z.strictObject({ path }),
   awaitPhoto: z.strictObject({ photoId }),
@@ -90,8 +78,6 @@ export const commandSchemas = {
   }),
   listRecents: z.strictObject({}),
   forgetRecent: z.strictObject({ path }),
-  keepDraft: z.strictObject({ photoId, draft }),
-  dropDraft: z.strictObject({ path }),
   openDemo: z.strictObject({}),
   revealFile: z.strictObject({ path }),
   cancelCall: z.strictObject({ callId }),

@@ -1,11 +1,12 @@
 import type { Parameters } from '../../../core/parameters/table.ts';
 import type { Rect } from '../../../core/pixels/photo.ts';
+import type { MemoryCommands, PhotoMemory, PresetOffer } from './memoryCommands.ts';
 
 /**
  * The host's commands: `POST /api/<name>` with JSON in, and JSON (`output`) or a frame of pixels (`frame`)
  * out. The interface takes these types and nothing else of the host.
  */
-export interface HostCommands {
+export interface HostCommands extends MemoryCommands {
   /** What the first screen needs. */
   startSession: { input: Record<string, never>; output: Session };
   /**
@@ -29,9 +30,6 @@ export interface HostCommands {
   chooseWithDialog: { input: ChooseInput; output: Choice };
   listRecents: { input: Record<string, never>; output: { recents: Recent[] } };
   forgetRecent: { input: { path: string }; output: { recents: Recent[] } };
-  /** Keeps unsaved changes of a photo so that neither closing nor a crash loses them. */
-  keepDraft: { input: { photoId: string; draft: Draft }; output: { keptAt: string } };
-  dropDraft: { input: { path: string }; output: Done };
   /** Makes the demo photos ready and names them; they may be opened from then on. */
   openDemo: { input: Record<string, never>; output: DemoSeries };
   /** Shows a file in the system's file browser, where `session.desktop.revealFiles`. */
@@ -64,24 +62,14 @@ export interface Session {
   workers: number;
   desktop: DesktopCapabilities;
   presets: PresetOffer[];
+  /** One sentence for each preset file that could not be used. */
+  presetProblems: string[];
   /** Newest first. */
   recents: Recent[];
-  /** Photos with unsaved changes from an earlier session, newest first. */
-  drafts: DraftNote[];
   demo: { available: boolean; title: string };
   /** What the program was started with, if anything. */
   opening: { kind: 'photo' | 'folder'; path: string } | null;
   homePath: string;
-}
-
-export interface PresetOffer {
-  /** What recipes call it. */
-  name: string;
-  /** As people read it. */
-  title: string;
-  /** One plain sentence. */
-  description: string;
-  parameters: Parameters;
 }
 
 export interface Recent {
@@ -121,8 +109,8 @@ export interface OpenedPhoto {
   densityPpi: number | null;
   /** What was assumed or converted while reading, in plain sentences. */
   remarks: string[];
-  /** Unsaved changes from before, if any. */
-  draft: Draft | null;
+  /** What the program remembers of it: its recipe, or a fresh one. */
+  memory: PhotoMemory;
 }
 
 export interface LevelSize {
@@ -198,6 +186,8 @@ export interface SavedPainting {
   heightPx: number;
   sizeBytes: number;
   tookMs: number;
+  /** With the delivery noted. */
+  memory: PhotoMemory;
 }
 
 export interface FolderListing {
@@ -226,19 +216,6 @@ export interface Choice {
   path: string | null;
   folder: string | null;
   name: string | null;
-}
-
-export interface Draft {
-  parameters: Partial<Parameters>;
-  presetName: string | null;
-  view: Record<string, string | number | boolean | null>;
-}
-
-export interface DraftNote {
-  path: string;
-  name: string;
-  keptAt: string;
-  present: boolean;
 }
 
 export interface DemoSeries {

@@ -10,6 +10,8 @@ export interface HostEvents {
   openRequested: { kind: 'photo' | 'folder'; path: string };
   /** An entry of the application menu. */
   menu: { command: MenuCommand };
+  /** Something of a photo's memory was saved, could not be saved, or changed: ask for it again. */
+  memoryChanged: { photoId: string };
   /** The list of recent photos changed. */
   recentsChanged: Record<string, never>;
 }

@@ -1,0 +1,279 @@
+import { dirname, isAbsolute, join, relative } from 'node:path';
+import { engineVersion } from '../../core/engineVersion.ts';
+import type { Parameters } from '../../core/parameters/table.ts';
+import type { Moment } from '../../core/presets/preset.ts';
+import { stateById } from '../../core/presets/thread.ts';
+import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
+import type { Recipe } from '../../core/recipes/recipe.ts';
+import {
+  changeOutput,
+  changeParameters,
+  createRecipe,
+  currentParameters,
+  currentState,
+  noteDelivery,
+} from '../../core/recipes/recipeHistory.ts';
+import { DelayedSaver } from '../store/delayedSaver.ts';
+import { findMovedPhotos, reunite } from '../store/movedPhotos.ts';
+import { fingerprintPhoto } from '../store/photoFingerprint.ts';
+import type { PresetStore } from '../store/presetStore.ts';
+import { recipeBeside } from '../store/recipePlaces.ts';
+import type { RecipeStore } from '../store/recipeStore.ts';
+import type { SavedRecipe } from '../store/storeResults.ts';
+import type { FileVersion } from '../store/versionedFile.ts';
+import type { PhotoMemory, WorkOnEasel } from './api/memoryCommands.ts';
+import type { EventHub } from './eventHub.ts';
+import { Refusal } from './refusal.ts';
+
+/** Where recipes and presets are kept. */
+export interface Stores {
+  recipes: RecipeStore;
+  presets: PresetStore;
+  dataFolder: string;
+  /** Recipes of photos whose folders cannot be written. */
+  mirrorFolder: string;
+}
+
+/** A file that was written, with what it was painted from. */
+export interface NotedDelivery {
+  path: string;
+  sha256: string;
+  pixelsSha256: string;
+  parameters: Parameters;
+  output: Partial<OutputSettings>;
+}
+
+/** What a photo that was never worked on starts from. */
+export const firstPresetName = 'low-water';
+
+interface Entry {
+  photoId: string;
+  path: string;
+  recipe: Recipe;
+  recipePath: string;
+  version: FileVersion;
+  access: PhotoMemory['access'];
+  photo: PhotoMemory['photo'];
+  isKept: boolean;
+  remarks: string[];
+  saved: PhotoMemory['saved'];
+  saver: DelayedSaver<Recipe>;
+}
+
+/**
+ * The recipes of open photos. Each is loaded when its photo is opened, changed in memory, and saved shortly after
+ * each change; nothing is written for a photo that was only looked at.
+ */
+export class PhotoMemories {
+  readonly #entries = new Map<string, Promise<Entry>>();
+
+  constructor(
+    private readonly parts: { loadStores(): Promise<Stores>; events: EventHub; now?: () => Date },
+  ) {}
+
+  /** Begins to load a photo's recipe; asked twice, it is loaded once. */
+  open(photoId: string, path: string): Promise<void> {
+    let entry = this.#entries.get(photoId);
+    if (!entry) {
+      entry = this.#load(photoId, path);
+      this.#entries.set(photoId, entry);
+      entry.catch(() => this.#entries.delete(photoId));
+    }
+    return entry.then(() => undefined);
+  }
+
+  async view(photoId: string): Promise<PhotoMemory> {
+    return viewOf(await this.#find(photoId));
+  }
+
+  /**
+   * Changes a photo's recipe and has it saved.
+   * @param change from recipe to recipe, as in `core/recipes/recipeHistory.ts`
+   * @throws Refusal where the recipe is only for looking
+   */
+  async change(photoId: string, change: (recipe: Recipe, moment: Moment) => Recipe): Promise<PhotoMemory> {
+    const entry = await this.#find(photoId);
+    if (entry.access === 'readOnly')
+      throw new Refusal(
+        'NotAllowed',
+        'This recipe was written by a newer version of Oxgall and is only for looking.',
+        'Update Oxgall to go on with it. The painting itself can be saved.',
+      );
+    const recipe = change(entry.recipe, this.moment());
+    if (recipe !== entry.recipe) {
+      entry.recipe = recipe;
+      entry.saved = { kind: 'waiting', message: '' };
+      entry.saver.change(recipe);
+    }
+    return viewOf(entry);
+  }
+
+  /** Lays work on the easel: a state of the recipe, and the parameters over it. */
+  async layWork(photoId: string, work: WorkOnEasel): Promise<PhotoMemory> {
+    const entry = await this.#find(photoId);
+    // Somebody looks at a newer recipe and tries other values: they are theirs, and gone with the window.
+    if (entry.access === 'readOnly') return viewOf(entry);
+    const next = withWork(entry.recipe, work);
+    return this.change(photoId, () => (isSameWork(next, entry.recipe) ? entry.recipe : next));
+  }
+
+  /**
+   * Notes a delivered file. What was painted is the easel as it was when the painting began, whatever lies there
+   * now; where no state holds it, it is kept as one.
+   */
+  async noteDelivered(photoId: string, file: NotedDelivery): Promise<PhotoMemory> {
+    const entry = await this.#find(photoId);
+    if (entry.access === 'readOnly') return viewOf(entry);
+    const { parameters, output, path, ...hashes } = file;
+    const place = relative(dirname(entry.path), path);
+    const isBelow = !place.startsWith('..') && !isAbsolute(place);
+    return this.change(photoId, (recipe, moment) => {
+      const painted = changeOutput(changeParameters(recipe, parameters), output);
+      const noted = noteDelivery(painted, { ...hashes, path: isBelow ? place : path }, moment);
+      // Somebody may have gone on while the file was being painted: their work stays on the easel.
+      return changeParameters(noted, currentParameters(recipe));
+    });
+  }
+
+  /** Makes one recipe of ours and of what somebody else saved meanwhile. */
+  async keepBoth(photoId: string): Promise<PhotoMemory> {
+    const entry = await this.#find(photoId);
+    const { recipes } = await this.parts.loadStores();
+    const at = { path: entry.recipePath, version: entry.version };
+    const { recipe, saved } = await recipes.saveKeepingBoth(entry.path, entry.recipe, at);
+    entry.recipe = recipe;
+    this.#take(entry, saved);
+    return viewOf(entry);
+  }
+
+  moment(): Moment {
+    const now = this.parts.now?.() ?? new Date();
+    return { time: now.toISOString(), engineVersion };
+  }
+
+  /** Saves what waits and forgets the photo. */
+  async close(photoId: string): Promise<void> {
+    const opening = this.#entries.get(photoId);
+    this.#entries.delete(photoId);
+    const entry = await opening?.catch(() => null);
+    await entry?.saver.flush();
+  }
+
+  /** Forgets photos that were closed to make room. */
+  async keepOnly(photoIds: readonly string[]): Promise<void> {
+    const gone = [...this.#entries.keys()].filter((id) => !photoIds.includes(id));
+    await Promise.all(gone.map((id) => this.close(id)));
+  }
+
+  /** Waits until everything is on the disk. */
+  async flush(): Promise<void> {
+    const entries = await Promise.allSettled(this.#entries.values());
+    await Promise.all(
+      entries.map((entry) => (entry.status === 'fulfilled' ? entry.value.saver.flush() : null)),
+    );
+  }
+
+  async #find(photoId: string): Promise<Entry> {
+    const entry = await this.#entries.get(photoId);
+    if (entry) return entry;
+    throw new Refusal('NotFound', 'This photo is no longer open.', 'Open it again; its changes are kept.');
+  }
+
+  async #load(photoId: string, path: string): Promise<Entry> {
+    const { recipes, presets, dataFolder, mirrorFolder } = await this.parts.loadStores();
+    const fingerprint = await fingerprintPhoto(path);
+    let loaded = await recipes.load(path, fingerprint);
+    const remarks: string[] = [];
+    if (loaded.kind === 'none') {
+      const [found] = await findMovedPhotos(recipes, [path], mirrorFolder).catch(() => []);
+      // A copy of a photo that is still where it was starts a life of its own.
+      if (found?.kind === 'moved') {
+        await reunite(recipes, found, join(dataFolder, 'bin', 'recipes'));
+        loaded = await recipes.load(path, fingerprint);
+        remarks.push(`This photo was moved here from ${found.oldPhotoPath}: its recipe came along.`);
+      }
+    }
+    const fresh = async () => createRecipe(fingerprint, await firstPreset(presets), this.moment());
+    const beside = { recipePath: recipeBeside(path), version: null as FileVersion };
+    const known =
+      loaded.kind === 'open'
+        ? {
+            recipe: loaded.recipe,
+            recipePath: loaded.path,
+            version: loaded.version,
+            photo: loaded.photo,
+            remarks: [...remarks, ...loaded.remarks],
+            isKept: true,
+          }
+        : loaded.kind === 'newer'
+          ? { ...beside, recipe: loaded.recipe ?? (await fresh()), remarks: [loaded.message], isKept: true }
+          : loaded.kind === 'damaged'
+            ? {
+                ...beside,
+                version: loaded.version,
+                recipe: await fresh(),
+                remarks: [loaded.message],
+                isKept: true,
+              }
+            : { ...beside, recipe: await fresh(), remarks, isKept: false };
+    const isMirrored = dirname(known.recipePath) !== dirname(beside.recipePath);
+    const entry: Entry = {
+      photo: 'same',
+      ...known,
+      photoId,
+      path,
+      access: loaded.kind === 'newer' ? 'readOnly' : isMirrored ? 'mirrored' : 'writable',
+      saved: { kind: 'saved', message: '' },
+      saver: new DelayedSaver<Recipe>((recipe) => this.#save(entry, recipe)),
+    };
+    return entry;
+  }
+
+  async #save(entry: Entry, recipe: Recipe): Promise<void> {
+    const { recipes } = await this.parts.loadStores();
+    const at = { path: entry.recipePath, version: entry.version };
+    this.#take(entry, await recipes.save(entry.path, recipe, at), recipe);
+  }
+
+  #take(entry: Entry, saved: SavedRecipe, recipe = entry.recipe): void {
+    if (saved.kind === 'saved') {
+      entry.version = saved.version;
+      entry.recipePath = saved.path;
+      entry.isKept = true;
+      if (dirname(saved.path) !== dirname(recipeBeside(entry.path))) entry.access = 'mirrored';
+      for (const remark of saved.remarks) if (!entry.remarks.includes(remark)) entry.remarks.push(remark);
+      entry.saved = { kind: entry.recipe === recipe ? 'saved' : 'waiting', message: '' };
+    } else entry.saved = { kind: saved.kind, message: saved.message };
+    this.parts.events.send('memoryChanged', { photoId: entry.photoId });
+  }
+}
+
+async function firstPreset(presets: PresetStore) {
+  const shelf = await presets.list();
+  const found = shelf.presets.find(({ preset }) => preset.name === firstPresetName) ?? shelf.presets[0];
+  return found.preset;
+}
+
+/** @throws Refusal where the recipe has no such state */
+export function withWork(recipe: Recipe, work: WorkOnEasel): Recipe {
+  const history = recipe.histories.find(({ preset }) => preset === work.preset);
+  if (!history || !stateById(history.states, work.stateId))
+    throw new Refusal('NotFound', 'This photo has no such state.', 'Choose one of its thread.');
+  const laid = {
+    ...recipe,
+    work: { ...recipe.work, preset: work.preset, stateId: work.stateId, changes: {} },
+  };
+  const changed = changeParameters(laid, work.parameters);
+  return work.output ? changeOutput(changed, work.output) : changed;
+}
+
+function isSameWork(one: Recipe, other: Recipe): boolean {
+  return JSON.stringify(one.work) === JSON.stringify(other.work);
+}
+
+function viewOf(entry: Entry): PhotoMemory {
+  const { photoId, recipe, recipePath, access, photo, isKept, remarks, saved } = entry;
+  const { engineVersion: keptBy } = currentState(recipe);
+  const olderEngine = keptBy === engineVersion ? null : { keptBy, today: engineVersion };
+  return { photoId, recipe, recipePath, access, photo, isKept, olderEngine, remarks: [...remarks], saved };
+}

@@ -1,0 +1,31 @@
+import { sentenceOfDifferences } from '../../core/presets/differences.ts';
+import { fullParameters } from '../../core/presets/parametersSchema.ts';
+import { toRoman } from '../../core/presets/roman.ts';
+import type { State } from '../../core/presets/state.ts';
+
+/** What a state changed of the one it follows, in a sentence. */
+export function sentenceOfState(state: State, states: readonly State[]): string {
+  if (state.parent === null) return 'Where this preset began.';
+  const parent = states.find(({ id }) => id === state.parent);
+  if (!parent) return 'It follows a state of another photograph.';
+  const sentence = sentenceOfDifferences(fullParameters(parent.parameters), fullParameters(state.parameters));
+  return sentence === 'Nothing changed.' ? `The same as State ${toRoman(parent.number)}.` : sentence;
+}
+
+/** When it was kept, as people say it. */
+export function timeInWords(time: string, now = new Date()): string {
+  if (time === '') return 'as it comes with Oxgall';
+  const then = new Date(time);
+  const clock = then.toLocaleTimeString('en-GB', { hour: '2-digit', minute: '2-digit' });
+  const days = Math.round((dayOf(now) - dayOf(then)) / 86_400_000);
+  if (days === 0) return `today at ${clock}`;
+  if (days === 1) return `yesterday at ${clock}`;
+  const weekday = then.toLocaleDateString('en-GB', { weekday: 'long' });
+  if (days > 1 && days < 7) return `${weekday} at ${clock}`;
+  const day = then.toLocaleDateString('en-GB', { day: 'numeric', month: 'long', year: 'numeric' });
+  return `${day}, ${clock}`;
+}
+
+function dayOf(date: Date): number {
+  return Date.UTC(date.getFullYear(), date.getMonth(), date.getDate());
+}
