@@ -89,9 +89,10 @@ function drawRules(pdf: Pdf, page: ProofPage): void {
 
 function drawText(pdf: Pdf, { text, style, xPt, baselinePt }: ProofPage['texts'][number], type: ProofType) {
   const { sizePt, colour } = styleTable[style];
-  // Where the typeface draws a box instead of a letter, the letter itself can still be searched and copied.
-  const isWhole = type.hasAll(text, style);
-  if (!isWhole) pdf.markContent('Span', { actual: text });
+  // Said a second time where it could not be searched and copied: the typeface draws a box instead of a letter, or
+  // kerning leaves a page number's gaps so narrow that readers take them for none.
+  const isSaid = style === 'folio' || !type.hasAll(text, style);
+  if (isSaid) pdf.markContent('Span', { actual: text });
   let leftPt = xPt;
   for (const run of type.runs(text, style)) {
     pdf
@@ -101,5 +102,5 @@ function drawText(pdf: Pdf, { text, style, xPt, baselinePt }: ProofPage['texts']
       .text(run.text, leftPt, baselinePt, { lineBreak: false, baseline: 'alphabetic' });
     leftPt += run.widthPt;
   }
-  if (!isWhole) pdf.endMarkedContent();
+  if (isSaid) pdf.endMarkedContent();
 }
