@@ -19,6 +19,8 @@ export interface FrameFigures {
   readonly coherence01: number;
   /** Share of the picture that ink covers. */
   readonly lineCoverage01: number;
+  /** Crispness of the photo's own strong edges: near 1 in focus, ¼ far out of it. */
+  readonly focus: number;
   /** Share of pixels whose gradient of 8-bit luma is below one step. */
   readonly flatShare01: number;
 }
@@ -35,8 +37,9 @@ export const figureTable: Record<
   chroma: { label: 'Chroma', unit: 'C*', digits: 1, leastSpread: 0.7 },
   redGreen: { label: 'Red to green', unit: 'a*', digits: 1, leastSpread: 0.7 },
   yellowBlue: { label: 'Yellow to blue', unit: 'b*', digits: 1, leastSpread: 0.7 },
-  planeMm: { label: 'Plane size', unit: 'mm', digits: 2, leastSpread: 0.05 },
-  coherence01: { label: 'Stroke coherence', unit: '', digits: 3, leastSpread: 0.01 },
-  lineCoverage01: { label: 'Line coverage', unit: '%', digits: 2, leastSpread: 0.003 },
-  flatShare01: { label: 'Flat share', unit: '%', digits: 1, leastSpread: 0.01 },
+  planeMm: { label: 'Plane size', unit: 'mm', digits: 2, leastSpread: 0.1 },
+  coherence01: { label: 'Stroke coherence', unit: '', digits: 3, leastSpread: 0.03 },
+  lineCoverage01: { label: 'Line coverage', unit: '%', digits: 2, leastSpread: 0.004 },
+  focus: { label: 'Focus', unit: '', digits: 2, leastSpread: 0.04 },
+  flatShare01: { label: 'Flat share', unit: '%', digits: 1, leastSpread: 0.02 },
 };

@@ -4,6 +4,12 @@ import { coverageAt } from './inkHistogram.ts';
 import { type Palette, toneFiguresOf } from './palette.ts';
 import type { ToneMap } from './toneMap.ts';
 
+/** What a reduced photo tells of the frame. */
+export interface ColourMeasures {
+  readonly palette: Palette;
+  readonly focus: number;
+}
+
 /** What sample windows of a frame, painted at full resolution, tell of its texture. */
 export interface WindowMeasures {
   /** Noise floor and hold they were painted with. */
@@ -17,7 +23,7 @@ export interface WindowMeasures {
 
 /** The figures of a frame that is painted with a tone map, as its palette and its windows predict them. */
 export function predictedFigures(
-  palette: Palette,
+  { palette, focus }: ColourMeasures,
   toneMap: ToneMap | null,
   windows: WindowMeasures,
   pen: { threshold: number; softness: number },
@@ -34,5 +40,6 @@ export function predictedFigures(
     coherence01: windows.coherence01,
     lineCoverage01: coverageAt(windows.ink, pen.threshold, pen.softness),
     flatShare01: windows.flatShare01,
+    focus,
   };
 }

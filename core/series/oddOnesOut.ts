@@ -80,6 +80,11 @@ const words: Record<FigureKey, { low: string; high: string; remedies: readonly R
     high: 'Much more ink than the rest of the series.',
     remedies: ['matchInk', 'leaveOut'],
   },
+  focus: {
+    low: 'Much softer than the rest of the series: the photo is out of focus.',
+    high: 'Much crisper than the rest of the series.',
+    remedies: ['leaveOut'],
+  },
   flatShare01: {
     low: 'Much less of it is flat paint than in the rest: a busier or noisier photo.',
     high: 'Much more of it is flat paint than in the rest: the photo may be out of focus.',

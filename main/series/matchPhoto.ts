@@ -15,7 +15,7 @@ import { matchTone } from '../../core/series/matchTone.ts';
 import type { Palette } from '../../core/series/palette.ts';
 import type { ToneMap } from '../../core/series/toneMap.ts';
 import type { Engine } from '../engine/engineApi.ts';
-import { FrameWindows, measurePalette } from './measureFrame.ts';
+import { FrameWindows, measureColours } from './measureFrame.ts';
 
 /** What the other frames are matched to: plain data, measured once a run. */
 export interface LeadMeasures {
@@ -51,10 +51,14 @@ export async function measureLead(
   parameters: Parameters,
   { printLongEdgeMm, signal }: MatchOptions,
 ): Promise<LeadMeasures> {
-  const palette = await measurePalette(photo);
+  const colours = await measureColours(photo);
   const painted = withFloor(parameters, noiseFloor);
   const windows = await new FrameWindows(engine, photo, printLongEdgeMm).measure(painted, null, signal);
-  return { palette, windows, figures: predictedFigures(palette, null, windows, penOf(parameters)) };
+  return {
+    palette: colours.palette,
+    windows,
+    figures: predictedFigures(colours, null, windows, penOf(parameters)),
+  };
 }
 
 /**
@@ -73,8 +77,8 @@ export async function matchPhoto(
   options: MatchOptions & { amount01: number; parts?: MatchParts },
 ): Promise<MatchedFrame> {
   const { amount01, parts = allMatchParts, printLongEdgeMm, signal } = options;
-  const palette = await measurePalette(photo);
-  const toneMap = parts.tone ? matchTone(palette, lead.palette, amount01) : null;
+  const colours = await measureColours(photo);
+  const toneMap = parts.tone ? matchTone(colours.palette, lead.palette, amount01) : null;
   const isOn = amount01 > 0;
   const noiseFloor =
     isOn && parts.noise && parameters['body.noiseFloor'] === 'auto' ? lead.windows.noiseFloor : null;
@@ -83,13 +87,13 @@ export async function matchPhoto(
   const matched = parametersWithMatch(parameters, match);
   const first = await frame.measure(matched, toneMap, signal);
   const pen = penOf(parameters);
-  const before = predictedFigures(palette, null, first, pen);
+  const before = predictedFigures(colours, null, first, pen);
   let [windows, hold]: [WindowMeasures, number | null] = [first, null];
   if (isOn && parts.detail && usesHold(parameters))
     ({ windows, hold } = await findHold(frame, first, lead, matched, toneMap, amount01, signal));
   const wanted = before.lineCoverage01 + amount01 * (lead.figures.lineCoverage01 - before.lineCoverage01);
   const threshold = isOn && parts.ink ? thresholdForCoverage(windows.ink, wanted, parameters) : null;
-  const after = predictedFigures(palette, toneMap, windows, {
+  const after = predictedFigures(colours, toneMap, windows, {
     ...pen,
     threshold: threshold ?? pen.threshold,
   });

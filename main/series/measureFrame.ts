@@ -1,9 +1,10 @@
 import { parseLength } from '../../core/parameters/parse.ts';
 import { type Parameters, parameterKeys } from '../../core/parameters/table.ts';
 import type { DecodedPhoto } from '../../core/pixels/photo.ts';
-import type { WindowMeasures } from '../../core/series/frameMeasures.ts';
+import { focusOf } from '../../core/series/focus.ts';
+import type { ColourMeasures, WindowMeasures } from '../../core/series/frameMeasures.ts';
 import { softPen } from '../../core/series/inkHistogram.ts';
-import { type Palette, paletteOf } from '../../core/series/palette.ts';
+import { paletteOf } from '../../core/series/palette.ts';
 import type { ToneMap } from '../../core/series/toneMap.ts';
 import { addWindow, noWindows, textureOf } from '../../core/series/windowFigures.ts';
 import type { Engine } from '../engine/engineApi.ts';
@@ -16,25 +17,34 @@ const paletteEdgePx = 400;
 /** Long edge that texture is judged at, so that frames of different sizes compare. */
 const textureEdgePx = 800;
 
-/** Gathers the colours of a photo, reduced to one print scale. */
-export async function measurePalette(photo: DecodedPhoto): Promise<Palette> {
+/** Gathers the colours of a photo, and how crisp it is, each at a print scale that all frames share. */
+export async function measureColours(photo: DecodedPhoto): Promise<ColourMeasures> {
+  const [few, many] = await Promise.all([reducedTo(photo, paletteEdgePx), reducedTo(photo, textureEdgePx)]);
+  const luma = Float64Array.from({ length: many.widthPx * many.heightPx }, (_, i) => {
+    const [r, g, b] = [many.rgb16[3 * i], many.rgb16[3 * i + 1], many.rgb16[3 * i + 2]];
+    return (0.299 * r + 0.587 * g + 0.114 * b) / 257;
+  });
+  return { palette: paletteOf(few.rgb16), focus: focusOf(luma, many.widthPx, many.heightPx) };
+}
+
+async function reducedTo(photo: DecodedPhoto, longEdgePx: number) {
   const { widthPx: width, heightPx: height, channels, pixels } = photo;
   const isWide = pixels.BYTES_PER_ELEMENT === 2;
   const image = sharp(pixels, { raw: { width, height, channels }, limitInputPixels: false })
     .resize({
-      width: paletteEdgePx,
-      height: paletteEdgePx,
+      width: longEdgePx,
+      height: longEdgePx,
       fit: 'inside',
       withoutEnlargement: true,
       kernel: 'linear',
     })
     .removeAlpha();
-  const reduced = isWide ? image.toColourspace('rgb16').raw({ depth: 'ushort' }) : image.raw();
-  const bytes = await reduced.toBuffer();
-  const samples = isWide
-    ? new Uint16Array(new Uint8Array(bytes).buffer)
-    : Uint16Array.from(bytes, (value) => value * 257);
-  return paletteOf(samples);
+  const raw = isWide ? image.toColourspace('rgb16').raw({ depth: 'ushort' }) : image.raw();
+  const { data, info } = await raw.toBuffer({ resolveWithObject: true });
+  const rgb16 = isWide
+    ? new Uint16Array(new Uint8Array(data).buffer)
+    : Uint16Array.from(data, (value) => value * 257);
+  return { rgb16, widthPx: info.width, heightPx: info.height };
 }
 
 /** The sample windows of a photo, taken once and painted as often as is needed. */

@@ -12,6 +12,7 @@ const usual: FrameFigures = {
   planeMm: 1.2,
   coherence01: 0.6,
   lineCoverage01: 0.03,
+  focus: 0.8,
   flatShare01: 0.8,
 };
 
