@@ -8,6 +8,7 @@ import { chooseStratum, dialogStore, panelStore } from '../state/panelStore.ts';
 import { photoStore } from '../state/photoStore.ts';
 import { changeView, viewStore } from '../state/viewStore.ts';
 import { endComparing, toggleFlicker } from '../states/comparing.ts';
+import { threadCallStore } from '../states/StatesThread.tsx';
 import { keepingStore } from '../states/ThreadRow.tsx';
 
 /** A key that works wherever nothing is being typed. */
@@ -29,9 +30,9 @@ export function toggleSplit(): void {
   else endComparing();
 }
 
-/** The present state, so that the arrow keys go on from it. */
+/** To the present state, so that the arrow keys go on from it. */
 function focusThread(): void {
-  document.querySelector<HTMLElement>('.thread-state.is-present')?.focus();
+  threadCallStore.update((calls) => calls + 1);
 }
 
 export const keyCommands: readonly KeyCommand[] = [

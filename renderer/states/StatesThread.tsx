@@ -7,7 +7,7 @@ import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { returnTo } from '../app/memoryWork.ts';
 import type { Look } from '../state/lookStore.ts';
 import { comparisonStore } from '../state/memoryStore.ts';
-import { useStore } from '../state/store.ts';
+import { createStore, useStore } from '../state/store.ts';
 import { stateDragType } from './comparing.ts';
 import { StateCard } from './StateCard.tsx';
 import { type PlacedState, pitchPx, placeStates, threadWidthPx, xOf } from './threadLayout.ts';
@@ -20,6 +20,9 @@ interface ThreadProps {
   hasUnkeptWork: boolean;
 }
 
+/** Counts the calls of the key that brings the keyboard to the present state. */
+export const threadCallStore = createStore(0);
+
 const heightPx = 44;
 const lineYPx = 26;
 
@@ -29,6 +32,8 @@ export function StatesThread({ history, look, photo, hasUnkeptWork }: ThreadProp
   const hold = useRef<HTMLDivElement>(null);
   const [shown, setShown] = useState({ leftPx: 0, widthPx: 800 });
   const [pointedId, setPointedId] = useState<string | null>(null);
+  /** The state that the keyboard goes to. */
+  const wanted = useRef<string | null>(null);
   const comparison = useStore(comparisonStore);
   const presentIndex = states.findIndex(({ id }) => id === look.stateId);
   useShown(hold, setShown);
@@ -43,10 +48,23 @@ export function StatesThread({ history, look, photo, hasUnkeptWork }: ThreadProp
     const next = Math.min(states.length - 1, Math.max(0, index));
     scrollTo(hold.current, next);
     setPointedId(states[next].id);
-    requestAnimationFrame(() =>
-      hold.current?.querySelector<HTMLElement>(`[data-state="${states[next].id}"]`)?.focus(),
-    );
+    wanted.current = states[next].id;
   };
+  const called = useStore(threadCallStore);
+  const focusPresent = useRef(() => {});
+  focusPresent.current = () => focus(presentIndex);
+  const answered = useRef(called);
+  useEffect(() => {
+    if (called !== answered.current) focusPresent.current();
+    answered.current = called;
+  }, [called]);
+  // A state that was out of view is there only after the next drawing.
+  useEffect(() => {
+    const button = hold.current?.querySelector<HTMLElement>(`[data-state="${wanted.current}"]`);
+    if (!button) return;
+    wanted.current = null;
+    button.focus();
+  });
   const onKeyDown = (event: KeyboardEvent) => {
     const from = pointedIndex >= 0 ? pointedIndex : presentIndex;
     const next: Record<string, number> = {
@@ -103,7 +121,7 @@ export function StatesThread({ history, look, photo, hasUnkeptWork }: ThreadProp
                   .join(' ')}
                 style={{ left: `${xPx}px` }}
                 data-state={state.id}
-                tabIndex={isPresent ? 0 : -1}
+                tabIndex={state.id === (pointedId ?? look.stateId) ? 0 : -1}
                 aria-current={isPresent ? 'true' : undefined}
                 aria-label={nameOf(state, isPresent, delivered.has(state.id))}
                 draggable

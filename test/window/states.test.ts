@@ -200,7 +200,8 @@ describe.skipIf(!chromiumFound.path)('the States thread in a real window', () =>
     await own.waitFor();
     await page.getByLabel('Find').fill('odalys');
     await expect.poll(() => page.locator('.preset').count()).toBe(1);
-    await own.getByRole('radio').check({ force: true });
+    await own.click();
+    await expect.poll(() => own.getByRole('radio').isChecked()).toBe(true);
     await page.getByRole('button', { name: 'Rename…' }).click();
     await page.getByLabel('New name').fill('Odalys at dawn');
     await page.keyboard.press('Enter');
@@ -282,6 +283,7 @@ describe.skipIf(!chromiumFound.path)('the States thread in a real window', () =>
     const median = frames.sort((a, b) => a - b)[Math.floor(frames.length / 2)];
     expect(median).toBeLessThan(process.env.OXGALL_STRICT ? 18 : 60);
     await page.keyboard.press('t');
+    await page.locator('.thread-state.is-present:focus').waitFor();
     await page.keyboard.press('End');
     await stateButton(page, 'D').waitFor();
     await close(window);
