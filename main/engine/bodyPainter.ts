@@ -30,11 +30,6 @@ export interface BodyOptions {
   onProgress?: (fraction01: number) => void;
 }
 
-export interface BodyRowsOptions extends BodyOptions {
-  /** Sliding rows are painted in multiples of this, even; exactly those that are asked for where it is null. */
-  chunkRows: number | null;
-}
-
 /** One pass over a region of a level. */
 export interface Pass {
   source: SourcePicture;
@@ -80,7 +75,7 @@ export class BodyPainter {
     plan: BodyPlan,
     level: number,
     region: Rect,
-    options: BodyRowsOptions,
+    options: BodyOptions,
   ): Promise<BodyRows> {
     const times: PassTimes = { grainMs: 0, totalMs: 0 };
     const levelCount = Math.min(plan.levelCount, photo.levels.length - level);
@@ -109,7 +104,6 @@ export class BodyPainter {
         depths: Math.min(firstWhole, levelCount),
         whole,
         coatFloorFactor,
-        chunkRows: options.chunkRows,
         heap: this.heap,
         run,
       });

@@ -25,7 +25,6 @@ interface PassSettings {
   /** A coat takes its orientation from rows of the coarser level that the first pass has asked for. */
   orientation: TensorPlanes | null;
   tensorOut: TensorPlanes | null;
-  chunkRows: number | null;
   run: (pass: Pass) => Promise<void>;
 }
 
@@ -38,7 +37,7 @@ class PaintedRows extends SlidingRows {
     readonly settings: PassSettings,
   ) {
     const rowPixels = settings.kind === 'body' ? region.widthPx : settings.size.widthPx;
-    super(heap, rowPixels * (settings.kind === 'body' ? 6 : 16), region, settings.chunkRows);
+    super(heap, rowPixels * (settings.kind === 'body' ? 6 : 16), region);
   }
 
   get picture(): SourcePicture {
@@ -136,7 +135,6 @@ export interface BodyStack {
   /** The first coarser one that is. */
   whole: CoarseLevel | null;
   coatFloorFactor: number;
-  chunkRows: number | null;
   heap: SharedHeap;
   run(pass: Pass, isFinest: boolean): Promise<void>;
 }
@@ -169,7 +167,6 @@ export async function stackRows(to: BodyRows, stack: BodyStack): Promise<void> {
       coarse,
       orientation: coarse?.tensor ?? null,
       tensorOut: null,
-      chunkRows: stack.chunkRows,
       run: (pass) => stack.run(pass, true),
     }),
   );
@@ -204,7 +201,6 @@ async function stackLevel(
         coarse: isFirst ? coarse : null,
         orientation: coarse?.tensor ?? null,
         tensorOut: pass === plan.coats ? tensor : null,
-        chunkRows: stack.chunkRows,
         run: (painted) => stack.run(painted, false),
       }),
     );

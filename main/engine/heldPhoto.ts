@@ -88,7 +88,6 @@ export class HeldPhoto implements EnginePhoto, LevelSource {
     return new HeldPhoto(source, source, heap, wholeLevelPixels);
   }
 
-
   /** Of the pixels that are painted: 2 for a photo whose tones are mapped. */
   get bytesPerSample(): 1 | 2 {
     return this.#bytesPerSample;

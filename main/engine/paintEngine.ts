@@ -29,8 +29,11 @@ import { WorkerPool } from './workerPool.ts';
 
 /** Levels of more pixels are not kept whole, 16 bytes a pixel, but made again by each painting that reads them. */
 const defaultWholeLevelPixels = 9_000_000;
-/** Of a band: its halos are kept from one to the next, so it need not be large. */
-const bandPixels = 6_000_000;
+/**
+ * Rows of a band: two tiles at the finest level, half a tile at the third. Halos are kept from one band to the next,
+ * so a higher one would gain little.
+ */
+const defaultBandRows = 512;
 /** Tiles of half a thousand pixels: their halo costs little, their rows fit the second-level cache. */
 const defaultTileSize: TileSize = { widthPx: 512, heightPx: 256 };
 
@@ -62,7 +65,6 @@ class PaintEngine implements Engine {
   readonly #kernels: Kernels;
   readonly #tables: TableStore;
   readonly #wholeLevelPixels: number;
-  readonly #slidingRows: number;
   #paintings = 0;
 
   constructor(
@@ -74,7 +76,6 @@ class PaintEngine implements Engine {
     this.#kernels = kernels;
     this.#tables = new TableStore(pool, heap, kernels);
     this.#wholeLevelPixels = wholeLevelPixels;
-    this.#slidingRows = tileSize.heightPx;
     this.#painters = {
       pool,
       heap,
@@ -120,7 +121,7 @@ class PaintEngine implements Engine {
     const { level } = where;
     const size = held.levels[level];
     const region = insideOrThrow(where.region ?? { xPx: 0, yPx: 0, ...size }, size);
-    const order = { held, parameters, level, region, wantsAll: true, chunkRows: null };
+    const order = { held, parameters, level, region, wantsAll: true };
     return this.#painting(held, order, options, async (painting) => {
       painting.start();
       const { body, line, relief } = await painting.layers(region.yPx, region.yPx + region.heightPx);
@@ -145,7 +146,7 @@ class PaintEngine implements Engine {
   ): Promise<ComposedPicture> {
     const held = photo as HeldPhoto;
     const { heap } = this.#painters;
-    return this.#painting(held, wholePicture(held, parameters, null), options, async (painting) => {
+    return this.#painting(held, wholePicture(held, parameters), options, async (painting) => {
       const composing = await BandComposer.begin(painting, options.depth ?? held.depth);
       const out = heap.allocate(composing.bytesOf(held.heightPx));
       try {
@@ -165,7 +166,7 @@ class PaintEngine implements Engine {
     photo: EnginePhoto,
     parameters: Parameters,
     receive: (band: PaintedBand) => Promise<void> | void,
-    { onProgress, depth, bandRows = this.#bandRows(photo.widthPx), ...options }: BandOptions = {},
+    { onProgress, depth, bandRows = defaultBandRows, ...options }: BandOptions = {},
   ): Promise<StageTimes> {
     const held = photo as HeldPhoto;
     const { heap } = this.#painters;
@@ -173,38 +174,29 @@ class PaintEngine implements Engine {
     // Before the first band the coarse levels tell how far the whole is; then the bands do.
     const before = (fraction01: number) => hasBegun || onProgress?.(fraction01);
     const inner: PaintOptions = { ...options, onProgress: onProgress && before };
-    return this.#painting(
-      held,
-      wholePicture(held, parameters, this.#slidingRows),
-      inner,
-      async (painting) => {
-        hasBegun = true;
-        const composing = await BandComposer.begin(painting, depth ?? held.depth);
-        const out = heap.allocate(composing.bytesOf(Math.min(bandRows, held.heightPx)));
-        try {
-          for (let top = 0; top < held.heightPx; top += bandRows) {
-            const rowCount = Math.min(bandRows, held.heightPx - top);
-            await composing.compose(top, top + rowCount, out);
-            await receive({ topRow: top, rowCount, pixels: composing.view(out, rowCount) });
-            options.signal?.throwIfAborted();
-            const done = (top + rowCount) / held.heightPx;
-            onProgress?.(painting.coarseShare01 + (1 - painting.coarseShare01) * done);
-          }
-        } finally {
-          composing.close();
-          heap.free(out);
+    return this.#painting(held, wholePicture(held, parameters), inner, async (painting) => {
+      hasBegun = true;
+      const composing = await BandComposer.begin(painting, depth ?? held.depth);
+      const out = heap.allocate(composing.bytesOf(Math.min(bandRows, held.heightPx)));
+      try {
+        for (let top = 0; top < held.heightPx; top += bandRows) {
+          const rowCount = Math.min(bandRows, held.heightPx - top);
+          await composing.compose(top, top + rowCount, out);
+          await receive({ topRow: top, rowCount, pixels: composing.view(out, rowCount) });
+          options.signal?.throwIfAborted();
+          const done = (top + rowCount) / held.heightPx;
+          onProgress?.(painting.coarseShare01 + (1 - painting.coarseShare01) * done);
         }
-        return painting.account();
-      },
-    );
+      } finally {
+        composing.close();
+        heap.free(out);
+      }
+      return painting.account();
+    });
   }
 
   async close(): Promise<void> {
     await this.#painters.pool.close();
-  }
-
-  #bandRows(widthPx: number): number {
-    return Math.max(1, Math.round(bandPixels / widthPx / this.#slidingRows)) * this.#slidingRows;
   }
 
   /** Runs a painting and gives back what it held at the end, whatever happens. */
@@ -229,9 +221,9 @@ class PaintEngine implements Engine {
   }
 }
 
-function wholePicture(held: HeldPhoto, parameters: Parameters, chunkRows: number | null): StrataOrder {
+function wholePicture(held: HeldPhoto, parameters: Parameters): StrataOrder {
   const region = { xPx: 0, yPx: 0, widthPx: held.widthPx, heightPx: held.heightPx };
-  return { held, parameters, level: 0, region, wantsAll: false, chunkRows };
+  return { held, parameters, level: 0, region, wantsAll: false };
 }
 
 function croppedBody(buffer: ArrayBufferLike, body: BodyWindow, region: Rect): Uint16Array {

@@ -39,8 +39,9 @@ export class RowWindow {
     const rows = Math.max(bottom, this.bottom) - keptTop;
     const before = this.#pointer;
     if (rows > this.#capacityRows) {
-      this.#pointer = this.heap.allocate(rows * this.rowBytes);
-      this.#capacityRows = rows;
+      // Whoever asks for the first time has no halo above yet; growing later would leave a gap in the memory.
+      this.#capacityRows = rows + (before === 0 ? 0 : rows >> 3);
+      this.#pointer = this.heap.allocate(this.#capacityRows * this.rowBytes);
     }
     if (keptBytes > 0 && keptAt !== this.#pointer)
       new Uint8Array(this.heap.memory.buffer).copyWithin(this.#pointer, keptAt, keptAt + keptBytes);

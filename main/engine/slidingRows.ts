@@ -39,7 +39,7 @@ export abstract class SlidingRows implements PictureRows {
     heap: SharedHeap,
     rowBytes: number,
     readonly region: Rect,
-    readonly chunkRows: number | null,
+    readonly chunkRows: number | null = null,
   ) {
     this.window = new RowWindow(heap, rowBytes);
   }
@@ -76,15 +76,16 @@ export abstract class SlidingRows implements PictureRows {
     return Math.max(this.region.yPx, row & ~1);
   }
 
-  /** A chunk at a time, so that what this is made from need not be at hand for more than a chunk. */
+  /** By chunks, where there are any, so that what this is made from need not be at hand for more than a chunk. */
   async #reach(to: number): Promise<void> {
     const { chunkRows, region, window } = this;
     const wanted = chunkRows ? Math.ceil(to / chunkRows) * chunkRows : evenUp(to);
     const last = Math.min(region.yPx + region.heightPx, wanted);
+    if (last <= window.bottom) return;
+    window.slide(this.firstRow, last);
     while (window.bottom < last) {
-      const top = Math.max(window.bottom, this.firstRow);
+      const top = window.bottom;
       const bottom = chunkRows ? Math.min(last, (Math.floor(top / chunkRows) + 1) * chunkRows) : last;
-      window.slide(this.firstRow, bottom);
       await this.produce(top, bottom);
       window.bottom = bottom;
     }

@@ -38,8 +38,6 @@ export interface StrataOrder {
    * Also the body and the line that the parameters' strengths hide: a preview may show them later without asking.
    */
   wantsAll: boolean;
-  /** Sliding rows are painted in multiples of this, even; exactly those that are asked for where it is null. */
-  chunkRows: number | null;
 }
 
 /** The layers of some rows; good until the next rows are painted. */
@@ -110,7 +108,7 @@ export class StrataPainting {
   }
 
   async #begin(): Promise<void> {
-    const { held, parameters, level, region, wantsAll, chunkRows } = this.order;
+    const { held, parameters, level, region, wantsAll } = this.order;
     const { signal } = this.options;
     const wantsBody = wantsAll || parameters['body.strength'] > 0 || this.#haloPx > 0;
     const startMs = performance.now();
@@ -123,7 +121,6 @@ export class StrataPainting {
       const around = grownInside(region, this.#haloPx, held.levels[level]);
       this.#body = await this.painters.body.rows(held, this.#photoRows, plan, level, around, {
         signal,
-        chunkRows,
         onProgress: this.#stage('body'),
       });
     }
