@@ -1,13 +1,21 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { DecodedPhoto, Strata } from '../../core/pixels/photo.ts';
-import type { Engine } from '../engine/engineApi.ts';
+import type { Engine, EnginePhoto } from '../engine/engineApi.ts';
 import type { AnyPictureFile, PhotoFile } from '../files/photoFile.ts';
+import type { SpilledPhoto } from '../files/spillPhoto.ts';
+import type { Stores } from '../store/openStores.ts';
 import type { ChooseInput, DemoSeries, DesktopCapabilities } from './api/hostCommands.ts';
-import type { Stores } from './photoMemories.ts';
 
 /** Reads and writes pictures. */
 export interface HostFiles {
-  readPhoto(path: string, options?: { signal?: AbortSignal }): Promise<PhotoFile>;
+  /** A very large photo is unpacked to a temporary file. */
+  readPhoto(path: string, options?: { signal?: AbortSignal }): Promise<PhotoFile | SpilledPhoto>;
+  /** Gives a photo to the engine, which sees to its pixels from then on, also when this fails. */
+  holdPhoto(
+    engine: Engine | Promise<Engine>,
+    photo: PhotoFile | SpilledPhoto,
+    options?: { signal?: AbortSignal },
+  ): Promise<EnginePhoto>;
   /** Writes `path`, which must not appear half-written whatever happens. */
   writePicture(path: string, picture: AnyPictureFile, options?: { signal?: AbortSignal }): Promise<unknown>;
   /** Size and kind without decoding; null where only decoding can tell. */

@@ -1,9 +1,9 @@
 import { availableParallelism } from 'node:os';
 import type { Engine } from '../engine/engineApi.ts';
-import { dataFolder } from './dataFolder.ts';
+import { dataFolder } from '../store/dataFolder.ts';
+import type { Stores } from '../store/openStores.ts';
 import { findDemo } from './demoSeries.ts';
 import type { ComposeSmall, Desktop, HostFiles, HostParts } from './hostParts.ts';
-import type { Stores } from './photoMemories.ts';
 
 /**
  * The parts of the program as it is installed. Engine, image library and kernels are imported when they are
@@ -26,15 +26,19 @@ export function installedParts(options: {
     demo: findDemo(dataFolder()),
     loadEngine,
     loadFiles: once<HostFiles>(async () => {
-      const [{ readPhoto }, { writePicture }, quick] = await Promise.all([
-        import('../files/readPhoto.ts'),
-        import('../files/writePicture.ts'),
-        import('./quickPicture.ts'),
-      ]);
-      return { readPhoto, writePicture, readFacts: quick.readFacts, readQuick: quick.readQuick };
+      const [{ readAnyPhoto, holdPhoto }, { writePicture }, quick, { removeAbandonedSpills }] =
+        await Promise.all([
+          import('../painting/holdPhoto.ts'),
+          import('../files/writePicture.ts'),
+          import('./quickPicture.ts'),
+          import('../files/spillFile.ts'),
+        ]);
+      await removeAbandonedSpills();
+      const { readFacts, readQuick } = quick;
+      return { readPhoto: readAnyPhoto, holdPhoto, writePicture, readFacts, readQuick };
     }),
     loadStores: once<Stores>(async () => {
-      const { openStores } = await import('./openStores.ts');
+      const { openStores } = await import('../store/openStores.ts');
       return openStores(dataFolder());
     }),
     loadComposeSmall: once<ComposeSmall>(async () => (await import('./composeSmall.ts')).loadComposeSmall()),

@@ -167,10 +167,9 @@ export class OpenPhoto {
 
   async #decodeWhole(files: HostFiles): Promise<WholePhoto> {
     const signal = this.closingSignal;
-    const { pixels, ...file } = await files.readPhoto(this.path, { signal });
-    signal.throwIfAborted();
-    const engine = await this.parts.loadEngine();
-    const enginePhoto = await engine.open({ ...file, pixels }, { signal });
+    const photo = await files.readPhoto(this.path, { signal });
+    const enginePhoto = await files.holdPhoto(this.parts.loadEngine(), photo, { signal });
+    const { pixels: _, ...file } = photo;
     this.#whole = { enginePhoto, file };
     // The quick picture stays with the paintings that use it and goes when they end.
     const quick = this.#quick;

@@ -15,24 +15,15 @@ import {
 } from '../../core/recipes/recipeHistory.ts';
 import { DelayedSaver } from '../store/delayedSaver.ts';
 import { findMovedPhotos, reunite } from '../store/movedPhotos.ts';
+import type { Stores } from '../store/openStores.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { PresetStore } from '../store/presetStore.ts';
 import { recipeBeside } from '../store/recipePlaces.ts';
-import type { RecipeStore } from '../store/recipeStore.ts';
 import type { SavedRecipe } from '../store/storeResults.ts';
 import type { FileVersion } from '../store/versionedFile.ts';
 import type { PhotoMemory, WorkOnEasel } from './api/memoryCommands.ts';
 import type { EventHub } from './eventHub.ts';
 import { Refusal } from './refusal.ts';
-
-/** Where recipes and presets are kept. */
-export interface Stores {
-  recipes: RecipeStore;
-  presets: PresetStore;
-  dataFolder: string;
-  /** Recipes of photos whose folders cannot be written. */
-  mirrorFolder: string;
-}
 
 /** A file that was written, with what it was painted from. */
 export interface NotedDelivery {

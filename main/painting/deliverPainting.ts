@@ -1,10 +1,9 @@
-import { createHash } from 'node:crypto';
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { Engine, EnginePhoto, StageTimes } from '../engine/engineApi.ts';
 import { assertSizeFits, outputDepth } from '../files/outputFormat.ts';
 import type { AnyPictureFile, OutputFormat, PhotoFile } from '../files/photoFile.ts';
-import type { SpilledPixels } from '../files/spilledPixels.ts';
-import { paintSpilled } from './paintSpilled.ts';
+import { paintPixels } from './paintPixels.ts';
+import { assertRoomToPaint } from './room.ts';
 
 /** A photo that was read and is held by an engine; its own pixels are not needed any more. */
 export interface HeldPhotoFile {
@@ -77,7 +76,16 @@ export async function deliverPainting(
   const depth = outputDepth(order.format, order.depth ?? file.depth);
   // Found out before the painting: of a very large picture that takes minutes.
   assertSizeFits(order.out, file, order.format);
-  const painted = await paint(engine, enginePhoto, { ...order, depth }, { signal, onProgress });
+  if (enginePhoto.isReadByRows) await assertRoomToPaint(order.out, { ...file, depth, format: order.format });
+  const painted = await paintPixels(
+    engine,
+    enginePhoto,
+    { ...order, depth },
+    {
+      signal,
+      onProgress: onProgress && ((fraction01, stage) => onProgress(paintShare01 * fraction01, stage)),
+    },
+  );
   try {
     signal?.throwIfAborted();
     onProgress?.(paintShare01, 'writing');
@@ -102,56 +110,9 @@ export async function deliverPainting(
   }
 }
 
-interface PaintedPixels {
-  pixels: Uint8Array | Uint16Array | SpilledPixels;
-  pixelsSha256: string;
-  times: StageTimes;
-  release(): void;
-}
-
-/** Paints to memory, or to a file where the photo itself is in one. */
-async function paint(
-  engine: Engine,
-  photo: EnginePhoto,
-  { parameters, depth, printLongEdgeMm }: PaintingOrder & { depth: 8 | 16 },
-  { signal, onProgress }: Pick<DeliveryOptions, 'signal' | 'onProgress'>,
-): Promise<PaintedPixels> {
-  if (photo.isReadByRows) {
-    const report = onProgress && ((fraction01: number) => onProgress(paintShare01 * fraction01, 'body'));
-    const options = { depth, printLongEdgeMm, signal, onProgress: report };
-    const painted = await paintSpilled(engine, photo, parameters, options);
-    return { ...painted, release: () => painted.pixels.discard() };
-  }
-  const painted = await engine.paintPicture(photo, parameters, {
-    depth,
-    printLongEdgeMm,
-    signal,
-    onProgress:
-      onProgress && ((fraction01, stage) => onProgress(paintShare01 * wholeOf(stage, fraction01), stage)),
-  });
-  const pixelsSha256 = createHash('sha256').update(bytesOf(painted.pixels)).digest('hex');
-  return { ...painted, pixelsSha256 };
-}
-
 async function placeAsNamed(out: string, write: (path: string) => Promise<unknown>): Promise<string> {
   await write(out);
   return out;
-}
-
-/** How far the whole painting is when a stage is at `fraction01`. */
-function wholeOf(stage: 'grain' | 'body' | 'line' | 'relief' | 'compose', fraction01: number): number {
-  const [from, to] = {
-    grain: [0, 0.05],
-    body: [0.05, 0.75],
-    line: [0.75, 0.9],
-    relief: [0.9, 0.97],
-    compose: [0.97, 1],
-  }[stage];
-  return from + (to - from) * fraction01;
-}
-
-function bytesOf(pixels: Uint8Array | Uint16Array): Uint8Array {
-  return new Uint8Array(pixels.buffer, pixels.byteOffset, pixels.byteLength);
 }
 
 function hasRemarks(written: unknown): written is { remarks: string[] } {

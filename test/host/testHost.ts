@@ -8,8 +8,9 @@ import { writePicture } from '../../main/files/writePicture.ts';
 import type { HostCommands } from '../../main/host/api/hostCommands.ts';
 import { createHost, type Host } from '../../main/host/host.ts';
 import type { HostParts } from '../../main/host/hostParts.ts';
-import { openStores } from '../../main/host/openStores.ts';
 import { readFacts, readQuick } from '../../main/host/quickPicture.ts';
+import { holdPhoto } from '../../main/painting/holdPhoto.ts';
+import { openStores } from '../../main/store/openStores.ts';
 import { BlurEngine } from './blurEngine.ts';
 
 export const base = 'http://127.0.0.1:1';
@@ -38,7 +39,7 @@ export async function makeTestHost(changes: Partial<HostParts> = {}): Promise<Te
     appVersion: '0.0.0-test',
     workers: 1,
     loadEngine: async () => engine,
-    loadFiles: async () => ({ readPhoto, writePicture, readFacts, readQuick }),
+    loadFiles: async () => ({ readPhoto, holdPhoto, writePicture, readFacts, readQuick }),
     loadStores: async () => openStores(join(folder, 'data')),
     loadComposeSmall: async () => async (strata) => {
       const rgba = new Uint8Array(strata.widthPx * strata.heightPx * 4).fill(255);

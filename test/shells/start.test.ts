@@ -2,10 +2,10 @@ import { chmod, mkdir, mkdtemp, rm, utimes, writeFile } from 'node:fs/promises';
 import { tmpdir } from 'node:os';
 import { dirname, join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
-import { dataFolder } from '../../main/host/dataFolder.ts';
 import { chromiumArguments } from '../../main/shells/chromiumWindow.ts';
 import { findChromium } from '../../main/shells/findChromium.ts';
 import { readStartArguments } from '../../main/shells/startArguments.ts';
+import { dataFolder } from '../../main/store/dataFolder.ts';
 
 interface Start {
   staleSteps(folder: string): string[];

@@ -1,0 +1,37 @@
+import { z } from 'zod';
+import { seriesSettingsSchema } from '../../../core/series/seriesDocument.ts';
+import { path } from './inputParts.ts';
+import type { SeriesCommands } from './seriesCommands.ts';
+
+const seriesId = z.string().min(1).max(64);
+const frameId = z.string().min(1).max(1024);
+
+/** What each command of the series takes; see the other commands. */
+export const seriesSchemas = {
+  openSeries: z.strictObject({ path }),
+  readSeries: z.strictObject({ seriesId }),
+  closeSeries: z.strictObject({ seriesId }),
+  changeSeries: z.strictObject({ seriesId, change: seriesSettingsSchema.partial() }),
+  paintFramePicture: z.strictObject({
+    seriesId,
+    frameId,
+    /** About how long the long edge shall be. */
+    longEdgePx: z.int().min(16).max(1600),
+    rough: z.boolean(),
+  }),
+  makeProof: z.strictObject({
+    seriesId,
+    folder: path,
+    name: z.string().min(1).max(200),
+    format: z.enum(['pdf', 'png']),
+    paper: z.string().min(1).max(40),
+    landscape: z.boolean(),
+    columns: z.int().min(1).max(24),
+    title: z.string().max(200),
+  }),
+  listRecentSeries: z.strictObject({}),
+  forgetRecentSeries: z.strictObject({ path }),
+} as const satisfies { [Name in keyof SeriesCommands]: z.ZodType<SeriesCommands[Name]['input']> };
+
+/** Commands that carry the settings of hundreds of frames. */
+export const carriesSettings: ReadonlySet<string> = new Set(['changeSeries']);
