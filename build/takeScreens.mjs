@@ -1,8 +1,8 @@
 // Writes pictures of the screens to artefacts/screens, for looking at. `node build/takeScreens.mjs [photo]`
 import { spawn } from 'node:child_process';
-import { access, mkdir, mkdtemp, rm } from 'node:fs/promises';
+import { access, copyFile, mkdir, mkdtemp, rm } from 'node:fs/promises';
 import { tmpdir } from 'node:os';
-import { dirname, join, resolve } from 'node:path';
+import { basename, dirname, join, resolve } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { chromium } from 'playwright-core';
 
@@ -64,6 +64,7 @@ async function takeEasel(page, keep) {
   await page.keyboard.press('c');
   await keep('easel-compare');
   await page.keyboard.press('c');
+  await takeStates(page, keep);
   await page.keyboard.press('1');
   await settled(page);
   await page.getByText('Finer points').click();
@@ -84,6 +85,73 @@ async function takeEasel(page, keep) {
   await keep('open');
 }
 
+async function typeValue(page, name, value) {
+  const field = page.getByRole('textbox', { name: `${name}, typed` });
+  await field.fill(value);
+  await field.press('Enter');
+  // Keys are letters again.
+  await field.blur();
+}
+
+async function keepState(page, note) {
+  await page.keyboard.press('k');
+  await page.keyboard.type(note);
+  await page.keyboard.press('Enter');
+  await page.getByRole('button', { name: 'Keep as new state' }).waitFor();
+}
+
+/** The thread with a few states, a branch and a delivery; one state's card; two states compared. */
+async function takeStates(page, keep) {
+  const card = page.locator('.state-card');
+  const point = async (numeral) => {
+    await page.getByRole('button', { name: new RegExp(`^State ${numeral}(,|$)`) }).hover();
+    await card.locator('canvas.is-there').waitFor();
+  };
+  await page.keyboard.press('b');
+  await typeValue(page, 'Brush', '6');
+  await typeValue(page, 'Hold', '0.1');
+  await keepState(page, 'broader, for the cover');
+  await page.keyboard.press('i');
+  await typeValue(page, 'Ink width', '0.9');
+  await keepState(page, 'more ink on the heron');
+  await settled(page);
+  await page.keyboard.press('Control+s');
+  await page.getByRole('dialog').getByRole('button', { name: 'Save', exact: true }).click();
+  await page.getByRole('heading', { name: 'Saved' }).waitFor({ timeout: 120_000 });
+  await page.keyboard.press('Escape');
+  await point('I');
+  await card.getByRole('button', { name: 'Return to I' }).click();
+  await page.getByRole('button', { name: /^State IV/ }).waitFor();
+  await point('IV');
+  await card.getByRole('textbox', { name: 'Branch' }).fill('for the cover');
+  await card.getByRole('textbox', { name: 'Branch' }).press('Enter');
+  await page.mouse.move(400, 500);
+  await page.keyboard.press('b');
+  await typeValue(page, 'Hold', '0.5');
+  await page.keyboard.press('k');
+  await keep('states-keeping');
+  await page.keyboard.press('Escape');
+  await point('III');
+  await keep('states-card');
+  await card.getByRole('combobox').selectOption({ index: 2 });
+  await page.mouse.move(400, 500);
+  await page.locator('.compare-table').waitFor();
+  await settled(page);
+  await keep('states-compare');
+  await page.keyboard.press('Escape');
+  await page.keyboard.press('p');
+  await page.getByRole('button', { name: 'Make a preset of this…' }).click();
+  await page.keyboard.type('Heron at dusk');
+  await page.keyboard.press('Enter');
+  await page.locator('.preset', { hasText: 'Heron at dusk' }).click();
+  await page.getByRole('button', { name: 'Rename…' }).click();
+  await keep('presets-own');
+  await page.keyboard.press('Control+z');
+  await page.keyboard.press('Control+z');
+  await page.keyboard.press('b');
+  await settled(page);
+}
+
 async function takeFirst(page, keep, withDemo) {
   await page.locator('button:enabled', { hasText: 'Open a photograph…' }).waitFor();
   await keep('first');
@@ -102,7 +170,10 @@ async function main() {
   });
   for (const size of sizes) {
     const data = await mkdtemp(join(tmpdir(), 'oxgall-screens-'));
-    for (const opened of photo ? [photo, null] : [null]) {
+    // A recipe is written beside the photo: a copy keeps the original's folder as it was.
+    const copied = photo && join(data, basename(photo));
+    if (copied) await copyFile(photo, copied);
+    for (const opened of copied ? [copied, null] : [null]) {
       const { program, address } = await startProgram(data, opened);
       const page = await browser.newPage({ viewport: size });
       page.on(
