@@ -110,6 +110,9 @@ export interface PhotoSize {
   heightPx: number;
   format: PhotoFormat;
   depth: 8 | 16;
+  hasAlpha: boolean;
+  /** Not stored upright. */
+  isTurned: boolean;
 }
 
 /** Reads how large a photo is, upright, without decoding it. */
@@ -125,5 +128,7 @@ export async function readPhotoSize(
     heightPx: turned ? header.storedWidthPx : header.storedHeightPx,
     format: header.format,
     depth: header.depth,
+    hasAlpha: header.metadata.hasAlpha,
+    isTurned: header.orientation !== 1,
   };
 }

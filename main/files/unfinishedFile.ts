@@ -152,13 +152,13 @@ export function discardUnfinished(): void {
   for (const file of [...underWay]) file.discard();
 }
 
-/** Removes temporary files in a folder whose writer was killed. Those of other machines are left alone. */
+/** Removes temporary files and folders in a folder whose writer was killed. Those of other machines are left alone. */
 export async function removeAbandoned(folder: string): Promise<void> {
   const names = await readdir(folder).catch(() => []);
   for (const name of names) {
     const match = namePattern.exec(name);
     if (match && match[1] === machine && !isRunning(Number(match[2])))
-      await rm(join(folder, name), { force: true }).catch(() => {});
+      await rm(join(folder, name), { force: true, recursive: true }).catch(() => {});
   }
 }
 
@@ -205,7 +205,7 @@ async function renameOver(from: string, to: string): Promise<void> {
 }
 
 /** Without this the new name may be lost in a power cut. Windows cannot open folders and needs it not. */
-async function flushFolder(folder: string): Promise<void> {
+export async function flushFolder(folder: string): Promise<void> {
   if (process.platform === 'win32') return;
   const handle = await open(folder, 'r');
   try {

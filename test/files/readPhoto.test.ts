@@ -194,7 +194,7 @@ describe('odd but valid', () => {
   });
 
   it('the size alone', async () => {
-    expect(await readPhotoSize(photographs.dustBowlHome)).toEqual({
+    expect(await readPhotoSize(photographs.dustBowlHome)).toMatchObject({
       widthPx: 1024,
       heightPx: 788,
       format: 'jpeg',
