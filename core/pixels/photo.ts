@@ -31,3 +31,15 @@ export interface Strata {
   /** Null where the strength is 0: nothing was lit. */
   relief: Uint8Array | null;
 }
+
+/** Light of a flat surface in a relief stratum. */
+export const flatRelief = 127;
+
+/** Rows of the layers of a picture, as in `Strata`; a stratum is null where its strength is 0. */
+export interface StrataRows {
+  ground: Uint8Array | Uint16Array;
+  groundChannels: 3 | 4;
+  body: Uint16Array | null;
+  line: Uint8Array | null;
+  relief: Uint8Array | null;
+}

@@ -1,5 +1,6 @@
 import { blendModeNumber } from '../../core/composition/blendModes.ts';
 import { compositionSettingsBytes, writeCompositionSettings } from '../../core/composition/compose.ts';
+import type { StrataRows } from '../../core/pixels/photo.ts';
 import { rowGrid } from './regions.ts';
 import type { RowReader } from './slidingRows.ts';
 import type { StrataPainting } from './strataPainting.ts';
@@ -7,12 +8,21 @@ import type { StrataPainting } from './strataPainting.ts';
 /** Rows composed at a time. */
 const composeRows = 64;
 
+/** Where the strata of the rows composed last lie; 0 for none. */
+interface ComposedFrom {
+  ground: number;
+  body: number;
+  line: number;
+  relief: number;
+}
+
 /** Paints and composes rows of a whole picture, from top to bottom. */
 export class BandComposer {
   readonly #painting: StrataPainting;
   readonly #ground: RowReader;
   readonly #settings: number;
   readonly #bytesPerSample: 1 | 2;
+  #from: ComposedFrom = { ground: 0, body: 0, line: 0, relief: 0 };
 
   private constructor(painting: StrataPainting, ground: RowReader, depth: 8 | 16) {
     const { heap } = painting.painters;
@@ -58,15 +68,19 @@ export class BandComposer {
     const { pointer, ...photo } = this.#ground.picture;
     const rowBytes = photo.widthPx * photo.channels * photo.bytesPerSample;
     const hasBody = parameters['body.strength'] > 0;
+    this.#from = {
+      ground: pointer + top * rowBytes,
+      body: hasBody ? body.pointer + (top - body.yPx) * body.widthPx * 6 : 0,
+      line: parameters['line.strength'] > 0 ? line : 0,
+      relief,
+    };
     await painting.painters.pool.run(
       {
         kind: 'compose',
         grid: rowGrid(held.widthPx, bottom - top, composeRows),
         // The rows at hand count as a picture of their own.
-        ground: { ...photo, pointer: pointer + top * rowBytes },
-        body: hasBody ? body.pointer + (top - body.yPx) * body.widthPx * 6 : 0,
-        line: parameters['line.strength'] > 0 ? line : 0,
-        relief,
+        ...this.#from,
+        ground: { ...photo, pointer: this.#from.ground },
         settings: this.#settings,
         blendMode: blendModeNumber[parameters['line.blend']],
         out,
@@ -80,6 +94,24 @@ export class BandComposer {
       },
     );
     painting.times.composeMs += performance.now() - startMs;
+  }
+
+  /** The strata of the rows composed last; views, good until the next rows are painted. */
+  strata(rowCount: number): StrataRows {
+    const { buffer } = this.#painting.painters.heap.memory;
+    const { bytesPerSample, channels, widthPx } = this.#ground.picture;
+    const count = widthPx * rowCount;
+    const { ground, body, line, relief } = this.#from;
+    return {
+      ground:
+        bytesPerSample === 1
+          ? new Uint8Array(buffer, ground, count * channels)
+          : new Uint16Array(buffer, ground, count * channels),
+      groundChannels: channels,
+      body: body ? new Uint16Array(buffer, body, count * 3) : null,
+      line: line ? new Uint8Array(buffer, line, count) : null,
+      relief: relief ? new Uint8Array(buffer, relief, count) : null,
+    };
   }
 
   close(): void {

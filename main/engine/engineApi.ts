@@ -1,5 +1,5 @@
 import type { Parameters } from '../../core/parameters/table.ts';
-import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
+import type { DecodedPhoto, Rect, Strata, StrataRows } from '../../core/pixels/photo.ts';
 import type { ToneMap } from '../../core/series/toneMap.ts';
 
 /** Milliseconds spent in each part of a painting. */
@@ -68,6 +68,8 @@ export interface BandOptions extends Omit<PaintOptions, 'onProgress'> {
   depth?: 8 | 16;
   /** Rows of a band; any number gives the same pixels. */
   bandRows?: number;
+  /** Hands the strata of each band over too. */
+  withStrata?: boolean;
   /** Of the whole painting. */
   onProgress?: (fraction01: number) => void;
 }
@@ -78,6 +80,8 @@ export interface PaintedBand {
   rowCount: number;
   /** Interleaved, the photo's channels. A view of shared memory, good until the receiver's promise settles. */
   pixels: Uint8Array | Uint16Array;
+  /** What they were composed of, where it was asked for; views as well. */
+  strata?: StrataRows;
 }
 
 /** A composed picture in the shared memory. */

@@ -166,7 +166,7 @@ class PaintEngine implements Engine {
     photo: EnginePhoto,
     parameters: Parameters,
     receive: (band: PaintedBand) => Promise<void> | void,
-    { onProgress, depth, bandRows = defaultBandRows, ...options }: BandOptions = {},
+    { onProgress, depth, bandRows = defaultBandRows, withStrata, ...options }: BandOptions = {},
   ): Promise<StageTimes> {
     const held = photo as HeldPhoto;
     const { heap } = this.#painters;
@@ -182,7 +182,8 @@ class PaintEngine implements Engine {
         for (let top = 0; top < held.heightPx; top += bandRows) {
           const rowCount = Math.min(bandRows, held.heightPx - top);
           await composing.compose(top, top + rowCount, out);
-          await receive({ topRow: top, rowCount, pixels: composing.view(out, rowCount) });
+          const strata = withStrata ? composing.strata(rowCount) : undefined;
+          await receive({ topRow: top, rowCount, pixels: composing.view(out, rowCount), strata });
           options.signal?.throwIfAborted();
           const done = (top + rowCount) / held.heightPx;
           onProgress?.(painting.coarseShare01 + (1 - painting.coarseShare01) * done);
