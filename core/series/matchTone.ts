@@ -1,6 +1,13 @@
 import type { Triple } from '../colour/lab.ts';
 import { mongeKantorovichMap, partOfMap, type StretchLimits, stretchLimits } from './mongeKantorovich.ts';
-import { momentsOf, type Palette, type ToneFigures, toneFiguresOf } from './palette.ts';
+import {
+  darkestPart,
+  momentsOf,
+  type Palette,
+  type ToneFigures,
+  toneFiguresOf,
+  unclippedPart,
+} from './palette.ts';
 import { roundedToneMap, type ToneMap } from './toneMap.ts';
 
 /** Rounds of correction: each brings the rest down to a third or less. */
@@ -22,18 +29,34 @@ export function matchTone(
   limits: StretchLimits = stretchLimits,
 ): ToneMap | null {
   if (amount01 <= 0) return null;
-  const first = mongeKantorovichMap(momentsOf(frame), momentsOf(lead), limits);
+  const first = firstMap(frame, lead, limits);
   const wanted = toneFiguresOf(lead);
   let best = first;
   let leastMiss = missOf(toneFiguresOf(frame, first), wanted);
   let map = first;
   for (let round = 0; round < rounds && leastMiss > enough; round++) {
     map = correctedMap(map, frame, wanted);
-    if (!isWithin(map, first, limits)) break;
+    if (!isWithin(map, limits)) break;
     const miss = missOf(toneFiguresOf(frame, map), wanted);
     if (miss < leastMiss) [best, leastMiss] = [map, miss];
   }
   return roundedToneMap(partOfMap(best, amount01));
+}
+
+/** A frame clipped in less than this keeps its whole palette; one clipped in nearly all of it has nothing else. */
+const leastClipped = 0.02;
+const mostClipped = 0.8;
+
+/**
+ * The map before correction. What is clipped has lost its colour: counted in, it would make the rest too strong in
+ * colour. So a frame that is clipped is compared without what is, and with as large a part of the lead, its darkest.
+ */
+function firstMap(frame: Palette, lead: Palette, limits: StretchLimits): ToneMap {
+  const { part, share01 } = unclippedPart(frame);
+  const clipped = 1 - share01;
+  if (clipped < leastClipped || clipped > mostClipped || unclippedPart(lead).share01 <= share01)
+    return mongeKantorovichMap(momentsOf(frame), momentsOf(lead), limits);
+  return mongeKantorovichMap(momentsOf(part), momentsOf(darkestPart(lead, share01)), limits);
 }
 
 function missOf(figures: ToneFigures, wanted: ToneFigures): number {
@@ -90,9 +113,9 @@ function changedMap(map: ToneMap, [l, a, b, stretch]: readonly number[], frame: 
 }
 
 /** Whether lightness is still stretched within the limits and not turned about. */
-function isWithin(map: ToneMap, first: ToneMap, limits: StretchLimits): boolean {
+function isWithin(map: ToneMap, limits: StretchLimits): boolean {
   const gain = map.matrix[0][0];
-  return gain >= limits.least && gain <= limits.most && gain < first.matrix[0][0] * 2;
+  return gain >= limits.least && gain <= limits.most;
 }
 
 /** Solves Σ shares[k]·moves[k] = wanted by elimination with row exchange; null where the moves do not suffice. */

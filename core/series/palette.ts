@@ -102,3 +102,42 @@ export function toneFiguresOf({ colours, shares }: Palette, map?: ToneMap | null
 function inside(linear: number): number {
   return Math.max(0, Math.min(1, linear));
 }
+
+/** Encoded value from which a channel counts as clipped: noise and averaging pull clipped pixels a little below 1. */
+const clippedFrom = linearOfSrgb(0.97);
+
+/**
+ * The colours that have not been clipped in two channels or three, with the share of the picture that they are. One
+ * alone does not count: a strong colour touches the gamut's edge at any exposure.
+ */
+export function unclippedPart(palette: Palette): { part: Palette; share01: number } {
+  return partOf(palette, (i) => {
+    const { colours } = palette;
+    const channels = linearSrgbOfOklab([colours[3 * i], colours[3 * i + 1], colours[3 * i + 2]]);
+    return channels.filter((linear) => linear >= clippedFrom).length < 2;
+  });
+}
+
+/** The darkest colours that together are about `share01` of the picture. */
+export function darkestPart(palette: Palette, share01: number): Palette {
+  const order = palette.shares
+    .map((_, i) => i)
+    .sort((p, q) => palette.colours[3 * p] - palette.colours[3 * q]);
+  const chosen = new Set<number>();
+  let sum = 0;
+  for (const i of order) {
+    if (sum >= share01) break;
+    chosen.add(i);
+    sum += palette.shares[i];
+  }
+  return partOf(palette, (i) => chosen.has(i)).part;
+}
+
+/** Shares of the part add up to 1 again. */
+function partOf(palette: Palette, isIn: (index: number) => boolean): { part: Palette; share01: number } {
+  const indices = palette.shares.map((_, i) => i).filter(isIn);
+  const share01 = indices.reduce((sum, i) => sum + palette.shares[i], 0);
+  const colours = indices.flatMap((i) => palette.colours.slice(3 * i, 3 * i + 3));
+  const shares = indices.map((i) => palette.shares[i] / share01);
+  return { part: { colours, shares }, share01 };
+}
