@@ -2,12 +2,25 @@
 import { ParameterError } from '../../core/parameters/parameterError.ts';
 import { FileError } from '../files/fileError.ts';
 import { discardUnfinished } from '../files/unfinishedFile.ts';
+import { compareCommand } from './compareCommand.ts';
 import { paramsCommand, presetsCommand } from './listCommands.ts';
 import { paintCommand } from './paintCommand.ts';
 import { proofCommand } from './proofCommand.ts';
+import { returnCommand } from './returnCommand.ts';
+import { statesCommand } from './statesCommand.ts';
 import { describeCommand, describeProgram, exitCode, UsageError } from './usage.ts';
+import { verifyCommand } from './verifyCommand.ts';
 
-const commands = [paintCommand, proofCommand, presetsCommand, paramsCommand];
+const commands = [
+  paintCommand,
+  statesCommand,
+  returnCommand,
+  compareCommand,
+  verifyCommand,
+  proofCommand,
+  presetsCommand,
+  paramsCommand,
+];
 
 /**
  * Runs one command.

@@ -4,8 +4,10 @@ import { planBody } from '../../core/pipeline/bodyPlan.ts';
 import { createEngine } from '../engine/paintEngine.ts';
 import { outputFormatFor } from '../files/outputFormat.ts';
 import { defaultOutputPath } from '../files/outputPath.ts';
-import { paintToFile } from '../painting/paintToFile.ts';
-import { chosenParameters } from './chosenParameters.ts';
+import { type PaintedFile, paintToFile } from '../painting/paintToFile.ts';
+import { fingerprintPhoto } from '../store/photoFingerprint.ts';
+import { choosePaintWork, keepPainted } from './paintWork.ts';
+import { commandStores } from './photoRecipe.ts';
 import { ProgressLine } from './progressLine.ts';
 import { readNumber, readWhole, readWords } from './readWords.ts';
 import { type Command, exitCode, UsageError } from './usage.ts';
@@ -16,23 +18,28 @@ const options = {
   out: { type: 'string' },
   depth: { type: 'string' },
   'print-long-edge': { type: 'string' },
+  keep: { type: 'boolean' },
   workers: { type: 'string' },
   json: { type: 'boolean' },
 } as const;
 
 export const paintCommand: Command = {
   name: 'paint',
-  usage: 'paint PHOTO [--preset NAME] [--set KEY=VALUE]… [--out FILE]',
-  summary: 'Paints one photo to a file.',
+  usage: 'paint PHOTO [--preset NAME[@STATE]] [--set KEY=VALUE]… [--out FILE] [--keep]',
+  summary: 'Paints one photo to a file, by its recipe where it has one.',
   options: [
-    ['--preset NAME', 'The preset to paint with; oxgall presets lists them.'],
+    [
+      '--preset NAME[@STATE]',
+      'The preset to paint with, at its newest state unless one such as @3 or @III is named; instead of the recipe.',
+    ],
     ['--set KEY=VALUE', 'Changes one parameter, as often as needed; oxgall params lists them.'],
     ['--out FILE', 'The painted file: .png, .jpg, .tif or .webp. Beside the photo unless given.'],
     ['--depth 8|16', "Bits a sample; the photo's own unless given."],
     [
       '--print-long-edge MM',
-      `Long edge of the print, for lengths in mm; ${defaultPrintLongEdgeMm} unless given.`,
+      `Long edge of the print, for lengths in mm; the recipe's, or ${defaultPrintLongEdgeMm}, unless given.`,
     ],
+    ['--keep', "Notes what was painted in the photo's recipe, which is made where there is none."],
     ['--workers N', 'Worker threads; one for each processor unless given.'],
     ['--json', 'Prints one JSON object with everything that was done.'],
   ],
@@ -42,11 +49,18 @@ export const paintCommand: Command = {
 async function paint(words: string[]): Promise<number> {
   const read = readWords(words, options, { least: 1, most: 1, what: 'one photo' });
   const photoPath = read.positionals[0];
-  const { preset, parameters } = await chosenParameters(read.values.preset, read.values.set ?? []);
   const workers =
     read.values.workers === undefined ? undefined : readWhole(read.values.workers, '--workers', 1, 64);
+  const isKept = read.values.keep === true;
+  const stores = commandStores();
+  const work = await choosePaintWork(stores, photoPath, {
+    preset: read.values.preset,
+    settings: read.values.set ?? [],
+    isKept,
+  });
+  const { parameters } = work;
   const printLongEdgeMm = readNumber(
-    read.values['print-long-edge'] ?? String(defaultPrintLongEdgeMm),
+    read.values['print-long-edge'] ?? String(work.printLongEdgeMm),
     '--print-long-edge',
     10,
     20_000,
@@ -68,6 +82,7 @@ async function paint(words: string[]): Promise<number> {
     });
     const totalMs = performance.now() - startMs;
     const { widthPx, heightPx, times } = painted;
+    const kept = isKept ? await keepFile(painted) : null;
     const scale = { longEdgePx: Math.max(widthPx, heightPx), printLongEdgeMm };
     progress.clear();
     report(read.values.json === true, {
@@ -77,7 +92,9 @@ async function paint(words: string[]): Promise<number> {
       height: heightPx,
       depth: painted.depth,
       engineVersion,
-      preset,
+      preset: work.preset,
+      state: work.state,
+      recipe: kept?.path ?? work.read?.path ?? null,
       parameters,
       printLongEdgeMm,
       noiseFloor: planBody(parameters, scale, 0, painted.noiseFloor).noiseFloor,
@@ -94,12 +111,18 @@ async function paint(words: string[]): Promise<number> {
       }),
       peakMemoryBytes: process.resourceUsage().maxRSS * 1024,
       pixelsSha256: painted.pixelsSha256,
-      remarks: painted.remarks,
+      remarks: [...work.remarks, ...painted.remarks, ...(kept?.remarks ?? [])],
     });
     return exitCode.done;
   } finally {
     progress.clear();
     await (await starting.catch(() => null))?.close();
+  }
+
+  async function keepFile({ path, depth, pixelsSha256 }: PaintedFile) {
+    const { sha256 } = await fingerprintPhoto(path);
+    const output = { format, depth, printLongEdgeMm };
+    return keepPainted(stores, photoPath, work, { path, sha256, pixelsSha256, parameters, output });
   }
 }
 

@@ -10,6 +10,7 @@ import type { OpenPhoto } from './openPhoto.ts';
 import { PaintCommands } from './paintCommands.ts';
 import { Refusal } from './refusal.ts';
 import type { RunningCall } from './runningCalls.ts';
+import { createSeriesHandlers } from './series/seriesHandlers.ts';
 import { savePainting } from './savePainting.ts';
 
 type Answer<Command> = Command extends { output: infer Output } ? Output : Uint8Array<ArrayBuffer>;
@@ -28,6 +29,7 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
   const paint = new PaintCommands(parts, calls);
   return {
     ...createMemoryHandlers(state),
+    ...createSeriesHandlers(state),
     startSession: () => startSession(state),
     openPhoto: ({ path }, call) => openPhoto(state, path, call),
     awaitPhoto: async ({ photoId }, call) => {
@@ -66,8 +68,9 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
     },
     openDemo: async () => {
       if (!parts.demo) throw new Refusal('NotFound', 'The demo plates are not installed.');
-      const series = await parts.demo.prepare();
+      const series = await parts.demo.prepare(() => state.walls.folderChanged());
       for (const { path } of series.photos) allowOpening(state, path);
+      grants.offerFolder(series.folder);
       return series;
     },
     revealFile: async ({ path }) => {
@@ -92,7 +95,9 @@ async function startSession(state: HostState): Promise<Session> {
   const { presets: presetStore } = await parts.loadStores();
   const [shelf, recentList] = await Promise.all([readShelf(presetStore), recents.list()]);
   // What the user opened in an earlier session counts as chosen.
-  for (const { path } of recentList) allowOpening(state, path);
+  for (const { path, frames } of recentList)
+    if (frames === undefined) allowOpening(state, path);
+    else state.grants.offerFolder(path);
   const { opening } = state;
   state.opening = null;
   // The window is up: what the first photo needs is loaded while the user looks for it.

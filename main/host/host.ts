@@ -16,6 +16,7 @@ import { RecentPhotos } from './recentPhotos.ts';
 import { describeError, Refusal } from './refusal.ts';
 import { readJsonBody } from './requestBody.ts';
 import { RunningCalls } from './runningCalls.ts';
+import { Walls } from './series/walls.ts';
 
 /** The host: everything behind the window, whichever shell shows it. */
 export interface Host {
@@ -39,6 +40,7 @@ export interface HostState {
   photos: OpenPhotos;
   recents: RecentPhotos;
   memories: PhotoMemories;
+  walls: Walls;
   /** What the program was started with; told once. */
   opening: { kind: 'photo' | 'folder'; path: string } | null;
 }
@@ -64,6 +66,7 @@ export function createHost(parts: HostParts): Host {
     }),
     recents: new RecentPhotos(parts.dataFolder),
     memories: new PhotoMemories({ loadStores: () => parts.loadStores(), events }),
+    walls: new Walls(parts, events),
     opening: null,
   };
   const app = routes(state);
@@ -191,6 +194,6 @@ async function offerPath(state: HostState, given: string): Promise<void> {
 async function closeHost(state: HostState): Promise<void> {
   state.calls.cancelAll();
   await state.photos.closeAll();
-  await Promise.all([state.memories.flush(), state.recents.flush()]);
+  await Promise.all([state.memories.flush(), state.recents.flush(), state.walls.closeAll()]);
   state.events.close();
 }

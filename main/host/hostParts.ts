@@ -1,6 +1,6 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { DecodedPhoto, Strata } from '../../core/pixels/photo.ts';
-import type { Engine, EnginePhoto } from '../engine/engineApi.ts';
+import type { Engine, EnginePhoto, OpenOptions } from '../engine/engineApi.ts';
 import type { AnyPictureFile, PhotoFile } from '../files/photoFile.ts';
 import type { SpilledPhoto } from '../files/spillPhoto.ts';
 import type { Stores } from '../store/openStores.ts';
@@ -14,7 +14,7 @@ export interface HostFiles {
   holdPhoto(
     engine: Engine | Promise<Engine>,
     photo: PhotoFile | SpilledPhoto,
-    options?: { signal?: AbortSignal },
+    options?: OpenOptions,
   ): Promise<EnginePhoto>;
   /** Writes `path`, which must not appear half-written whatever happens. */
   writePicture(path: string, picture: AnyPictureFile, options?: { signal?: AbortSignal }): Promise<unknown>;
@@ -47,6 +47,18 @@ export interface Desktop {
 /** Composes strata to 8-bit R, G, B, alpha. */
 export type ComposeSmall = (strata: Strata, parameters: Parameters) => Promise<Uint8Array>;
 
+/** The demo series, made when it is first asked for. */
+export interface DemoPart {
+  title: string;
+  /**
+   * Answers when there are plates to look at; the rest are made after that.
+   * @param onPlate called for each plate that comes later
+   */
+  prepare(onPlate?: () => void): Promise<DemoSeries>;
+  /** Plates still to come into that folder. */
+  coming(folder: string): number;
+}
+
 /** What a host is made of; each heavy part is loaded when first asked for, so that the window comes up fast. */
 export interface HostParts {
   shell: 'electron' | 'loopback';
@@ -56,7 +68,7 @@ export interface HostParts {
   loadFiles(): Promise<HostFiles>;
   loadStores(): Promise<Stores>;
   loadComposeSmall(): Promise<ComposeSmall>;
-  demo: { title: string; prepare(): Promise<DemoSeries> } | null;
+  demo: DemoPart | null;
   desktop: Desktop;
   /** Where recents, presets and copies of recipes are kept. */
   dataFolder: string;

@@ -1,9 +1,7 @@
-import { dirname, isAbsolute, join, relative } from 'node:path';
+import { dirname, join } from 'node:path';
 import { engineVersion } from '../../core/engineVersion.ts';
-import type { Parameters } from '../../core/parameters/table.ts';
 import type { Moment } from '../../core/presets/preset.ts';
 import { stateById } from '../../core/presets/thread.ts';
-import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import type { Recipe } from '../../core/recipes/recipe.ts';
 import {
   changeOutput,
@@ -11,10 +9,10 @@ import {
   createRecipe,
   currentParameters,
   currentState,
-  noteDelivery,
 } from '../../core/recipes/recipeHistory.ts';
 import { DelayedSaver } from '../store/delayedSaver.ts';
 import { findMovedPhotos, reunite } from '../store/movedPhotos.ts';
+import { noteWrittenFile, type WrittenFile } from '../store/notedDelivery.ts';
 import type { Stores } from '../store/openStores.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { PresetStore } from '../store/presetStore.ts';
@@ -24,15 +22,6 @@ import type { FileVersion } from '../store/versionedFile.ts';
 import type { PhotoMemory, WorkOnEasel } from './api/memoryCommands.ts';
 import type { EventHub } from './eventHub.ts';
 import { Refusal } from './refusal.ts';
-
-/** A file that was written, with what it was painted from. */
-export interface NotedDelivery {
-  path: string;
-  sha256: string;
-  pixelsSha256: string;
-  parameters: Parameters;
-  output: Partial<OutputSettings>;
-}
 
 /** What a photo that was never worked on starts from. */
 export const firstPresetName = 'low-water';
@@ -112,18 +101,13 @@ export class PhotoMemories {
    * Notes a delivered file. What was painted is the easel as it was when the painting began, whatever lies there
    * now; where no state holds it, it is kept as one.
    */
-  async noteDelivered(photoId: string, file: NotedDelivery): Promise<PhotoMemory> {
+  async noteDelivered(photoId: string, file: WrittenFile): Promise<PhotoMemory> {
     const entry = await this.#find(photoId);
     if (entry.access === 'readOnly') return viewOf(entry);
-    const { parameters, output, path, ...hashes } = file;
-    const place = relative(dirname(entry.path), path);
-    const isBelow = !place.startsWith('..') && !isAbsolute(place);
-    return this.change(photoId, (recipe, moment) => {
-      const painted = changeOutput(changeParameters(recipe, parameters), output);
-      const noted = noteDelivery(painted, { ...hashes, path: isBelow ? place : path }, moment);
+    return this.change(photoId, (recipe, moment) =>
       // Somebody may have gone on while the file was being painted: their work stays on the easel.
-      return changeParameters(noted, currentParameters(recipe));
-    });
+      changeParameters(noteWrittenFile(recipe, entry.path, file, moment), currentParameters(recipe)),
+    );
   }
 
   /** Makes one recipe of ours and of what somebody else saved meanwhile. */

@@ -15,13 +15,14 @@ const fileSchema = z.object({
       widthPx: z.number(),
       heightPx: z.number(),
       openedAt: z.string(),
+      frames: z.number().optional(),
     }),
   ),
 });
 
 type Stored = z.infer<typeof fileSchema>['recents'][number];
 
-/** The photos opened last, newest first, kept across sessions. */
+/** The photos and series opened last, newest first, kept across sessions. */
 export class RecentPhotos {
   readonly #file: string;
   #recents: Promise<Stored[]> | null = null;
@@ -44,9 +45,16 @@ export class RecentPhotos {
     );
   }
 
-  add(photo: { path: string; widthPx: number; heightPx: number }): Promise<void> {
-    const { path, widthPx, heightPx } = photo;
-    const added = { path, widthPx, heightPx, openedAt: new Date().toISOString() };
+  /** @param opened a photo with its size, or a folder with the number of its photos */
+  add(
+    opened: { path: string; widthPx: number; heightPx: number } | { path: string; frames: number },
+  ): Promise<void> {
+    const { path } = opened;
+    const size =
+      'frames' in opened
+        ? { widthPx: 0, heightPx: 0, frames: opened.frames }
+        : { widthPx: opened.widthPx, heightPx: opened.heightPx };
+    const added = { path, ...size, openedAt: new Date().toISOString() };
     return this.#change((recents) =>
       [added, ...recents.filter((recent) => recent.path !== path)].slice(0, maximumRecents),
     );

@@ -1,12 +1,20 @@
 /**
- * Small pictures are painted one at a time and wait while a view is being painted: what the eye is on comes
+ * Small pictures are painted one at a time, or a few, and wait while a view is being painted: what the eye is on comes
  * first. A view never waits.
  */
 export class SmallPictureTurns {
   #viewsUnderWay = 0;
-  #smallUnderWay = false;
+  #smallUnderWay = 0;
   /** In the order they were asked for. */
   readonly #waiting: (() => void)[] = [];
+
+  /** @param atOnce small pictures under way at the same time: with two, one is decoded while another is painted */
+  constructor(private readonly atOnce = 1) {}
+
+  /** Nothing is painted and nothing waits. */
+  get isIdle(): boolean {
+    return this.#viewsUnderWay === 0 && this.#smallUnderWay === 0 && this.#waiting.length === 0;
+  }
 
   async paintView<T>(work: () => Promise<T>): Promise<T> {
     this.#viewsUnderWay += 1;
@@ -24,7 +32,7 @@ export class SmallPictureTurns {
     try {
       return await work();
     } finally {
-      this.#smallUnderWay = false;
+      this.#smallUnderWay -= 1;
       this.#next();
     }
   }
@@ -34,7 +42,7 @@ export class SmallPictureTurns {
       if (signal.aborted) return reject(signal.reason);
       const start = () => {
         signal.removeEventListener('abort', leave);
-        this.#smallUnderWay = true;
+        this.#smallUnderWay += 1;
         resolve();
       };
       const leave = () => {
@@ -48,6 +56,6 @@ export class SmallPictureTurns {
   }
 
   #next(): void {
-    if (this.#viewsUnderWay === 0 && !this.#smallUnderWay) this.#waiting.shift()?.();
+    if (this.#viewsUnderWay === 0 && this.#smallUnderWay < this.atOnce) this.#waiting.shift()?.();
   }
 }

@@ -3,8 +3,8 @@ import { dirname, resolve } from 'node:path';
 import { engineVersion } from '../../core/engineVersion.ts';
 import {
   type DeliveredPainting,
-  deliveredPaintings,
   type DeliveryVerdict,
+  deliveredPaintings,
   judgeDelivery,
 } from '../../core/recipes/deliveryCheck.ts';
 import type { Recipe } from '../../core/recipes/recipe.ts';
@@ -78,7 +78,11 @@ async function verifyOne(
   const pixelsSha256 = await work.hashOf(painting);
   const verdict = judgeDelivery(delivery, { photoSha256, engineVersion, pixelsSha256 });
   const isToCompare = verdict !== 'identical' && file === 'untouched';
-  return { ...common, verdict, difference: isToCompare ? await work.differenceFrom(painting, filePath) : null };
+  return {
+    ...common,
+    verdict,
+    difference: isToCompare ? await work.differenceFrom(painting, filePath) : null,
+  };
 }
 
 async function stateOfFile(path: string, sha256: string): Promise<VerifiedDelivery['file']> {
@@ -150,10 +154,7 @@ class RepaintedPhoto {
   }
 }
 
-function pixelDifference(
-  one: Uint8Array | Uint16Array,
-  other: Uint8Array | Uint16Array,
-): PictureDifference {
+function pixelDifference(one: Uint8Array | Uint16Array, other: Uint8Array | Uint16Array): PictureDifference {
   // Samples of 16 bits count in steps of 8, so that figures can be told without saying the depth.
   const [oneStep, otherStep] = [one, other].map((samples) => (samples.BYTES_PER_ELEMENT === 2 ? 257 : 1));
   let largest = 0;

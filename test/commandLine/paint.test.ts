@@ -18,7 +18,10 @@ interface Ended {
 }
 
 function start(words: string[]) {
-  const child = spawn(process.execPath, [program, ...words], { cwd: folder.path('.') });
+  const child = spawn(process.execPath, [program, ...words], {
+    cwd: folder.path('.'),
+    env: { ...process.env, OXGALL_DATA: folder.path('.oxgall-data') },
+  });
   let [out, err] = ['', ''];
   child.stdout.on('data', (text) => {
     out += text;
@@ -73,6 +76,7 @@ describe('oxgall paint', () => {
         'grain',
         'body',
         'line',
+        'relief',
         'compose',
         'encode',
         'total',

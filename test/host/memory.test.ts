@@ -39,10 +39,13 @@ const statesOf = ({ recipe }: PhotoMemory) =>
 async function untilSaved(photoId: string, host = t): Promise<PhotoMemory> {
   let memory = await host.caller.call('readMemory', { photoId });
   await expect
-    .poll(async () => {
-      memory = await host.caller.call('readMemory', { photoId });
-      return memory.saved.kind;
-    })
+    .poll(
+      async () => {
+        memory = await host.caller.call('readMemory', { photoId });
+        return memory.saved.kind;
+      },
+      { timeout: 10_000 },
+    )
     .not.toBe('waiting');
   return memory;
 }
@@ -302,7 +305,7 @@ describe('a long thread', () => {
       times.short.push(other.tookMs);
     }
     const median = (list: number[]) => list.sort((a, b) => a - b)[3];
-    expect(median(times.long) - median(times.short)).toBeLessThan(process.env.OXGALL_STRICT ? 100 : 400);
+    expect(median(times.long) - median(times.short)).toBeLessThan(process.env.OXGALL_STRICT ? 100 : 1500);
   });
 });
 

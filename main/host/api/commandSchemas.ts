@@ -2,6 +2,7 @@ import { z } from 'zod';
 import type { HostCommands } from './hostCommands.ts';
 import { parameters, path, photoId } from './inputParts.ts';
 import { memorySchemas } from './memorySchemas.ts';
+import { seriesSchemas } from './seriesSchemas.ts';
 
 /**
  * What each command takes, checked on entry. Paths are only ever used after the host's own list of what
@@ -26,6 +27,7 @@ const outputFormat = z.enum(['jpeg', 'png', 'tiff', 'webp']);
 
 export const commandSchemas = {
   ...memorySchemas,
+  ...seriesSchemas,
   startSession: z.strictObject({}),
   openPhoto: z.strictObject({ path }),
   awaitPhoto: z.strictObject({ photoId }),

@@ -1,12 +1,13 @@
 import type { Parameters } from '../../../core/parameters/table.ts';
 import type { Rect } from '../../../core/pixels/photo.ts';
 import type { MemoryCommands, PhotoMemory, PresetOffer } from './memoryCommands.ts';
+import type { SeriesCommands } from './seriesCommands.ts';
 
 /**
  * The host's commands: `POST /api/<name>` with JSON in, and JSON (`output`) or a frame of pixels (`frame`)
  * out. The interface takes these types and nothing else of the host.
  */
-export interface HostCommands extends MemoryCommands {
+export interface HostCommands extends MemoryCommands, SeriesCommands {
   /** What the first screen needs. */
   startSession: { input: Record<string, never>; output: Session };
   /**
@@ -74,6 +75,8 @@ export interface Session {
 
 export interface Recent {
   path: string;
+  /** How many photos a series has; missing where it is one photo. */
+  frames?: number;
   name: string;
   folder: string;
   widthPx: number;
@@ -221,5 +224,6 @@ export interface Choice {
 export interface DemoSeries {
   title: string;
   folder: string;
+  /** Those that are there already; the others follow. */
   photos: { name: string; path: string }[];
 }

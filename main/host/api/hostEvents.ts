@@ -1,3 +1,5 @@
+import type { RunView } from './runCommands.ts';
+
 /** What the host says unasked: `GET /api/events`, server-sent events, the data JSON. */
 export interface HostEvents {
   /** How far a long call is. Stages of a save: opening, grain, body, line, compose, writing. */
@@ -12,6 +14,10 @@ export interface HostEvents {
   menu: { command: MenuCommand };
   /** Something of a photo's memory was saved, could not be saved, or changed: ask for it again. */
   memoryChanged: { photoId: string };
+  /** Something about a series or its frames is new: ask for it again. */
+  seriesChanged: { seriesId: string };
+  /** How far a run is. */
+  runProgress: { seriesId: string; run: RunView };
   /** The list of recent photos changed. */
   recentsChanged: Record<string, never>;
 }

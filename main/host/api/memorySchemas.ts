@@ -46,4 +46,4 @@ export const memorySchemas = {
 
 /** Bodies that may be larger than the common limit. */
 export const documentBodyLimitBytes = 9 * 2 ** 20;
-export const carriesDocument: ReadonlySet<string> = new Set(['takeLook', 'importPresets']);
+export const carriesDocument: ReadonlySet<string> = new Set(['takeLook', 'importPresets', 'changeSeries']);

@@ -19,23 +19,10 @@ export interface SeriesCommands {
   paintFramePicture: { input: PaintFramePictureInput; frame: FramePictureHeader };
   /** Sets the series on a proof sheet: a PDF, or PNGs. Progress comes as events under the call's id. */
   makeProof: { input: MakeProofInput; output: ProofMade };
-  /** The recent series, newest first. */
-  listRecentSeries: { input: Record<string, never>; output: { recents: RecentSeries[] } };
-  forgetRecentSeries: { input: { path: string }; output: { recents: RecentSeries[] } };
 }
 
 export interface OfSeries {
   seriesId: string;
-}
-
-export interface RecentSeries {
-  path: string;
-  name: string;
-  frames: number;
-  /** ISO 8601. */
-  openedAt: string;
-  /** False where the folder is no longer there. */
-  present: boolean;
 }
 
 export interface SeriesView {

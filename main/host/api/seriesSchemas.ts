@@ -29,9 +29,4 @@ export const seriesSchemas = {
     columns: z.int().min(1).max(24),
     title: z.string().max(200),
   }),
-  listRecentSeries: z.strictObject({}),
-  forgetRecentSeries: z.strictObject({ path }),
 } as const satisfies { [Name in keyof SeriesCommands]: z.ZodType<SeriesCommands[Name]['input']> };
-
-/** Commands that carry the settings of hundreds of frames. */
-export const carriesSettings: ReadonlySet<string> = new Set(['changeSeries']);

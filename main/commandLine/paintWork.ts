@@ -1,0 +1,102 @@
+import { stat } from 'node:fs/promises';
+import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
+import { parseParameters } from '../../core/parameters/parse.ts';
+import type { Parameters } from '../../core/parameters/table.ts';
+import { toRoman } from '../../core/presets/roman.ts';
+import type { Recipe } from '../../core/recipes/recipe.ts';
+import {
+  createRecipe,
+  currentHistory,
+  currentParameters,
+  currentState,
+  layPreset,
+} from '../../core/recipes/recipeHistory.ts';
+import { noteWrittenFile, type WrittenFile } from '../store/notedDelivery.ts';
+import type { Stores } from '../store/openStores.ts';
+import { recipeBeside, recipeInMirror } from '../store/recipePlaces.ts';
+import { type ChosenLook, chosenLook, readSettings } from './chosenLook.ts';
+import { now, type PhotoRecipe, readRecipe, saveRecipe } from './photoRecipe.ts';
+
+/** What a photo is to be painted by: its own recipe, or a preset. */
+export interface PaintWork {
+  preset: string;
+  /** Number of the state; changes of one's own may lie over it. */
+  state: number;
+  parameters: Parameters;
+  printLongEdgeMm: number;
+  /** Plain sentences: that the recipe was used, what is wrong with it. */
+  remarks: string[];
+  /** The recipe as it was read; null where nobody needs it. */
+  read: PhotoRecipe | null;
+  look: ChosenLook | null;
+}
+
+/**
+ * Finds out what to paint a photo by: `--preset` where it is given, else the photo's recipe where it has one, else
+ * the default preset; `--set` changes any of them.
+ * @param asked.isKept the delivery will be noted, so the recipe is read in any case
+ */
+export async function choosePaintWork(
+  stores: Stores,
+  photoPath: string,
+  asked: { preset: string | undefined; settings: readonly string[]; isKept: boolean },
+): Promise<PaintWork> {
+  const isToRead = asked.isKept || (asked.preset === undefined && (await hasRecipe(stores, photoPath)));
+  const read = isToRead ? await readRecipe(stores, photoPath) : null;
+  if (asked.preset === undefined && read?.recipe) return fromRecipe(read, read.recipe, asked.settings);
+  const look = await chosenLook(stores.presets, asked.preset, asked.settings);
+  const { preset, state, parameters } = look;
+  return {
+    preset: preset.name,
+    state: state.number,
+    parameters,
+    printLongEdgeMm: read?.recipe?.work.output.printLongEdgeMm ?? defaultPrintLongEdgeMm,
+    remarks: read?.remarks ?? [],
+    read,
+    look,
+  };
+}
+
+function fromRecipe(read: PhotoRecipe, recipe: Recipe, settings: readonly string[]): PaintWork {
+  const state = currentState(recipe);
+  const { title, preset } = currentHistory(recipe);
+  const remark = `Painted by its recipe: ${title}, State ${toRoman(state.number)}.`;
+  return {
+    preset,
+    state: state.number,
+    parameters: parseParameters(readSettings(settings), currentParameters(recipe)),
+    printLongEdgeMm: recipe.work.output.printLongEdgeMm,
+    remarks: [remark, ...read.remarks],
+    read,
+    look: null,
+  };
+}
+
+async function hasRecipe({ mirrorFolder }: Stores, photoPath: string): Promise<boolean> {
+  const places = [recipeBeside(photoPath), recipeInMirror(photoPath, mirrorFolder)];
+  const found = await Promise.all(places.map((path) => stat(path).catch(() => null)));
+  return found.some((facts) => facts !== null);
+}
+
+/**
+ * Notes a painted file in the photo's recipe, which is made where there was none.
+ * @returns where the recipe is, and what to tell
+ * @throws FileError where it cannot be saved; the painting itself is there
+ */
+export async function keepPainted(
+  stores: Stores,
+  photoPath: string,
+  { read, look }: PaintWork,
+  file: WrittenFile,
+): Promise<{ path: string; remarks: string[] }> {
+  const known = read ?? (await readRecipe(stores, photoPath));
+  const moment = now();
+  let recipe = known.recipe;
+  if (look) {
+    recipe ??= createRecipe(known.photo, look.preset, moment);
+    if (recipe.work.preset !== look.preset.name || recipe.work.stateId !== look.state.id)
+      recipe = layPreset(recipe, look.preset, look.state.id, moment);
+  }
+  const noted = noteWrittenFile(recipe!, photoPath, file, moment);
+  return { path: known.path, remarks: await saveRecipe(stores, photoPath, known, noted) };
+}

@@ -1,0 +1,33 @@
+import { dirname, isAbsolute, relative, resolve } from 'node:path';
+import type { Parameters } from '../../core/parameters/table.ts';
+import type { Moment } from '../../core/presets/preset.ts';
+import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
+import type { Recipe } from '../../core/recipes/recipe.ts';
+import { changeOutput, changeParameters, noteDelivery } from '../../core/recipes/recipeHistory.ts';
+
+/** A file that was written, with what it was painted from. */
+export interface WrittenFile {
+  path: string;
+  sha256: string;
+  pixelsSha256: string;
+  parameters: Parameters;
+  output: Partial<OutputSettings>;
+}
+
+/**
+ * Notes a delivered file in its photo's recipe. What it was painted from is laid on the easel, and kept as a state
+ * where none holds it.
+ * @param file its path is stored from the photo's folder where it lies in it or below
+ */
+export function noteWrittenFile(
+  recipe: Recipe,
+  photoPath: string,
+  file: WrittenFile,
+  moment: Moment,
+): Recipe {
+  const { parameters, output, path, ...hashes } = file;
+  const place = relative(dirname(resolve(photoPath)), resolve(path));
+  const isBelow = !place.startsWith('..') && !isAbsolute(place);
+  const painted = changeOutput(changeParameters(recipe, parameters), output);
+  return noteDelivery(painted, { ...hashes, path: isBelow ? place : resolve(path) }, moment);
+}
