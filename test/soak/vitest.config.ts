@@ -4,7 +4,7 @@ import { defineConfig } from 'vitest/config';
 export default defineConfig({
   test: {
     root: new URL('../..', import.meta.url).pathname,
-    include: ['test/soak/**/*.test.ts'],
+    include: ['test/soak/*.test.ts'],
     maxWorkers: 1,
     pool: 'forks',
   },
