@@ -38,7 +38,7 @@ export interface MatchedFrame {
 }
 
 /** Holds tried beyond the preset's own. */
-const holdTrials = 2;
+const holdTrials = 1;
 
 /**
  * Measures the lead.
