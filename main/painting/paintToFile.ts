@@ -1,4 +1,5 @@
 import type { Engine } from '../engine/engineApi.ts';
+import { assertFormatHolds } from '../files/outputFormat.ts';
 import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
 import { removeAbandonedSpills } from '../files/spillFile.ts';
 import { writePicture } from '../files/writePicture.ts';
@@ -40,6 +41,8 @@ export async function paintToFile(
   try {
     // Checked once there is something to paint: a bad photo must leave no trace of a trial file.
     await assertWritable(order.out);
+    // The painting will be as transparent as the photo: better said now than after minutes.
+    if (order.format === 'jpeg') await assertFormatHolds(order.out, photo, signal, 'jpeg');
     painter = await engine;
   } catch (failure) {
     letGo(photo);

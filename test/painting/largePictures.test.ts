@@ -80,6 +80,18 @@ describe('a photo painted from file to file', () => {
     expect(told).toEqual([]);
   });
 
+  it('is refused before it is painted where JPEG would lose its transparency', async () => {
+    const clear = { create: { width: 60, height: 40, channels: 4, background: '#20808080' } } as const;
+    const path = await folder.file('clear.png', await sharp(clear).png().toBuffer());
+    const told: string[] = [];
+    const options = { onProgress: (_fraction01: number, stage: string) => told.push(stage) };
+    for (const way of [inBands, {}])
+      await expect(
+        paintToFile(engine, path, order('clear.jpg', 'jpeg'), { ...way, ...options }),
+      ).rejects.toThrow(/partly transparent/);
+    expect(told).toEqual([]);
+  });
+
   it('leaves nothing when it is stopped in any part', async () => {
     const target = folder.path('stopped');
     await mkdir(target);
