@@ -10,8 +10,8 @@ import type { OpenPhoto } from './openPhoto.ts';
 import { PaintCommands } from './paintCommands.ts';
 import { Refusal } from './refusal.ts';
 import type { RunningCall } from './runningCalls.ts';
-import { createSeriesHandlers } from './series/seriesHandlers.ts';
 import { savePainting } from './savePainting.ts';
+import { createSeriesHandlers } from './series/seriesHandlers.ts';
 
 type Answer<Command> = Command extends { output: infer Output } ? Output : Uint8Array<ArrayBuffer>;
 

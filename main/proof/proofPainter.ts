@@ -1,4 +1,5 @@
 import type { Parameters } from '../../core/parameters/table.ts';
+import type { ToneMap } from '../../core/series/toneMap.ts';
 import type { Engine, EnginePhoto } from '../engine/engineApi.ts';
 import { createEngine } from '../engine/paintEngine.ts';
 import { loadComposeSmall } from '../host/composeSmall.ts';
@@ -10,6 +11,8 @@ import type { ProofPixels } from './proofSource.ts';
 export interface ProofLook {
   parameters: Parameters;
   printLongEdgeMm: number;
+  /** Matches the photo to a lead. */
+  toneMap?: ToneMap | null;
 }
 
 /** Paints photos at about the size of a proof; starts an engine with the first one. */
@@ -17,7 +20,11 @@ export class ProofPainter {
   #engine: Promise<Engine> | null = null;
   #compose: Promise<ComposeSmall> | null = null;
 
-  constructor(private readonly workers?: number) {}
+  /** @param lent an engine that is there already; it stays the lender's */
+  constructor(
+    private readonly workers?: number,
+    private readonly lent: Promise<Engine> | null = null,
+  ) {}
 
   /**
    * Paints the smallest level of the photo's pyramid that has the pixels asked for: a smaller level predicts the
@@ -25,16 +32,16 @@ export class ProofPainter {
    */
   async paint(
     path: string,
-    { parameters, printLongEdgeMm }: ProofLook,
+    { parameters, printLongEdgeMm, toneMap }: ProofLook,
     needed: { widthPx: number; heightPx: number },
     signal?: AbortSignal,
   ): Promise<ProofPixels> {
     const file = await readAnyPhoto(path, { signal });
     const { iccProfile } = file;
-    this.#engine ??= createEngine({ workers: this.workers });
+    if (!this.lent) this.#engine ??= createEngine({ workers: this.workers });
     this.#compose ??= loadComposeSmall();
-    const engine = await this.#engine;
-    const photo = await holdPhoto(engine, file, { signal });
+    const engine = await (this.lent ?? this.#engine!);
+    const photo = await holdPhoto(engine, file, { signal, toneMap });
     try {
       const level = smallestLevel(photo, needed);
       const { strata } = await engine.paintStrata(photo, parameters, { level }, { printLongEdgeMm, signal });

@@ -101,8 +101,7 @@ export class FrameMeasuring {
 
   async #measure(frame: MeasuringOrder, plan: MeasuringPlan, signal: AbortSignal): Promise<MeasuredFrame> {
     const lead = await this.#leadOf(plan, frame, signal);
-    if (frame === plan.lead || !plan.lead)
-      return { before: lead.figures, after: lead.figures, match: null };
+    if (frame === plan.lead || !plan.lead) return { before: lead.figures, after: lead.figures, match: null };
     const { matchPhoto } = await import('../../series/matchPhoto.ts');
     const { amount01, printLongEdgeMm } = plan;
     const engine = await this.parts.loadEngine();

@@ -82,7 +82,7 @@ export class FramePictures {
     // A fine picture is painted one level down from its decode, as the pyramid of the whole photo would have it.
     const { decoded, steps } = await this.#decode(order, rough ? wanted : wanted * 2);
     this.#notePalette(order, decoded);
-    const match = await order.match((photo) => this.#paletteOf(photo));
+    const match = await order.match((photo) => this.paletteOf(photo));
     const [engine, compose] = await Promise.all([this.parts.loadEngine(), this.parts.loadComposeSmall()]);
     if (signal.aborted && isSpilled(decoded)) decoded.pixels.discard();
     signal.throwIfAborted();
@@ -124,7 +124,8 @@ export class FramePictures {
     return quick ? { decoded: quick, steps } : { decoded: await files.readPhoto(path), steps: 0 };
   }
 
-  #paletteOf(photo: PhotoOnDisk): Promise<Palette> {
+  /** The colours of a photo, from a small decode; found once. */
+  paletteOf(photo: PhotoOnDisk): Promise<Palette> {
     const key = `${photo.path}|${photo.stamp}`;
     const known = this.#palettes.get(key);
     if (known) return known;
@@ -140,7 +141,8 @@ export class FramePictures {
 
   #notePalette({ path, stamp }: PhotoOnDisk, decoded: DecodedPhoto | SpilledPhoto): void {
     const key = `${path}|${stamp}`;
-    if (!isSpilled(decoded) && !this.#palettes.has(key)) this.#keepPalette(key, Promise.resolve(paletteOf(samples16(decoded))));
+    if (!isSpilled(decoded) && !this.#palettes.has(key))
+      this.#keepPalette(key, Promise.resolve(paletteOf(samples16(decoded))));
   }
 
   #keepPalette(key: string, palette: Promise<Palette>): void {

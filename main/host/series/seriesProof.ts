@@ -1,0 +1,117 @@
+import { join } from 'node:path';
+import { presetWords } from '../../../core/proof/captionWords.ts';
+import { lying, papers, readPaper } from '../../../core/proof/paper.ts';
+import { figureTable } from '../../../core/series/frameFigures.ts';
+import { parametersWithMatch } from '../../../core/series/frameMatch.ts';
+import { lookOfFrame } from '../../../core/series/seriesDocument.ts';
+import type { ProofSource } from '../../proof/proofSource.ts';
+import type { CheckedInput } from '../api/commandSchemas.ts';
+import type { FrameView, ProofMade } from '../api/seriesCommands.ts';
+import type { HostState } from '../host.ts';
+import { firstFree } from '../placeFile.ts';
+import { Refusal } from '../refusal.ts';
+import type { RunningCall } from '../runningCalls.ts';
+import { checkFileName } from '../savePainting.ts';
+import type { WallSeries } from './wallSeries.ts';
+
+const marginMm = 14;
+const captionFigures = ['lightness', 'contrast', 'lineCoverage01'] as const;
+
+/**
+ * Sets the frames of a series on a proof sheet, matched as on the Wall.
+ * @throws Refusal where paper and columns do not go together; FileError where the sheet cannot be written
+ */
+export async function makeSeriesProof(
+  series: WallSeries,
+  input: CheckedInput<'makeProof'>,
+  call: RunningCall,
+  { parts, grants, events, walls }: HostState,
+): Promise<ProofMade> {
+  const paper = readPaper(input.paper);
+  if (!paper)
+    throw new Refusal(
+      'BadRequest',
+      `${input.paper} is no paper.`,
+      `Use ${Object.keys(papers).join(', ')}, or a size in millimetres such as 200x250.`,
+    );
+  const folder = grants.checkWriting(input.folder);
+  const name = checkFileName(input.name.replace(/\.(pdf|png)$/i, ''));
+  const out = await firstFree(join(folder, `${name}.${input.format}`));
+  const [{ ProofPainter }, { makeProof }] = await Promise.all([
+    import('../../proof/proofPainter.ts'),
+    import('../../proof/makeProof.ts'),
+  ]);
+  const painter = new ProofPainter(undefined, parts.loadEngine());
+  const titles = await presetTitles(parts);
+  const frames = series.view().frames.filter(({ frameId }) => !series.settings.leftOut.includes(frameId));
+  const sources = frames.map((frame): ProofSource => {
+    const { frameId, path, widthPx, heightPx } = frame;
+    const caption = captionOf(frame, series, titles);
+    if (widthPx === 0) return { picture: { path }, caption };
+    return {
+      caption,
+      picture: {
+        path,
+        widthPx,
+        heightPx,
+        paint: async (needed, signal) => {
+          const order = series.pictureOrder(frameId);
+          const match = await order.match((photo) => walls.pictures.paletteOf(photo));
+          const parameters = parametersWithMatch(order.parameters, match);
+          const look = { parameters, printLongEdgeMm: order.printLongEdgeMm, toneMap: match.toneMap };
+          return painter.paint(path, look, needed, signal);
+        },
+      },
+    };
+  });
+  const { title, columns } = input;
+  const order = {
+    out,
+    paper: input.landscape ? lying(paper) : paper,
+    columns,
+    marginMm,
+    title,
+    date: new Date(),
+  };
+  try {
+    const made = await makeProof(sources, order, {
+      signal: call.signal,
+      onProgress: (fraction01) => events.send('progress', { callId: call.id, fraction01, stage: 'proof' }),
+    });
+    const remarks = [...made.faults.map(({ message }) => message), ...made.remarks];
+    return { files: made.files, folder, pages: made.pages, frames: made.frames, remarks };
+  } catch (failure) {
+    if (failure instanceof RangeError)
+      throw new Refusal('BadRequest', `${failure.message}.`, 'Choose fewer columns or larger paper.');
+    throw failure;
+  }
+}
+
+/** Title and number of each state that a preset on the shelf has, by state id. */
+async function presetTitles(parts: HostState['parts']): Promise<Map<string, string>> {
+  const { presets } = await parts.loadStores();
+  const shelf = await presets.list();
+  return new Map(
+    shelf.presets.flatMap(({ preset }) =>
+      preset.states.map((state) => [state.id, presetWords(preset.title, state.number)] as const),
+    ),
+  );
+}
+
+function captionOf(frame: FrameView, series: WallSeries, titles: ReadonlyMap<string, string>) {
+  const { measured, odd } = frame;
+  const look = lookOfFrame(series.settings, frame.frameId);
+  const figures = measured ? [captionFigures.map((key) => figureWords(key, measured[key])).join(' · ')] : [];
+  return {
+    name: frame.frameId,
+    preset: titles.get(look.stateId) ?? look.preset,
+    figures,
+    note: odd && !odd.isMatched ? odd.reason : '',
+  };
+}
+
+function figureWords(key: (typeof captionFigures)[number], value: number): string {
+  const { label, unit, digits } = figureTable[key];
+  const shown = unit === '%' ? value * 100 : value;
+  return `${label} ${shown.toFixed(digits)}${unit === '%' ? ' %' : ''}`;
+}
