@@ -80,7 +80,9 @@ async function reduced(
         .autoOrient()
         .resize(size.widthPx, size.heightPx, { fit: 'fill', kernel: 'lanczos3' })
         .flatten({ background: '#ffffff' })
-        .toColourspace('srgb'),
+        .toColourspace('srgb')
+        // Asked for by name: of 16-bit samples the library gives the numbers of a wider space else.
+        .withIccProfile('srgb'),
     );
   if ('paint' in picture) {
     const painted = await picture.paint(size, signal);

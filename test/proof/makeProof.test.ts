@@ -2,6 +2,7 @@ import { mkdir, readdir, readFile, writeFile } from 'node:fs/promises';
 import sharp from 'sharp';
 import { describe, expect, it } from 'vitest';
 import { lying, papers } from '../../core/proof/paper.ts';
+import { writePicture } from '../../main/files/writePicture.ts';
 import { makeProof, type ProofOrder } from '../../main/proof/makeProof.ts';
 import type { ProofPixels, ProofSource } from '../../main/proof/proofSource.ts';
 import { temporaryFolder } from '../files/temporaryFolder.ts';
@@ -142,6 +143,34 @@ describe.skipIf(noPoppler)(`a PDF sheet, read by Poppler${noPoppler ? ` (${noPop
     const middle = Math.floor(info.width / 2);
     expect(near(at(middle, 40), [200, 60, 40])).toBeLessThanOrEqual(3);
     expect(near(at(middle, info.height - 40), [255, 255, 255])).toBeLessThanOrEqual(2);
+  });
+
+  it('shows 16-bit colours of a wide space as sRGB too', async () => {
+    // Display P3 (.9, .2, .1), decoded by the curve of IEC 61966-2-1, taken through the matrices of both sets of
+    // primaries and encoded again, is (250.4, 4.6, −) in sRGB.
+    const pixels = new Uint16Array(300 * 200 * 3).map((_, k) => [0.9, 0.2, 0.1][k % 3] * 65535);
+    const raw = { width: 300, height: 200, channels: 3 } as const;
+    const wide = await sharp({ create: { ...raw, background: 'red' } })
+      .withIccProfile('p3')
+      .png()
+      .toBuffer();
+    const { icc } = await sharp(wide).metadata();
+    const path = folder.path('wide.tif');
+    const picture = {
+      widthPx: 300,
+      heightPx: 200,
+      channels: 3,
+      pixels,
+      format: 'tiff',
+      iccProfile: icc,
+    } as const;
+    await writePicture(path, picture);
+    const { files } = await makeProof([sourceOf(path)], order('wide.pdf'));
+    await takePictures(files[0], folder.path('wide'));
+    const { channels } = await sharp(folder.path('wide-000.jpg'), { ignoreIcc: true }).stats();
+    [251, 4, 0].forEach((value, k) => {
+      expect(Math.abs(channels[k].mean - value)).toBeLessThan(2);
+    });
   });
 
   it('looks like the PNG of the same sheet, drawn by another hand', async () => {

@@ -52,7 +52,7 @@ export async function writeOpenRaster(
       zip.addReadStreamLazy(name, stored, (take) => {
         const { widthPx, heightPx } = picture;
         const png: AnyPictureFile = { widthPx, heightPx, ...layer, format: 'png' };
-        take(null, Readable.from(pngPieces(path, png, picture, signal)));
+        take(null, inStepWith(zip, pngPieces(path, png, picture, signal)));
       });
     for (const layer of picture.layers) add(layerFile(layer), layer);
     add('mergedimage.png', picture.composed);
@@ -67,10 +67,17 @@ export async function writeOpenRaster(
   }
 }
 
-/** Moves what the zip gives into the file; a layer that cannot be packed ends it. */
+/** A stream that ends with the zip, and the zip with it: of itself the zip sees no failure of what it reads. */
+function inStepWith(zip: yazl.ZipFile, pieces: AsyncGenerator<Uint8Array>): Readable {
+  const output = zip.outputStream as Readable;
+  const source = Readable.from(pieces, { objectMode: false });
+  source.on('error', (failure) => output.destroy(failure));
+  output.once('close', () => source.destroy());
+  return source;
+}
+
 async function takeAll(zip: yazl.ZipFile, file: UnfinishedFile, signal?: AbortSignal): Promise<void> {
   const output = zip.outputStream as Readable;
-  // The zip reports what befalls the streams it reads by an event of its own.
   zip.on('error', (failure) => output.destroy(failure));
   for await (const piece of output) await file.append(piece as Uint8Array, signal);
 }

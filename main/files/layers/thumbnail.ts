@@ -17,13 +17,14 @@ export async function thumbnailPng(
     pixels instanceof SpilledPixels
       ? sharp(pixels.file.path, { limitInputPixels: false, sequentialRead: true, ignoreIcc: true })
       : sharp(pixels, { raw: { width: widthPx, height: heightPx, channels }, limitInputPixels: false });
-  const is16Bit =
-    pixels instanceof SpilledPixels ? pixels.bytesPerSample === 2 : pixels.BYTES_PER_ELEMENT === 2;
-  const fitted = whole.resize(longestEdgePx, longestEdgePx, { fit: 'inside', withoutEnlargement: true });
-  const small = await packed(is16Bit ? fitted.toColourspace('rgb16') : fitted, signal);
+  // Down to 8 bits without a profile: with one, the library goes through another space at 16.
+  const fitted = whole
+    .resize(longestEdgePx, longestEdgePx, { fit: 'inside', withoutEnlargement: true })
+    .toColourspace('srgb');
+  const small = await packed(fitted, signal);
   // Now that it is small it is told its profile, through which the library goes to sRGB.
   const described = Buffer.concat(pngWithParts(small, { iccProfile }));
-  return packed(sharp(described).toColourspace('srgb'), signal);
+  return packed(sharp(described).withIccProfile('srgb'), signal);
 }
 
 function packed(image: Sharp, signal?: AbortSignal): Promise<Buffer> {
