@@ -125,7 +125,7 @@ async function takeStates(page, keep) {
   await point('IV');
   await card.getByRole('textbox', { name: 'Branch' }).fill('for the cover');
   await card.getByRole('textbox', { name: 'Branch' }).press('Enter');
-  await page.mouse.move(400, 500);
+  await page.mouse.move(400, 450);
   await page.keyboard.press('b');
   await typeValue(page, 'Hold', '0.5');
   await page.keyboard.press('k');
@@ -134,7 +134,7 @@ async function takeStates(page, keep) {
   await point('III');
   await keep('states-card');
   await card.getByRole('combobox').selectOption({ index: 2 });
-  await page.mouse.move(400, 500);
+  await page.mouse.move(400, 450);
   await page.locator('.compare-table').waitFor();
   await settled(page);
   await keep('states-compare');

@@ -8,7 +8,7 @@ import { forgetPresetPictures, paintPresetPictures } from '../presets/presetPict
 import { currentLook, type Look, lookStore, strataBottomUp, strengthOf } from '../state/lookStore.ts';
 import { comparisonStore } from '../state/memoryStore.ts';
 import { paintStore } from '../state/paintStore.ts';
-import { photoStore } from '../state/photoStore.ts';
+import { photoStore, sessionStore } from '../state/photoStore.ts';
 import { placedViewStore, type ViewState, viewStore } from '../state/viewStore.ts';
 import { lookOfSide } from '../states/comparing.ts';
 
@@ -102,14 +102,22 @@ export function startEaselWork(): void {
     }));
   director.onShown = showSoon;
   leftDirector.onShown = showSoon;
-  director.onSettled = () => {
+  const paintSmall = () => {
     const photo = photoStore.get();
     if (photo) paintPresetPictures(photo.photoId, currentLook()?.printLongEdgeMm);
   };
+  director.onSettled = paintSmall;
+  // A preset that was just made has no picture yet.
+  sessionStore.subscribe(() => {
+    if (paintStore.get().busy === 'no') paintSmall();
+  });
+  let lastPhotoId: string | undefined;
   photoStore.subscribe(() => {
+    const photo = photoStore.get();
+    if (photo?.photoId !== lastPhotoId) forgetPresetPictures();
+    lastPhotoId = photo?.photoId;
     placeStage();
-    director.setPhoto(photoStore.get());
-    if (!photoStore.get()) forgetPresetPictures();
+    director.setPhoto(photo);
     showSoon();
   });
   const layLooks = () => {

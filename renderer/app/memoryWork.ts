@@ -102,7 +102,7 @@ export function layPreset(preset: string, title: string): Promise<void> {
 }
 
 export function repaintWithEngine(): Promise<void> {
-  return hostStep("Repaint with today's engine", () => host.call('repaintWithEngine', { photoId: photoId! }));
+  return hostStep('Repaint with today’s engine', () => host.call('repaintWithEngine', { photoId: photoId! }));
 }
 
 /** The look of another photo's recipe, as its file holds it. */

@@ -49,11 +49,11 @@ export async function restorePreset(binId: string): Promise<void> {
   await run(() => host.call('restorePreset', { binId }));
 }
 
-/** Writes a preset as a file to hand on, into a folder that may be written to. */
-export async function handOnPreset(name: string, title: string, folder: string): Promise<void> {
+/** Writes presets into one file to hand on, in a folder that may be written to. */
+export async function handOnPresets(names: string[], title: string, folder: string): Promise<void> {
   try {
     const fileName = `${title.replaceAll(/[\\/:*?"<>|]/g, ' ')}.oxgall-presets.json`;
-    const { path } = await host.call('exportPresets', { names: [name], folder, fileName });
+    const { path } = await host.call('exportPresets', { names, folder, fileName });
     addNotice(`Written to ${path}.`);
   } catch (error) {
     complain(error);

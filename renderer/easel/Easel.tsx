@@ -45,7 +45,11 @@ export function Easel({ photo, look }: { photo: OpenedPhoto; look: Look }) {
     <main className="easel" ref={room}>
       <Stage photo={photo} canvasHost={holdPicture} />
       <Section photo={photo} look={look} canvasHost={holdSection} />
-      {comparison ? <ComparePage comparison={comparison} /> : <Panel photo={photo} look={look} />}
+      {comparison ? (
+        <ComparePage key={JSON.stringify([comparison.left, comparison.right])} comparison={comparison} />
+      ) : (
+        <Panel photo={photo} look={look} />
+      )}
     </main>
   );
 }

@@ -1,4 +1,5 @@
-import { host, isUnwanted } from '../host/host.ts';
+import type { PresetOffer } from '../../main/host/api/memoryCommands.ts';
+import { host } from '../host/host.ts';
 import { sessionStore } from '../state/photoStore.ts';
 import { createStore } from '../state/store.ts';
 
@@ -6,27 +7,30 @@ import { createStore } from '../state/store.ts';
 export const presetPictureStore = createStore<ReadonlyMap<string, ImageData>>(new Map());
 
 const longEdgePx = 220;
-let work: AbortController | null = null;
-let paintedFor = '';
+let work: { abort: AbortController; key: string } | null = null;
+/** What each picture in the store was painted from. */
+let painted = new Map<string, string>();
 
-/** Paints them one after another while the easel rests; a picture already painted stays. */
+/** Paints those that are missing, one after another, while the easel rests. */
 export function paintPresetPictures(photoId: string, printLongEdgeMm: number | undefined): void {
   const key = `${photoId}|${printLongEdgeMm}`;
-  if (key === paintedFor && work) return;
-  if (key !== paintedFor) {
-    work?.abort();
-    work = null;
-    if (!paintedFor.startsWith(`${photoId}|`)) presetPictureStore.set(new Map());
-    paintedFor = key;
-  }
-  const abort = new AbortController();
-  work = abort;
-  void paintInTurn(photoId, printLongEdgeMm, abort.signal);
+  if (work?.key === key) return;
+  work?.abort.abort();
+  const mine = { abort: new AbortController(), key };
+  work = mine;
+  void paintInTurn(photoId, printLongEdgeMm, mine.abort.signal).finally(() => {
+    if (work === mine) work = null;
+  });
+}
+
+function sourceOf({ states }: PresetOffer, printLongEdgeMm: number | undefined): string {
+  return `${states.at(-1)?.id}|${printLongEdgeMm}`;
 }
 
 async function paintInTurn(photoId: string, printLongEdgeMm: number | undefined, signal: AbortSignal) {
   for (const preset of sessionStore.get()?.presets ?? []) {
-    if (signal.aborted) return;
+    const source = sourceOf(preset, printLongEdgeMm);
+    if (painted.get(preset.name) === source) continue;
     try {
       const { header, planes } = await host.callForFrame(
         'paintSmallPicture',
@@ -36,18 +40,19 @@ async function paintInTurn(photoId: string, printLongEdgeMm: number | undefined,
       if (signal.aborted) return;
       const pixels = new Uint8ClampedArray(planes.rgba as Uint8Array);
       const picture = new ImageData(pixels, header.widthPx, header.heightPx);
+      painted.set(preset.name, source);
       presetPictureStore.update((pictures) => new Map(pictures).set(preset.name, picture));
-    } catch (error) {
+    } catch {
       // A preset without its picture can still be chosen; the next pause tries again.
-      if (!isUnwanted(error)) work = null;
       return;
     }
   }
 }
 
+/** Another photo comes to the easel, or none. */
 export function forgetPresetPictures(): void {
-  work?.abort();
+  work?.abort.abort();
   work = null;
-  paintedFor = '';
+  painted = new Map();
   presetPictureStore.set(new Map());
 }

@@ -8,6 +8,8 @@ const placeKeys: readonly { keys: string; does: string }[] = [
   { keys: 'Arrows, on the cut’s handle', does: 'Move the cut; with Shift, farther' },
   { keys: 'Arrows, on a band’s edge', does: 'Change its strength' },
   { keys: 'Shift and Enter, on a band’s name', does: 'Lift the band off, or lay it down again' },
+  { keys: 'Arrows, Home, End, on a state', does: 'Walk the thread; Tab goes into the state’s card' },
+  { keys: 'Escape, on a state', does: 'Close its card' },
   { keys: 'Delete, on a control', does: 'Back to the preset’s value' },
   { keys: 'Up and Down, in a value', does: 'One step; with Shift, ten' },
 ];
@@ -46,7 +48,8 @@ export function KeysSheet() {
         <p className="keys-mouse">
           With the mouse: the wheel zooms at the pointer, a drag moves the picture; scroll over a band or pull
           its edge to change its strength; Shift and click its name to lift it; double click a control to go
-          back to the preset’s value.
+          back to the preset’s value. Point at a state to see it, double click it to return to it, drag it
+          onto the picture to compare; drop a recipe file on the picture to take its look.
         </p>
       </section>
     </Dialog>

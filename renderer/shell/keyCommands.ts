@@ -8,8 +8,7 @@ import { chooseStratum, dialogStore, panelStore } from '../state/panelStore.ts';
 import { photoStore } from '../state/photoStore.ts';
 import { changeView, viewStore } from '../state/viewStore.ts';
 import { endComparing, toggleFlicker } from '../states/comparing.ts';
-import { threadCallStore } from '../states/StatesThread.tsx';
-import { keepingStore } from '../states/ThreadRow.tsx';
+import { keepingStore, threadCallStore } from '../states/threadCalls.ts';
 
 /** A key that works wherever nothing is being typed. */
 export interface KeyCommand {
@@ -77,7 +76,7 @@ export const keyCommands: readonly KeyCommand[] = [
     does: 'Keep the easel as a new state',
     run: () => keepingStore.set(true),
   },
-  { keys: ['t'], shown: 'T', does: 'The states: arrows walk, Enter opens', run: focusThread },
+  { keys: ['t'], shown: 'T', does: 'To the states; the arrows walk along them', run: focusThread },
   { keys: ['v'], shown: 'V', does: 'Let two compared states take turns', run: toggleFlicker },
   { keys: ['p'], shown: 'P', does: 'Presets', run: () => panelStore.set('presets') },
   { keys: ['g'], shown: 'G', does: 'Controls of the ground', run: () => chooseStratum('ground') },

@@ -1,8 +1,8 @@
-import { useEffect } from 'react';
+import { useEffect, useRef } from 'react';
 import { differences } from '../../core/presets/differences.ts';
 import { stratumName } from '../state/lookStore.ts';
 import type { Comparison } from '../state/memoryStore.ts';
-import { endComparing, lookOfSide, nameOfSide, stateOfSide, toggleFlicker, turnOver } from './comparing.ts';
+import { endComparing, lookOfSide, nameOfSide, toggleFlicker, turnOver, wordsOfSide } from './comparing.ts';
 
 const turnEveryMs = 800;
 
@@ -13,27 +13,34 @@ export function ComparePage({ comparison }: { comparison: Comparison }) {
   const before = lookOfSide(left);
   const after = lookOfSide(right);
   const rows = before && after ? differences(before.parameters, after.parameters) : [];
+  const page = useRef<HTMLElement>(null);
+  // Keys go on from here, and the card that was open makes room.
+  useEffect(() => page.current?.focus(), []);
   return (
     <aside className="panel" aria-label="Comparison">
-      <section className="panel-page compare-page" aria-labelledby="compare-name">
+      <section ref={page} className="panel-page compare-page" aria-labelledby="compare-name" tabIndex={-1}>
         <h2 id="compare-name">
           {nameOfSide(left)} <span className="compare-against">against</span> {nameOfSide(right)}
         </h2>
-        <p className="panel-sentence">
-          {noteOf(left)} {noteOf(right)}
-        </p>
-        <div className="desk-words">
-          <button type="button" className="plain-button" aria-pressed={isFlickering} onClick={toggleFlicker}>
+        <dl className="compare-sides">
+          <SideWords where="left" side={left} />
+          <SideWords where="right" side={right} />
+        </dl>
+        <div className="compare-ways">
+          <button
+            type="button"
+            className="quiet-button"
+            aria-pressed={isFlickering}
+            title="One after the other in the same place (V)"
+            onClick={toggleFlicker}
+          >
             Let them take turns
           </button>
           {isFlickering && (
-            <button type="button" className="plain-button" onClick={turnOver}>
+            <button type="button" className="quiet-button" onClick={turnOver}>
               Turn over
             </button>
           )}
-          <button type="button" className="quiet-button" title="Escape" onClick={endComparing}>
-            Back to the easel
-          </button>
         </div>
         {rows.length === 0 ? (
           <p className="panel-sentence">They are painted alike.</p>
@@ -60,14 +67,25 @@ export function ComparePage({ comparison }: { comparison: Comparison }) {
             </tbody>
           </table>
         )}
+        <button type="button" className="ink-button compare-end" title="Escape" onClick={endComparing}>
+          Back to the easel
+        </button>
       </section>
     </aside>
   );
 }
 
-function noteOf(side: Comparison['left']): string {
-  const note = stateOfSide(side)?.note;
-  return note ? `${nameOfSide(side)}: ${note}.` : '';
+function SideWords({ where, side }: { where: string; side: Comparison['left'] }) {
+  const words = wordsOfSide(side);
+  return (
+    <div>
+      <dt>{where}</dt>
+      <dd>
+        {nameOfSide(side)}
+        {words && `, ${words}`}
+      </dd>
+    </div>
+  );
 }
 
 /** By the clock, unless motion is unwelcome: then they are turned over by hand. */

@@ -28,9 +28,9 @@ export function MemorySign({ memory }: { memory: PhotoMemory }) {
   if (olderEngine)
     return (
       <p className="memory-sign">
-        Kept by engine {olderEngine.keptBy}; today's is {olderEngine.today}.
+        Kept by engine {olderEngine.keptBy}; today’s is {olderEngine.today}.
         <button type="button" className="plain-button" onClick={() => void repaintWithEngine()}>
-          Repaint with today's engine
+          Repaint with today’s engine
         </button>
       </p>
     );

@@ -1,22 +1,21 @@
-import { type FormEvent, useState } from 'react';
+import { type FormEvent, useEffect, useState } from 'react';
 import { parameterKeys } from '../../core/parameters/table.ts';
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { keepAsState } from '../app/memoryWork.ts';
 import type { Look } from '../state/lookStore.ts';
 import { memoryStore } from '../state/memoryStore.ts';
 import { panelStore } from '../state/panelStore.ts';
-import { createStore, useStore } from '../state/store.ts';
+import { useStore } from '../state/store.ts';
 import { MemorySign } from './MemorySign.tsx';
 import { StatesThread } from './StatesThread.tsx';
-
-/** The small form that a state is kept by is open. */
-export const keepingStore = createStore(false);
+import { keepingStore } from './threadCalls.ts';
 
 /** Under the headline: the preset, the thread of its states on this photo, and how a new one is kept. */
 export function ThreadRow({ photo, look }: { photo: OpenedPhoto; look: Look }) {
   const memory = useStore(memoryStore);
   const history = memory?.recipe.histories.find(({ preset }) => preset === look.presetId);
   if (!memory || !history) return <div className="thread-row" />;
+  const isReadOnly = memory.access === 'readOnly';
   const hasUnkeptWork = parameterKeys.some((key) => look.parameters[key] !== look.presetParameters[key]);
   return (
     <nav className="thread-row" aria-label="States">
@@ -28,9 +27,15 @@ export function ThreadRow({ photo, look }: { photo: OpenedPhoto; look: Look }) {
       >
         {history.title}
       </button>
-      <StatesThread history={history} look={look} photo={photo} hasUnkeptWork={hasUnkeptWork} />
+      <StatesThread
+        history={history}
+        look={look}
+        photo={photo}
+        hasUnkeptWork={hasUnkeptWork}
+        isReadOnly={isReadOnly}
+      />
       <MemorySign memory={memory} />
-      <KeepForm hasUnkeptWork={hasUnkeptWork} isReadOnly={memory.access === 'readOnly'} />
+      <KeepForm hasUnkeptWork={hasUnkeptWork} isReadOnly={isReadOnly} />
     </nav>
   );
 }
@@ -50,7 +55,8 @@ function KeepForm({ hasUnkeptWork, isReadOnly }: { hasUnkeptWork: boolean; isRea
     void keepAsState(note.trim());
     close();
   };
-  if (!isOpen)
+  useEffect(() => () => keepingStore.set(false), []);
+  if (!isOpen || isReadOnly)
     return (
       <button
         type="button"

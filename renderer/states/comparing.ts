@@ -53,3 +53,12 @@ export function nameOfSide(side: ComparedSide): string {
   const state = stateOfSide(side);
   return state ? `State ${toRoman(state.number)}` : 'The easel';
 }
+
+/** What is said of a side besides its name. */
+export function wordsOfSide(side: ComparedSide): string {
+  const state = stateOfSide(side);
+  if (!state) return side.kind === 'easel' ? 'as it is now' : '';
+  const histories = memoryStore.get()?.recipe.histories ?? [];
+  const margin = histories.map(({ margins }) => margins[state.id]?.note).find((note) => note);
+  return margin ?? state.note;
+}

@@ -1,9 +1,20 @@
 import type { State } from '../../core/presets/state.ts';
 
+/*
+ * The thread is laid out in pixels of a window whose type is 14 px high. It is shown in rem, so that it grows with
+ * the type.
+ */
+export const rootPx = 14;
+
 /** Distance of two states on the thread. */
 export const pitchPx = 46;
 /** Room before the first and after the last. */
 export const marginPx = 26;
+
+/** A length of the thread for a style. */
+export function toRem(px: number): string {
+  return `${px / rootPx}rem`;
+}
 
 /** A state on the thread. */
 export interface PlacedState {
