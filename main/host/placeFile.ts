@@ -1,13 +1,10 @@
-import { randomUUID } from 'node:crypto';
-import { link, lstat, readdir, rename, rm, stat } from 'node:fs/promises';
+import { link, lstat, rename, rm } from 'node:fs/promises';
 import { basename, dirname, extname, join } from 'node:path';
 import { FileError } from '../files/fileError.ts';
 import { fileErrorFrom } from '../files/systemErrors.ts';
+import { removeAbandoned, temporaryPath } from '../files/unfinishedFile.ts';
 import { flushFolder } from './flushFolder.ts';
 
-const partPattern = /^\.oxgall-[0-9a-f-]{36}\.part$/;
-/** A part this old belongs to a program that was ended in the middle of writing it. */
-const stalePartMs = 60 * 60 * 1000;
 const maximumNumber = 9999;
 
 /**
@@ -61,8 +58,8 @@ async function withPart(
   place: (part: string) => Promise<string>,
 ): Promise<string> {
   const folder = dirname(target);
-  const part = join(folder, `.oxgall-${randomUUID()}.part`);
-  await clearStaleParts(folder);
+  const part = temporaryPath(folder);
+  await removeAbandoned(folder);
   try {
     await write(part);
     const path = await place(part);
@@ -104,12 +101,4 @@ async function isTaken(path: string): Promise<boolean> {
 
 function allTaken(target: string): FileError {
   return new FileError(target, 'this name and all its numbers are taken', 'Choose another name.');
-}
-
-async function clearStaleParts(folder: string): Promise<void> {
-  const names = await readdir(folder).catch(() => [] as string[]);
-  for (const name of names.filter((each) => partPattern.test(each))) {
-    const facts = await stat(join(folder, name)).catch(() => null);
-    if (facts && Date.now() - facts.mtimeMs > stalePartMs) await rm(join(folder, name), { force: true });
-  }
 }
