@@ -2,6 +2,7 @@ import { engineVersion } from '../../core/engineVersion.ts';
 import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { planBody } from '../../core/pipeline/bodyPlan.ts';
 import { createEngine } from '../engine/paintEngine.ts';
+import type { LayersKind } from '../files/layers/writeLayers.ts';
 import { outputFormatFor } from '../files/outputFormat.ts';
 import { defaultOutputPath } from '../files/outputPath.ts';
 import { type PaintedFile, paintToFile } from '../painting/paintToFile.ts';
@@ -18,6 +19,7 @@ const options = {
   out: { type: 'string' },
   depth: { type: 'string' },
   'print-long-edge': { type: 'string' },
+  layers: { type: 'string' },
   keep: { type: 'boolean' },
   workers: { type: 'string' },
   json: { type: 'boolean' },
@@ -38,6 +40,10 @@ export const paintCommand: Command = {
     [
       '--print-long-edge MM',
       `Long edge of the print, for lengths in mm; the recipe's, or ${defaultPrintLongEdgeMm}, unless given.`,
+    ],
+    [
+      '--layers ora|tiff',
+      'Writes the strata too, beside the painting: one OpenRaster file, or a folder of 16-bit TIFFs.',
     ],
     ['--keep', "Notes what was painted in the photo's recipe, which is made where there is none."],
     ['--workers N', 'Worker threads; one for each processor unless given.'],
@@ -66,6 +72,7 @@ async function paint(words: string[]): Promise<number> {
     20_000,
   );
   const askedDepth = readDepth(read.values.depth);
+  const layers = readLayers(read.values.layers);
   const named = read.values.out;
   const out = named ?? (await defaultOutputPath(photoPath, 'png'));
   const format = outputFormatFor(out);
@@ -76,7 +83,7 @@ async function paint(words: string[]): Promise<number> {
   const starting = createEngine({ workers });
   starting.catch(() => undefined);
   try {
-    const order = { parameters, out, format, depth: askedDepth, printLongEdgeMm };
+    const order = { parameters, out, format, depth: askedDepth, printLongEdgeMm, layers };
     const painted = await paintToFile(starting, photoPath, order, {
       onProgress: (fraction01, stage) => progress.update(0.05 + 0.95 * fraction01, stage),
     });
@@ -88,6 +95,7 @@ async function paint(words: string[]): Promise<number> {
     report(read.values.json === true, {
       photo: photoPath,
       output: painted.path,
+      layers: painted.layersPath,
       width: widthPx,
       height: heightPx,
       depth: painted.depth,
@@ -132,6 +140,11 @@ function readDepth(text: string | undefined): 8 | 16 | undefined {
   return text === '8' ? 8 : 16;
 }
 
+function readLayers(text: string | undefined): LayersKind | undefined {
+  if (text === undefined || text === 'ora' || text === 'tiff') return text;
+  throw new UsageError(`Expected ora or tiff for --layers, received ${text}`);
+}
+
 function roundAll<T extends Record<string, number>>(times: T): T {
   return Object.fromEntries(Object.entries(times).map(([key, ms]) => [key, Math.round(ms * 10) / 10])) as T;
 }
@@ -140,6 +153,7 @@ interface PaintReport {
   [detail: string]: unknown;
   photo: string;
   output: string;
+  layers: string | null;
   width: number;
   height: number;
   milliseconds: { total: number };
@@ -153,5 +167,6 @@ function report(asJson: boolean, painted: PaintReport): void {
   }
   for (const remark of painted.remarks) process.stderr.write(`${remark}\n`);
   const seconds = (painted.milliseconds.total / 1000).toFixed(1);
+  if (painted.layers) process.stdout.write(`${painted.layers}\n`);
   process.stdout.write(`${painted.output}  ${painted.width} × ${painted.height} px in ${seconds} s\n`);
 }

@@ -1,8 +1,11 @@
+import { layerStack } from '../../core/composition/layerStack.ts';
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { Engine, EnginePhoto, StageTimes } from '../engine/engineApi.ts';
+import { type LayersKind, layersBeside, layersDepth, writeLayers } from '../files/layers/writeLayers.ts';
 import { assertSizeFits, outputDepth } from '../files/outputFormat.ts';
 import type { AnyPictureFile, OutputFormat, PhotoFile } from '../files/photoFile.ts';
-import { paintPixels } from './paintPixels.ts';
+import { type LayeredPixels, paintLayered } from './paintLayered.ts';
+import { type PaintedPixels, paintPixels } from './paintPixels.ts';
 import { assertRoomToPaint } from './room.ts';
 
 /** A photo that was read and is held by an engine; its own pixels are not needed any more. */
@@ -22,6 +25,8 @@ export interface PaintingOrder {
   /** 1…100, for JPEG and WebP. */
   quality?: number;
   printLongEdgeMm: number;
+  /** Writes the strata too, beside the picture and under its name, in the photo's own colours. */
+  layers?: LayersKind;
 }
 
 export type WritePicture = (
@@ -49,6 +54,8 @@ export interface DeliveryOptions {
 /** A painting that was written. */
 export interface DeliveredPainting {
   path: string;
+  /** Of the strata, where they were asked for. */
+  layersPath: string | null;
   widthPx: number;
   heightPx: number;
   depth: 8 | 16;
@@ -60,6 +67,8 @@ export interface DeliveredPainting {
 
 /** Share of a delivery's time that painting takes; encoding and writing report nothing in between. */
 const paintShare01 = 0.9;
+/** Where the picture is written and its layers are not. */
+const layersFrom01 = 0.93;
 
 /**
  * Paints a held photo at full resolution and writes it: the one way from photo to file, whoever asks.
@@ -76,16 +85,13 @@ export async function deliverPainting(
   const depth = outputDepth(order.format, order.depth ?? file.depth);
   // Found out before the painting: of a very large picture that takes minutes.
   assertSizeFits(order.out, file, order.format);
-  if (enginePhoto.isReadByRows) await assertRoomToPaint(order.out, { ...file, depth, format: order.format });
-  const painted = await paintPixels(
-    engine,
-    enginePhoto,
-    { ...order, depth },
-    {
-      signal,
-      onProgress: onProgress && ((fraction01, stage) => onProgress(paintShare01 * fraction01, stage)),
-    },
-  );
+  if (enginePhoto.isReadByRows) {
+    const layers = order.layers
+      ? layerStack(order.parameters, file, layersDepth(order.layers, depth))
+      : undefined;
+    await assertRoomToPaint(order.out, { ...file, depth, format: order.format, layers });
+  }
+  const painted = await paint(engine, enginePhoto, { ...order, depth }, { signal, onProgress });
   try {
     signal?.throwIfAborted();
     onProgress?.(paintShare01, 'writing');
@@ -102,12 +108,41 @@ export async function deliverPainting(
       },
       signal,
     );
+    let layersPath: string | null = null;
+    if (order.layers && 'layers' in painted) {
+      onProgress?.(layersFrom01, 'writing');
+      const { layers: kind, parameters } = order;
+      const composed = { channels, pixels };
+      const { layers } = painted;
+      const layered = { widthPx, heightPx, layers, composed, parameters, iccProfile, densityPpi };
+      const write = (at: string) => writeLayers(at, layered, kind, { signal });
+      layersPath = await place(layersBeside(path, kind), write, signal);
+    }
     onProgress?.(1, 'writing');
     const times = { ...painted.times, encodeMs: performance.now() - startMs };
-    return { path, widthPx, heightPx, depth, pixelsSha256, times, remarks };
+    return { path, layersPath, widthPx, heightPx, depth, pixelsSha256, times, remarks };
   } finally {
     painted.release();
   }
+}
+
+function paint(
+  engine: Engine,
+  photo: EnginePhoto,
+  order: PaintingOrder & { depth: 8 | 16 },
+  { signal, onProgress }: Pick<DeliveryOptions, 'signal' | 'onProgress'>,
+): Promise<PaintedPixels | LayeredPixels> {
+  const { layers, depth } = order;
+  if (!layers)
+    return paintPixels(engine, photo, order, {
+      signal,
+      onProgress: onProgress && ((fraction01, stage) => onProgress(paintShare01 * fraction01, stage)),
+    });
+  const asked = { ...order, layersDepth: layersDepth(layers, depth) };
+  return paintLayered(engine, photo, asked, {
+    signal,
+    onProgress: onProgress && ((fraction01) => onProgress(paintShare01 * fraction01, 'body')),
+  });
 }
 
 async function placeAsNamed(out: string, write: (path: string) => Promise<unknown>): Promise<string> {

@@ -67,17 +67,27 @@ export async function assertRoomToUnpack(
  */
 export async function assertRoomToPaint(
   out: string,
-  painting: Size & { channels: 3 | 4; depth: 8 | 16; format: OutputFormat },
+  painting: Size & {
+    channels: 3 | 4;
+    depth: 8 | 16;
+    format: OutputFormat;
+    layers?: readonly { channels: number; bytesPerSample: number }[];
+  },
   room: Room = machineRoom,
 ): Promise<void> {
-  const { widthPx, heightPx, channels, depth, format } = painting;
+  const { widthPx, heightPx, channels, depth, format, layers = [] } = painting;
   if (format === 'webp') requireMemory(out, 250e6 + widthPx * heightPx * webpBytesAPixel, room);
   const bytes = widthPx * heightPx * channels * (depth / 8);
+  const layerBytes = layers.reduce(
+    (sum, layer) => sum + widthPx * heightPx * layer.channels * layer.bytesPerSample,
+    0,
+  );
   // The compressed file is first written to the temporary folder too, but for a TIFF.
-  await requireSpillSpace(out, format === 'tiff' ? bytes : bytes + compressedShare[format] * bytes, room);
+  const packed = format === 'tiff' ? 0 : compressedShare[format] * bytes;
+  await requireSpillSpace(out, bytes + layerBytes + packed, room);
   const folder = dirname(out);
   const free = await room.diskBytes(folder);
-  const needed = compressedShare[format] * bytes;
+  const needed = compressedShare[format] * bytes + compressedShare.tiff * layerBytes;
   if (free < needed)
     throw new FileError(
       out,
