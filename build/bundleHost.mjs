@@ -12,6 +12,7 @@ const root = join(dirname(fileURLToPath(import.meta.url)), '..');
 const entries = {
   commandLine: 'main/commandLine/commandLine.ts',
   paintWorker: 'main/engine/paintWorker.ts',
+  colourWorker: 'main/colour/colourWorker.ts',
   loopbackShell: 'main/shells/loopbackShell.ts',
   electronShell: 'main/shells/electronShell.ts',
   bench: 'test/benchmarks/bench.ts',
@@ -68,6 +69,7 @@ export async function buildHost() {
     ssr: { noExternal: true, external: ['sharp', 'electron'] },
   });
   await buildPreload();
+  await cp(join(root, 'node_modules/lcms-wasm/dist/lcms.wasm'), join(root, 'dist/main/lcms.wasm'));
   // The demo's generator stays a program of its own: it starts its own threads, and is seldom wanted.
   await cp(join(root, 'build/demoSeries'), join(root, 'dist/demoSeries'), { recursive: true });
   await mkdir(join(root, 'dist/presets'), { recursive: true });

@@ -1,4 +1,5 @@
 import type { Metadata, Sharp } from 'sharp';
+import { rgbProfileOfGrey, wideProfile } from '../../core/colour/matrixProfile.ts';
 import { whyUndecodable } from './decodeFaults.ts';
 import { FileError } from './fileError.ts';
 import { sharp } from './imageLibrary.ts';
@@ -12,6 +13,8 @@ import { openPhoto, type PhotoHeader, readHeader } from './photoHeader.ts';
 export interface ColourPlan {
   /** Numbers kept as stored, or converted by the library through the embedded profile to sRGB. */
   convert: boolean;
+  /** Profile of a CMYK photo that `readPhoto` converts itself, at 16 bits, to a space that holds all its colours. */
+  inkProfile?: Uint8Array;
   iccProfile?: Uint8Array;
   remarks: string[];
 }
@@ -30,10 +33,14 @@ export async function readPhoto(path: string, options: { signal?: AbortSignal } 
   const opened = await openPhoto(path, { wholeFile: true, signal });
   const header = await readHeader(path, opened, signal);
   const colours = planColours(header.metadata);
-  const decoded = await decode({ path, source: opened.source, header, colours }, signal);
+  const decoded = colours.inkProfile
+    ? await decodeInks({ path, source: opened.source, header, colours }, colours.inkProfile, signal)
+    : await decode({ path, source: opened.source, header, colours }, signal);
   const upright = await turnUpright(decoded, header.orientation, signal);
+  const facts = factsOf(path, header, colours, decoded.remarks);
   return {
-    ...factsOf(path, header, colours, decoded.remarks),
+    ...facts,
+    ...(colours.inkProfile && { depth: 16 as const, iccProfile: wideProfile() }),
     widthPx: upright.widthPx,
     heightPx: upright.heightPx,
     channels: decoded.channels,
@@ -64,20 +71,26 @@ export function planColours(metadata: Metadata): ColourPlan {
   const embedded = metadata.icc && asPlainBytes(metadata.icc);
   const space = metadata.space;
   const described = embedded && profileSpace(embedded);
+  if (space === 'cmyk' && described === 'CMYK')
+    return {
+      convert: true,
+      inkProfile: embedded,
+      remarks: [
+        'The photo is CMYK: converted through its embedded profile to an RGB space that holds its colours.',
+      ],
+    };
   if (space === 'cmyk') {
-    const through =
-      described === 'CMYK'
-        ? 'its embedded profile'
-        : 'a general printing profile, as it carries none of its own';
+    const through = 'a general printing profile, as it carries none of its own';
     return { convert: true, remarks: [`The photo is CMYK: converted to sRGB through ${through}.`] };
   }
   if (space === 'lab' || space === 'labs')
     return { convert: true, remarks: ['The photo is in Lab colours: converted to sRGB.'] };
   if (space === 'b-w' || space === 'grey16') {
     const remarks = ['The photo is grey: painted as RGB with equal red, green and blue.'];
-    if (embedded)
-      remarks.push('Its grey profile does not fit RGB and is not carried on; the numbers are kept.');
-    return { convert: false, remarks };
+    const iccProfile = (described === 'GRAY' && embedded && rgbProfileOfGrey(embedded)) || undefined;
+    if (iccProfile) remarks.push('Its grey profile is carried on as one for RGB with the same greys.');
+    else if (embedded) remarks.push('Its profile does not fit a grey picture: left out, sRGB assumed.');
+    return { convert: false, iccProfile, remarks };
   }
   if (embedded && described !== 'RGB ')
     return {
@@ -143,6 +156,51 @@ export async function decodeWith<T>(
       signal?.throwIfAborted();
       throw whyUndecodable(photo.path, failure);
     }
+  }
+}
+
+/** The ink amounts of a CMYK photo as they are in the file, then through its profile to wide RGB of 16 bits. */
+async function decodeInks(photo: PhotoToDecode, inkProfile: Uint8Array, signal?: AbortSignal) {
+  const { path, header } = photo;
+  const { result, remarks } = await decodeWith(
+    { ...photo, colours: { ...photo.colours, convert: false } },
+    (image) => {
+      const inks = image.pipelineColourspace('cmyk').toColourspace('cmyk');
+      const raw = header.depth === 16 ? inks.raw({ depth: 'ushort' }) : inks.raw();
+      return raw.toBuffer({ resolveWithObject: true });
+    },
+    signal,
+  );
+  const { data, info } = result;
+  if (info.channels !== 4)
+    throw new FileError(path, 'is CMYK with further channels', 'Export it without alpha or spot colours.');
+  const { finishOnThread } = await import('../colour/colourThread.ts');
+  const conversion = {
+    from: inkProfile,
+    to: wideProfile(),
+    intent: 'relative',
+    blackPointCompensation: false,
+  } as const;
+  try {
+    const { pixels } = await finishOnThread(
+      {
+        widthPx: info.width,
+        heightPx: info.height,
+        pixels: header.depth === 16 ? asSamples16(data) : asPlainBytes(data),
+        hasAlpha: false,
+        space: 'CMYK',
+        conversion,
+        bleedPx: 0,
+        depth: 16,
+      },
+      signal,
+    );
+    return { pixels, widthPx: info.width, heightPx: info.height, channels: 3 as const, remarks };
+  } catch (failure) {
+    if (!(failure instanceof RangeError)) throw failure;
+    throw new FileError(path, `its colour profile cannot be used (${failure.message})`, 'Export it as RGB.', {
+      cause: failure,
+    });
   }
 }
 
