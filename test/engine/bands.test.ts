@@ -139,9 +139,9 @@ describe.each(looks)('bands of %s', (_name, look) => {
           const where = `engine ${i}, ${bandRows} rows a band`;
           const fromRows = await paintedInBands(engine, held, parameters, bandRows);
           expect(sameSamples(fromRows, expected.pixels), where).toBe(true);
-          const fromMemory = await paintedInBands(engine, inMemory, parameters, bandRows);
-          expect(sameSamples(fromMemory, expected.pixels), `${where}, photo in memory`).toBe(true);
         }
+        const fromMemory = await paintedInBands(engine, inMemory, parameters, 61);
+        expect(sameSamples(fromMemory, expected.pixels), `engine ${i}, photo in memory`).toBe(true);
         held.close();
         inMemory.close();
       }
