@@ -1,4 +1,5 @@
 import type { Engine } from '../engine/engineApi.ts';
+import { assertLayersWritable, layersBeside } from '../files/layers/writeLayers.ts';
 import { assertFormatHolds } from '../files/outputFormat.ts';
 import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
 import { removeAbandonedSpills } from '../files/spillFile.ts';
@@ -41,6 +42,9 @@ export async function paintToFile(
   try {
     // Checked once there is something to paint: a bad photo must leave no trace of a trial file.
     await assertWritable(order.out);
+    const { layers } = order;
+    // Whoever places files has names of their own for what is taken.
+    if (layers && !options.place) await assertLayersWritable(layersBeside(order.out, layers), layers);
     // The painting will be as transparent as the photo: better said now than after minutes.
     if (order.format === 'jpeg') await assertFormatHolds(order.out, photo, signal, 'jpeg');
     painter = await engine;

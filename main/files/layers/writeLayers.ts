@@ -1,7 +1,9 @@
 import { basename, dirname, extname, join } from 'node:path';
+import { assertWritable } from '../outputPath.ts';
+import { refuseForeign } from '../unfinishedFolder.ts';
 import type { LayeredPicture } from './layeredPicture.ts';
 import { writeOpenRaster } from './openRaster.ts';
-import { writeStrataFolder } from './strataFolder.ts';
+import { strataMark, writeStrataFolder } from './strataFolder.ts';
 
 /** An OpenRaster file, or a folder of 16-bit TIFFs. */
 export type LayersKind = 'ora' | 'tiff';
@@ -16,6 +18,15 @@ export function layersBeside(picturePath: string, kind: LayersKind): string {
 /** Bits a sample the layers are kept with. */
 export function layersDepth(kind: LayersKind, pictureDepth: 8 | 16): 8 | 16 {
   return kind === 'tiff' ? 16 : pictureDepth;
+}
+
+/**
+ * Finds out before painting whether layers can be written there; the folder they go to is known to take files.
+ * @throws FileError
+ */
+export async function assertLayersWritable(path: string, kind: LayersKind): Promise<void> {
+  if (kind === 'ora') await assertWritable(path);
+  else await refuseForeign(path, strataMark);
 }
 
 /**
