@@ -5,6 +5,7 @@ import type { Page } from 'playwright-core';
 import sharp from 'sharp';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { seriousFindings } from './axe.ts';
+import { tabTo } from './byKeyboard.ts';
 import { chromiumFound } from './chromium.ts';
 import { keepScreen, type OpenWindow, openWindow, settled } from './openWindow.ts';
 import { writePhotograph } from './photographs.ts';
@@ -359,19 +360,4 @@ async function placeOf(page: Page): Promise<{ scale: number; originX: number; or
   const text = await page.locator('.stage-hold').getAttribute('data-view');
   const [scale, originX, originY] = text!.split(' ').map(Number);
   return { scale, originX, originY };
-}
-
-/** Presses Tab until the element of that name has the focus, as somebody without a mouse would. */
-async function tabTo(page: Page, name: string | RegExp): Promise<void> {
-  for (let press = 0; press < 80; press++) {
-    const focused = await page.evaluate(() => {
-      const element = document.activeElement as HTMLElement | null;
-      const label = element?.getAttribute('aria-label') ?? element?.closest('label')?.textContent;
-      return (label ?? element?.textContent ?? '').trim();
-    });
-    const isThere = typeof name === 'string' ? focused.startsWith(name) : name.test(focused);
-    if (isThere) return;
-    await page.keyboard.press('Tab');
-  }
-  throw new Error(`Expected Tab to reach ${name} within 80 presses`);
 }

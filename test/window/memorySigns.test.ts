@@ -1,0 +1,189 @@
+import { chmod, mkdir, readFile } from 'node:fs/promises';
+import { join } from 'node:path';
+import { describe, expect, it } from 'vitest';
+import { seriousFindings } from './axe.ts';
+import { chromiumFound } from './chromium.ts';
+import { makeLongRecipe, writeRecipe } from './longThread.ts';
+import { keepScreen, settled } from './openWindow.ts';
+import { writePhotograph } from './photographs.ts';
+import {
+  card,
+  holdOf,
+  keepAs,
+  numeral,
+  numeralsOf,
+  presentOf,
+  setHold,
+  thread,
+  untilSaved,
+  usePhotoWindows,
+} from './photoWindow.ts';
+
+describe.skipIf(!chromiumFound.path)('what the window says of a recipe', () => {
+  const room = usePhotoWindows('signs');
+
+  it('leaves a recipe of a newer version as it is, and says so', async () => {
+    const path = await room.freshPhoto();
+    await writeRecipe(path, { ...(await makeLongRecipe(path, 3)), schema: 99 } as never);
+    const before = await readFile(`${path}.oxgall.json`);
+    const window = await room.open({ path });
+    const { page } = window;
+    await page.getByText('Only for looking: a newer Oxgall wrote this recipe.').waitFor();
+    expect(await page.getByRole('button', { name: 'Keep as new state' }).isDisabled()).toBe(true);
+    await setHold(page, '0.8');
+    await page.keyboard.press('k');
+    expect(await page.getByRole('textbox', { name: 'Note of the new state' }).count()).toBe(0);
+    await settled(page);
+    await room.close(window);
+    expect(await readFile(`${path}.oxgall.json`)).toEqual(before);
+  });
+
+  it('keeps both where the recipe was changed elsewhere, and the easel as it is', async () => {
+    const path = await room.freshPhoto();
+    const window = await room.open({ path });
+    const { page } = window;
+    await setHold(page, '0.5');
+    await keepAs(page, 'ours');
+    const ours = await untilSaved(path, ({ histories }) => histories[0].states.length === 2);
+    await writeRecipe(path, await makeLongRecipe(path, 3));
+    await setHold(page, '0.6');
+    await page.getByRole('alert').getByRole('button', { name: 'Keep both' }).click();
+    await expect.poll(() => numeralsOf(page)).toEqual(['I', 'II', 'III', 'IV']);
+    const both = await untilSaved(path, ({ histories }) => histories[0].states.length === 4);
+    expect(both.histories[0].states.map(({ id }) => id)).toContain(ours.histories[0].states[1].id);
+    expect(await holdOf(page)).toBe('0.60');
+    await room.close(window);
+  });
+
+  it('repaints what an older engine kept as a new state, which undo takes off the easel again', async () => {
+    const path = await room.freshPhoto();
+    await writeRecipe(path, await makeLongRecipe(path, 2, '0'));
+    const window = await room.open({ path });
+    const { page } = window;
+    const sign = page.getByText(/^Kept by engine 0; today’s is/);
+    await sign.waitFor();
+    expect(await seriousFindings(page)).toEqual([]);
+    await keepScreen(page, 'states-older-engine');
+    await page.getByRole('button', { name: 'Repaint with today’s engine' }).click();
+    await expect.poll(() => numeralsOf(page)).toEqual(['I', 'II', 'III']);
+    expect(await presentOf(page)).toBe('III');
+    await expect.poll(() => sign.count()).toBe(0);
+    await page.keyboard.press('Control+z');
+    await expect.poll(() => presentOf(page)).toBe('II');
+    await sign.waitFor();
+    expect(await numeralsOf(page)).toEqual(['I', 'II', 'III']);
+    await room.close(window);
+  });
+
+  it('says that the photograph has changed', async () => {
+    const path = await room.freshPhoto();
+    await writeRecipe(path, await makeLongRecipe(path, 2));
+    await writePhotograph(path, 'locomotion-house-cat', 700);
+    const window = await room.open({ path });
+    await window.page.getByText('The photograph has changed since.').waitFor();
+    await room.close(window);
+  });
+
+  it.skipIf(process.getuid?.() === 0 || process.platform === 'win32')(
+    'says where the recipe lies when its folder cannot be written',
+    async () => {
+      const folder = join(room.folder, 'sealed');
+      await mkdir(folder);
+      const path = join(folder, 'ferry-bank.jpg');
+      await writePhotograph(path, 'nagasaki-boats', 700);
+      await chmod(folder, 0o555);
+      try {
+        const window = await room.open({ path });
+        await setHold(window.page, '0.5');
+        await window.page.getByText('The recipe lies elsewhere: this folder cannot be written.').waitFor();
+        await room.close(window);
+      } finally {
+        await chmod(folder, 0o755);
+      }
+    },
+  );
+
+  it('tells the files of every delivery, and which of them are alike to the pixel', async () => {
+    const window = await room.open({ path: await room.freshPhoto(600) });
+    const { page } = window;
+    const deliver = async (name: string) => {
+      await page.keyboard.press('Control+s');
+      await page.getByRole('textbox', { name: /^Name/ }).fill(name);
+      await page.getByRole('button', { name: 'Save', exact: true }).click();
+      await page.getByRole('heading', { name: 'Saved' }).waitFor();
+      await page.keyboard.press('Escape');
+    };
+    await deliver('for-the-client');
+    await deliver('for-the-printer');
+    await thread(page)
+      .getByRole('button', { name: /^State I, .*delivered/ })
+      .hover();
+    const files = card(page, 'I').getByRole('list', { name: 'Delivered files' }).getByRole('listitem');
+    await expect
+      .poll(() => files.allTextContents())
+      .toEqual([
+        expect.stringMatching(/^for-the-client\.png, delivered today at \d\d:\d\d$/),
+        expect.stringMatching(/^for-the-printer\.png, .*, pixel for pixel as for-the-client\.png$/),
+      ]);
+    expect(await seriousFindings(page)).toEqual([]);
+    await room.close(window);
+  });
+});
+
+describe.skipIf(!chromiumFound.path)('a thread of five hundred states', () => {
+  const room = usePhotoWindows('long');
+
+  it('opens hardly later than one, and the keyboard reaches both of its ends', {
+    timeout: 120_000,
+  }, async () => {
+    const short = await room.freshPhoto(700);
+    const long = await room.freshPhoto(700);
+    await writeRecipe(short, await makeLongRecipe(short, 1));
+    await writeRecipe(long, await makeLongRecipe(long, 500));
+    const window = await room.open({ path: short });
+    const { page } = window;
+    const openFor = async (path: string) => {
+      const name = path.split('/').at(-1)!;
+      await page.keyboard.press('Control+o');
+      const row = page.getByRole('button', { name: new RegExp(`^${name}`) });
+      await row.waitFor();
+      const shown = page.evaluate(
+        async (heading) => {
+          const startMs = await new Promise<number>((resolve) =>
+            document.addEventListener('click', () => resolve(performance.now()), { once: true }),
+          );
+          const frame = () => new Promise((resolve) => requestAnimationFrame(resolve));
+          while (document.querySelector('h1')?.textContent !== heading) await frame();
+          while (!document.querySelector('.thread-state')) await frame();
+          return performance.now() - startMs;
+        },
+        name.replace('.jpg', ''),
+      );
+      await row.click();
+      const tookMs = await shown;
+      await settled(page);
+      return tookMs;
+    };
+    const times: Record<'short' | 'long', number[]> = { short: [], long: [] };
+    await openFor(long);
+    for (let round = 0; round < 5; round++) {
+      times.short.push(await openFor(short));
+      times.long.push(await openFor(long));
+    }
+    const median = (values: number[]) => values.toSorted((a, b) => a - b)[values.length >> 1];
+    const laterMs = median(times.long) - median(times.short);
+    process.stdout.write(`500 states open ${laterMs.toFixed(0)} ms later than one\n`);
+    expect(laterMs).toBeLessThanOrEqual(process.env.OXGALL_STRICT ? 100 : 400);
+
+    expect(await presentOf(page)).toBe('D');
+    await page.keyboard.press('t');
+    await expect.poll(() => numeral(page, 'D').evaluate((it) => it === document.activeElement)).toBe(true);
+    await page.keyboard.press('Home');
+    await expect.poll(() => numeral(page, 'I').evaluate((it) => it === document.activeElement)).toBe(true);
+    await card(page, 'I').waitFor();
+    await page.keyboard.press('End');
+    await card(page, 'D').waitFor();
+    await keepScreen(page, 'states-long');
+    await room.close(window);
+  });
+});
