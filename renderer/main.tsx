@@ -15,6 +15,7 @@ import './styles/controls.css';
 import './styles/sheets.css';
 import './styles/presets.css';
 import './styles/states.css';
+import './styles/wall.css';
 import { createRoot } from 'react-dom/client';
 import { startEaselWork } from './app/easelWork.ts';
 import { takeHostEvent } from './app/hostEvents.ts';
@@ -24,6 +25,7 @@ import { listenToHost } from './host/listenToHost.ts';
 import { App } from './shell/App.tsx';
 import { startKeys } from './shell/keyCommands.ts';
 import { sessionStore } from './state/photoStore.ts';
+import { openSeries } from './wall/wallWork.ts';
 
 startEaselWork();
 startTellingWork();
@@ -34,4 +36,5 @@ void listenToHost(takeHostEvent, new AbortController().signal);
 void refreshSession().then(() => {
   const opening = sessionStore.get()?.opening;
   if (opening?.kind === 'photo') void openPhoto(opening.path);
+  if (opening?.kind === 'folder') void openSeries(opening.path);
 });

@@ -11,6 +11,7 @@ import { PaintCommands } from './paintCommands.ts';
 import { Refusal } from './refusal.ts';
 import type { RunningCall } from './runningCalls.ts';
 import { savePainting } from './savePainting.ts';
+import { createRunHandlers } from './series/runHandlers.ts';
 import { createSeriesHandlers } from './series/seriesHandlers.ts';
 
 type Answer<Command> = Command extends { output: infer Output } ? Output : Uint8Array<ArrayBuffer>;
@@ -30,6 +31,7 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
   return {
     ...createMemoryHandlers(state),
     ...createSeriesHandlers(state),
+    ...createRunHandlers(state),
     startSession: () => startSession(state),
     openPhoto: ({ path }, call) => openPhoto(state, path, call),
     awaitPhoto: async ({ photoId }, call) => {

@@ -6,6 +6,9 @@ import { takeProgress } from '../saving/saveWork.ts';
 import { redoLook, undoLook } from '../state/lookStore.ts';
 import { dialogStore } from '../state/panelStore.ts';
 import { photoStore, sessionStore } from '../state/photoStore.ts';
+import { takeProofProgress } from '../wall/proofProgress.ts';
+import { takeRun } from '../wall/runWork.ts';
+import { openSeries, refreshSeries } from '../wall/wallWork.ts';
 import { refreshMemory } from './memoryWork.ts';
 import { closePhoto, openPhoto } from './photoWork.ts';
 
@@ -14,6 +17,7 @@ export function takeHostEvent(event: HostEvent): void {
   switch (event.name) {
     case 'progress':
       takeProgress(event.data);
+      takeProofProgress(event.data);
       return;
     case 'photoClosed':
       // Closed to make room while it stands on the easel: it is opened again, its recipe brings the look back.
@@ -22,6 +26,7 @@ export function takeHostEvent(event: HostEvent): void {
       return;
     case 'openRequested':
       if (event.data.kind === 'photo') void openPhoto(event.data.path);
+      else void openSeries(event.data.path);
       return;
     case 'menu':
       runMenuCommand(event.data.command);
@@ -35,6 +40,12 @@ export function takeHostEvent(event: HostEvent): void {
     case 'memoryChanged':
       void refreshMemory(event.data.photoId);
       return;
+    case 'seriesChanged':
+      void refreshSeries(event.data.seriesId);
+      return;
+    case 'runProgress':
+      takeRun(event.data.seriesId, event.data.run);
+      return;
     case 'photoReady':
       // `awaitPhoto` answers the same.
       return;
@@ -43,7 +54,8 @@ export function takeHostEvent(event: HostEvent): void {
 
 function runMenuCommand(command: MenuCommand): void {
   const atWork = photoStore.get() !== null;
-  if (command === 'openPhoto' || command === 'openFolder') dialogStore.set('open');
+  if (command === 'openPhoto') dialogStore.set('open');
+  else if (command === 'openFolder') dialogStore.set('openFolder');
   else if (command === 'showKeys') dialogStore.set('keys');
   else if (atWork) easelCommands[command]();
 }

@@ -4,6 +4,7 @@ import { changeLook, endLook, startLook } from '../state/lookStore.ts';
 import { addNotice } from '../state/noticeStore.ts';
 import { openingStore, photoStore, sessionStore } from '../state/photoStore.ts';
 import { changeView, viewStore } from '../state/viewStore.ts';
+import { roomStore, seriesStore } from '../wall/wallStore.ts';
 import { followMemory, lookOf, tellWork } from './memoryWork.ts';
 
 let opening: AbortController | null = null;
@@ -20,6 +21,7 @@ export async function openPhoto(path: string): Promise<void> {
     if (abort.signal.aborted) return;
     openingStore.set({ path: null, trouble: null });
     setOnEasel(photo);
+    roomStore.set('easel');
     if (photo.stage === 'quick') await finishDecoding(photo, abort.signal);
   } catch (error) {
     if (abort.signal.aborted || isUnwanted(error)) openingStore.set({ path: null, trouble: null });
@@ -65,6 +67,7 @@ export async function closePhoto(): Promise<void> {
   photoStore.set(null);
   endLook();
   viewStore.update((view) => ({ ...view, split01: null, bare: false }));
+  if (seriesStore.get()) roomStore.set('wall');
   await closeQuietly(photo.photoId);
   await refreshSession();
 }
@@ -79,15 +82,5 @@ export async function refreshSession(): Promise<void> {
     sessionStore.set(await host.call('startSession', {}));
   } catch (error) {
     if (!sessionStore.get()) openingStore.set({ path: null, trouble: troubleOf(error) });
-  }
-}
-
-export async function openDemo(): Promise<void> {
-  openingStore.set({ path: 'demo', trouble: null });
-  try {
-    const demo = await host.call('openDemo', {});
-    if (demo.photos[0]) await openPhoto(demo.photos[0].path);
-  } catch (error) {
-    openingStore.set({ path: null, trouble: troubleOf(error) });
   }
 }

@@ -1,9 +1,10 @@
 import type { Recent, Session } from '../../main/host/api/hostCommands.ts';
-import { openDemo, openPhoto } from '../app/photoWork.ts';
+import { openPhoto } from '../app/photoWork.ts';
 import { host } from '../host/host.ts';
 import { dialogStore } from '../state/panelStore.ts';
 import { openingStore, sessionStore } from '../state/photoStore.ts';
 import { useStore } from '../state/store.ts';
+import { openDemoSeries, openSeries } from '../wall/wallWork.ts';
 import { OpeningSign } from './OpeningSign.tsx';
 
 /** The title page: open a photograph, take up an earlier one, or try the demo. */
@@ -30,9 +31,22 @@ export function FirstScreen() {
           >
             Open a photograph…
           </button>
+          <button
+            type="button"
+            className="quiet-button"
+            disabled={!session || isBusy}
+            onClick={() => dialogStore.set('openFolder')}
+          >
+            Open a folder as a series…
+          </button>
           {session?.demo.available && (
-            <button type="button" className="quiet-button" disabled={isBusy} onClick={() => void openDemo()}>
-              Try the demo: <cite>{session.demo.title}</cite>
+            <button
+              type="button"
+              className="quiet-button"
+              disabled={isBusy}
+              onClick={() => void openDemoSeries()}
+            >
+              Try the demo: <cite>{session.demo.title}</cite>, nine plates
             </button>
           )}
         </div>
@@ -55,7 +69,7 @@ function Earlier({ session, isBusy }: { session: Session; isBusy: boolean }) {
     );
   return (
     <section className="first-earlier" aria-labelledby="earlier-name">
-      <h2 id="earlier-name">Lately on the easel</h2>
+      <h2 id="earlier-name">Lately worked on</h2>
       <ul>
         {session.recents.map((recent) => (
           <RecentRow key={recent.path} recent={recent} isBusy={isBusy} />
@@ -71,6 +85,7 @@ interface RecentRowProps {
 }
 
 function RecentRow({ recent, isBusy }: RecentRowProps) {
+  const isSeries = recent.frames !== undefined;
   return (
     <li className="recent">
       <button
@@ -78,13 +93,16 @@ function RecentRow({ recent, isBusy }: RecentRowProps) {
         className="row-button row-recent"
         disabled={isBusy || !recent.present}
         title={recent.path}
-        onClick={() => void openPhoto(recent.path)}
+        onClick={() => void (isSeries ? openSeries(recent.path) : openPhoto(recent.path))}
       >
         <span className="recent-name">{recent.name}</span>
         <span className="recent-where">
           <bdi>{recent.folder}</bdi>
         </span>
-        <span className="row-note">{recent.present ? dayInWords(recent.openedAt) : 'no longer there'}</span>
+        <span className="row-note">
+          {isSeries && `${recent.frames} frames, `}
+          {recent.present ? dayInWords(recent.openedAt) : 'no longer there'}
+        </span>
       </button>
       <button
         type="button"

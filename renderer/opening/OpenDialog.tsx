@@ -31,6 +31,11 @@ export function OpenDialog() {
           void openPhoto(path);
         }}
       />
+      <div className="dialog-foot">
+        <button type="button" className="quiet-button" onClick={() => dialogStore.set('openFolder')}>
+          A folder as a series instead
+        </button>
+      </div>
     </Dialog>
   );
 }

@@ -1,17 +1,13 @@
 import { useState } from 'react';
-import type {
-  FolderListing,
-  OpenedPhoto,
-  OutputFormatName,
-  SavedPainting,
-} from '../../main/host/api/hostCommands.ts';
+import type { OpenedPhoto, OutputFormatName, SavedPainting } from '../../main/host/api/hostCommands.ts';
 import { host } from '../host/host.ts';
-import { FolderList, sizeInWords } from '../opening/FolderList.tsx';
+import { sizeInWords } from '../opening/FolderList.tsx';
 import { Dialog } from '../shell/Dialog.tsx';
 import type { Look } from '../state/lookStore.ts';
 import { dialogStore } from '../state/panelStore.ts';
 import { sessionStore } from '../state/photoStore.ts';
 import { useStore } from '../state/store.ts';
+import { ChooseFolder, chooseFolder } from './ChooseFolder.tsx';
 import { cancelSave, type SaveState, saveStore, startSave } from './saveWork.ts';
 
 const formats: readonly { value: OutputFormatName; name: string; ending: string; help: string }[] = [
@@ -228,50 +224,4 @@ function Saved({ saved, onClose }: { saved: SavedPainting; onClose: () => void }
       </div>
     </Dialog>
   );
-}
-
-interface ChooseFolderProps {
-  startPath: string;
-  onChosen: (path: string) => void;
-  onCancel: () => void;
-}
-
-function ChooseFolder({ startPath, onChosen, onCancel }: ChooseFolderProps) {
-  const [listing, setListing] = useState<FolderListing | null>(null);
-  return (
-    <Dialog title="Choose a folder" className="open-dialog" onClose={onCancel}>
-      <FolderList startPath={startPath} choose="folder" onFolder={setListing} />
-      {listing && !listing.writable && (
-        <p className="fault" role="alert">
-          Nothing can be saved in {listing.name}. Choose another folder.
-        </p>
-      )}
-      <div className="dialog-foot">
-        <button type="button" className="quiet-button" onClick={onCancel}>
-          Cancel
-        </button>
-        <button
-          type="button"
-          className="ink-button"
-          disabled={!listing?.writable}
-          onClick={() => listing && onChosen(listing.path)}
-        >
-          Save in {listing?.name ?? 'this folder'}
-        </button>
-      </div>
-    </Dialog>
-  );
-}
-
-async function chooseFolder(
-  folder: string,
-  take: (path: string) => void,
-  showList: () => void,
-): Promise<void> {
-  if (!sessionStore.get()?.desktop.fileDialogs) {
-    showList();
-    return;
-  }
-  const { path } = await host.call('chooseWithDialog', { kind: 'folder', folder });
-  if (path) take(path);
 }

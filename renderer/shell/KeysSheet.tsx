@@ -1,4 +1,7 @@
 import { dialogStore } from '../state/panelStore.ts';
+import { useStore } from '../state/store.ts';
+import { wallKeys } from '../wall/wallKeys.ts';
+import { roomStore } from '../wall/wallStore.ts';
 import { Dialog } from './Dialog.tsx';
 import { keyCommands } from './keyCommands.ts';
 
@@ -14,7 +17,15 @@ const placeKeys: readonly { keys: string; does: string }[] = [
   { keys: 'Up and Down, in a value', does: 'One step; with Shift, ten' },
 ];
 
+const wallPlaceKeys: readonly { keys: string; does: string }[] = [
+  { keys: 'Arrows, Home, End', does: 'Walk among the frames' },
+  { keys: 'Shift and arrows', does: 'Choose on the way' },
+  { keys: 'Space', does: 'Choose the frame as well, or no longer' },
+  { keys: 'Enter', does: 'Open the frame on the easel' },
+];
+
 export function KeysSheet() {
+  const isAtWall = useStore(roomStore) === 'wall';
   return (
     <Dialog title="Keys" className="keys-sheet" onClose={() => dialogStore.set('none')}>
       <section
@@ -31,13 +42,13 @@ export function KeysSheet() {
             </tr>
           </thead>
           <tbody>
-            {keyCommands.map(({ shown, does }) => (
+            {(isAtWall ? wallKeys : keyCommands).map(({ shown, does }) => (
               <tr key={does}>
                 <th scope="row">{shown}</th>
                 <td>{does}</td>
               </tr>
             ))}
-            {placeKeys.map(({ keys, does }) => (
+            {(isAtWall ? wallPlaceKeys : placeKeys).map(({ keys, does }) => (
               <tr key={does}>
                 <th scope="row">{keys}</th>
                 <td>{does}</td>
@@ -46,10 +57,9 @@ export function KeysSheet() {
           </tbody>
         </table>
         <p className="keys-mouse">
-          With the mouse: the wheel zooms at the pointer, a drag moves the picture; scroll over a band or pull
-          its edge to change its strength; Shift and click its name to lift it; double click a control to go
-          back to the preset’s value. Point at a state to see it, double click it to return to it, drag it
-          onto the picture to compare; drop a recipe file on the picture to take its look.
+          {isAtWall
+            ? 'With the mouse: a click chooses a frame, with Ctrl another one as well, with Shift all between; a double click opens it on the easel.'
+            : 'With the mouse: the wheel zooms at the pointer, a drag moves the picture; scroll over a band or pull its edge to change its strength; Shift and click its name to lift it; double click a control to go back to the preset’s value. Point at a state to see it, double click it to return to it, drag it onto the picture to compare; drop a recipe file on the picture to take its look.'}
         </p>
       </section>
     </Dialog>

@@ -4,6 +4,7 @@ import { lookStore, redoLook, undoLook } from '../state/lookStore.ts';
 import { dialogStore } from '../state/panelStore.ts';
 import { useStore } from '../state/store.ts';
 import { changeView, viewStore } from '../state/viewStore.ts';
+import { RoomToggle } from '../wall/RoomToggle.tsx';
 import { toggleSplit } from './keyCommands.ts';
 
 /** The photo's name, and what can be done with the whole of it. */
@@ -22,6 +23,7 @@ export function TopBar({ photo }: { photo: OpenedPhoto }) {
         {photo.widthPx.toLocaleString('en')} × {photo.heightPx.toLocaleString('en')} px
         {photo.depth === 16 ? ', 16 bits' : ''}
       </span>
+      <RoomToggle />
       <nav className="top-work" aria-label="Work">
         <button
           type="button"

@@ -9,6 +9,9 @@ import { photoStore } from '../state/photoStore.ts';
 import { changeView, viewStore } from '../state/viewStore.ts';
 import { endComparing, toggleFlicker } from '../states/comparing.ts';
 import { keepingStore, threadCallStore } from '../states/threadCalls.ts';
+import { wallKeys } from '../wall/wallKeys.ts';
+import { roomStore, wallSheetStore } from '../wall/wallStore.ts';
+import { goTo } from '../wall/wallWork.ts';
 
 /** A key that works wherever nothing is being typed. */
 export interface KeyCommand {
@@ -100,10 +103,9 @@ export const keyCommands: readonly KeyCommand[] = [
     does: 'Put the photograph away',
     run: () => void closePhoto(),
   },
+  { keys: ['w'], shown: 'W', does: 'To the wall, where a series hangs', run: () => goTo('wall') },
   { keys: ['?'], shown: '?', does: 'This list', run: () => dialogStore.set('keys') },
 ];
-
-const redoByY: Pick<KeyCommand, 'run'> = { run: redoLook };
 
 function isTyping(target: EventTarget | null): boolean {
   if (!(target instanceof HTMLElement)) return false;
@@ -111,11 +113,14 @@ function isTyping(target: EventTarget | null): boolean {
   return target instanceof HTMLSelectElement || target instanceof HTMLTextAreaElement;
 }
 
-function commandFor(event: KeyboardEvent): Pick<KeyCommand, 'run' | 'release'> | undefined {
+function commandFor(
+  event: KeyboardEvent,
+  commands: readonly KeyCommand[],
+): Pick<KeyCommand, 'run' | 'release'> | undefined {
   const key = event.key.toLowerCase();
   const control = event.ctrlKey || event.metaKey;
-  if (control && key === 'y') return redoByY;
-  return keyCommands.find((command) => {
+  if (control && key === 'y') return commands.find(({ shown }) => shown.endsWith('Ctrl Y'));
+  return commands.find((command) => {
     if (!command.keys.includes(key) || (command.withControl ?? false) !== control) return false;
     // Signs are reached with Shift on some keyboards, so only letters mind it.
     return /^[a-z]$/.test(key) ? (command.withShift ?? false) === event.shiftKey : true;
@@ -129,8 +134,11 @@ export function startKeys(): void {
     if (event.altKey || event.defaultPrevented || dialogStore.get() !== 'none') return;
     const control = event.ctrlKey || event.metaKey;
     if (isTyping(event.target) && !control) return;
-    if (!photoStore.get() && !(control && event.key.toLowerCase() === 'o') && event.key !== '?') return;
-    const command = commandFor(event);
+    const isAtWall = roomStore.get() === 'wall';
+    const isAtWork = isAtWall || photoStore.get() !== null;
+    if (isAtWall && wallSheetStore.get() !== 'none') return;
+    if (!isAtWork && !(control && event.key.toLowerCase() === 'o') && event.key !== '?') return;
+    const command = commandFor(event, isAtWall ? wallKeys : keyCommands);
     if (!command) return;
     event.preventDefault();
     if (command.release) {

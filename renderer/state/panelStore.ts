@@ -13,6 +13,6 @@ export function chooseStratum(stratum: Stratum): void {
 }
 
 /** Dialogs over the easel; one at a time. */
-export type DialogName = 'none' | 'save' | 'keys' | 'open';
+export type DialogName = 'none' | 'save' | 'keys' | 'open' | 'openFolder';
 
 export const dialogStore = createStore<DialogName>('none');

@@ -1,13 +1,14 @@
 import type { Parameters } from '../../../core/parameters/table.ts';
 import type { Rect } from '../../../core/pixels/photo.ts';
 import type { MemoryCommands, PhotoMemory, PresetOffer } from './memoryCommands.ts';
+import type { RunCommands } from './runCommands.ts';
 import type { SeriesCommands } from './seriesCommands.ts';
 
 /**
  * The host's commands: `POST /api/<name>` with JSON in, and JSON (`output`) or a frame of pixels (`frame`)
  * out. The interface takes these types and nothing else of the host.
  */
-export interface HostCommands extends MemoryCommands, SeriesCommands {
+export interface HostCommands extends MemoryCommands, SeriesCommands, RunCommands {
   /** What the first screen needs. */
   startSession: { input: Record<string, never>; output: Session };
   /**

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { seriesSettingsSchema } from '../../../core/series/seriesDocument.ts';
 import { path } from './inputParts.ts';
+import type { RunCommands } from './runCommands.ts';
 import type { SeriesCommands } from './seriesCommands.ts';
 
 const seriesId = z.string().min(1).max(64);
@@ -19,6 +20,12 @@ export const seriesSchemas = {
     longEdgePx: z.int().min(16).max(1600),
     rough: z.boolean(),
   }),
+  startRun: z.strictObject({ seriesId, outFolder: path }),
+  pauseRun: z.strictObject({ seriesId }),
+  resumeRun: z.strictObject({ seriesId }),
+  cancelRun: z.strictObject({ seriesId }),
+  prioritise: z.strictObject({ seriesId, frameIds: z.array(frameId).max(2000) }),
+  readRun: z.strictObject({ seriesId }),
   makeProof: z.strictObject({
     seriesId,
     folder: path,
@@ -29,4 +36,6 @@ export const seriesSchemas = {
     columns: z.int().min(1).max(24),
     title: z.string().max(200),
   }),
-} as const satisfies { [Name in keyof SeriesCommands]: z.ZodType<SeriesCommands[Name]['input']> };
+} as const satisfies {
+  [Name in keyof (SeriesCommands & RunCommands)]: z.ZodType<(SeriesCommands & RunCommands)[Name]['input']>;
+};

@@ -1,7 +1,6 @@
 import { join } from 'node:path';
-import { presetWords } from '../../../core/proof/captionWords.ts';
+import { figureWords, presetWords } from '../../../core/proof/captionWords.ts';
 import { lying, papers, readPaper } from '../../../core/proof/paper.ts';
-import { figureTable } from '../../../core/series/frameFigures.ts';
 import { parametersWithMatch } from '../../../core/series/frameMatch.ts';
 import { lookOfFrame } from '../../../core/series/seriesDocument.ts';
 import type { ProofSource } from '../../proof/proofSource.ts';
@@ -15,7 +14,6 @@ import { checkFileName } from '../savePainting.ts';
 import type { WallSeries } from './wallSeries.ts';
 
 const marginMm = 14;
-const captionFigures = ['lightness', 'contrast', 'lineCoverage01'] as const;
 
 /**
  * Sets the frames of a series on a proof sheet, matched as on the Wall.
@@ -101,17 +99,11 @@ async function presetTitles(parts: HostState['parts']): Promise<Map<string, stri
 function captionOf(frame: FrameView, series: WallSeries, titles: ReadonlyMap<string, string>) {
   const { measured, odd } = frame;
   const look = lookOfFrame(series.settings, frame.frameId);
-  const figures = measured ? [captionFigures.map((key) => figureWords(key, measured[key])).join(' · ')] : [];
+  const figures = measured ? [figureWords(measured)] : [];
   return {
     name: frame.frameId,
     preset: titles.get(look.stateId) ?? look.preset,
     figures,
     note: odd && !odd.isMatched ? odd.reason : '',
   };
-}
-
-function figureWords(key: (typeof captionFigures)[number], value: number): string {
-  const { label, unit, digits } = figureTable[key];
-  const shown = unit === '%' ? value * 100 : value;
-  return `${label} ${shown.toFixed(digits)}${unit === '%' ? ' %' : ''}`;
 }

@@ -2,6 +2,7 @@ import type { EventHub } from '../eventHub.ts';
 import type { HostParts } from '../hostParts.ts';
 import { Refusal } from '../refusal.ts';
 import { FramePictures } from './framePictures.ts';
+import type { SeriesRun } from './seriesRun.ts';
 import { WallSeries } from './wallSeries.ts';
 
 /** Series that stay open; the one opened first is closed for the next. */
@@ -11,6 +12,7 @@ const mostOpen = 2;
 export class Walls {
   readonly pictures: FramePictures;
   readonly #byId = new Map<string, WallSeries>();
+  readonly #runs = new Map<string, SeriesRun>();
 
   constructor(
     private readonly parts: HostParts,
@@ -38,7 +40,7 @@ export class Walls {
     });
     this.#byId.set(series.seriesId, series);
     const [oldest] = this.#byId.keys();
-    if (this.#byId.size > mostOpen) await this.close(oldest);
+    if (this.#byId.size > mostOpen && !this.#runs.get(oldest)?.isOn) await this.close(oldest);
     return series;
   }
 
@@ -50,6 +52,22 @@ export class Walls {
     return series;
   }
 
+  /** The run of a series, also one that has ended. */
+  runOf(seriesId: string): SeriesRun | null {
+    return this.#runs.get(seriesId) ?? null;
+  }
+
+  /** @throws Refusal where one is under way already */
+  async startRun(seriesId: string, outFolder: string): Promise<SeriesRun> {
+    const series = this.find(seriesId);
+    if (this.#runs.get(seriesId)?.isOn)
+      throw new Refusal('BadRequest', 'This series is being painted already.', 'Stop that run first.');
+    const { SeriesRun: Run } = await import('./seriesRun.ts');
+    const run = new Run(series, outFolder, this.parts, this.events);
+    this.#runs.set(seriesId, run);
+    return run;
+  }
+
   /** Photos were added to a folder that may be on a wall. */
   folderChanged(): void {
     for (const series of this.#byId.values()) void series.refresh().catch(() => undefined);
@@ -59,6 +77,8 @@ export class Walls {
   async close(seriesId: string): Promise<void> {
     const series = this.#byId.get(seriesId);
     this.#byId.delete(seriesId);
+    await this.#runs.get(seriesId)?.cancel();
+    this.#runs.delete(seriesId);
     await series?.close();
   }
 
