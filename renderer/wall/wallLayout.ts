@@ -52,6 +52,9 @@ export function hangFrames(
   const endRow = (to: number) => {
     const tallest = frames.slice(rowFrom, to).reduce((most, { heightPx }) => Math.max(most, heightPx), 0);
     const bottom = top + abovePx + tallest + belowPx;
+    // A full row reaches from edge to edge; the last one hangs from the left.
+    if (to < sizes.length && to - rowFrom > 1)
+      spread(frames, rowFrom, to, left - betweenPx, wallWidth - edgePx);
     rows.push({ from: rowFrom, to, topPx: top, bottomPx: bottom });
     top = bottom;
     left = edgePx;
@@ -69,6 +72,13 @@ export function hangFrames(
   });
   if (sizes.length > rowFrom) endRow(sizes.length);
   return { frames, rows, heightPx: top + edgePx };
+}
+
+/** Shares what is left of a row's width out between its frames. */
+function spread(frames: HungFrame[], from: number, to: number, endPx: number, edgePx: number): void {
+  const stepPx = Math.max(0, edgePx - endPx) / (to - from - 1);
+  for (let i = from; i < to; i++)
+    frames[i] = { ...frames[i], xPx: Math.round(frames[i].xPx + stepPx * (i - from)) };
 }
 
 /** The frames of the rows that touch a stretch of the wall. */
