@@ -11,6 +11,7 @@ type PlacedOn = Pick<ProofPage, 'boxes' | 'texts'>;
 export class PrintPictures {
   readonly faults: ProofFault[] = [];
   #done = 0;
+  #painted: Promise<unknown> = Promise.resolve();
 
   constructor(
     private readonly sources: readonly ProofSource[],
@@ -46,6 +47,13 @@ export class PrintPictures {
     return this.sources[place.frame].picture;
   }
 
+  /** One painting at a time: each holds its whole photo, and the engine is busy with one. */
+  #inTurn<T>(make: () => Promise<T>): Promise<T> {
+    const made = this.#painted.then(make);
+    this.#painted = made.catch(() => {});
+    return made;
+  }
+
   async #make(
     page: PlacedOn,
     place: PlacedPicture,
@@ -53,7 +61,7 @@ export class PrintPictures {
     signal?: AbortSignal,
   ): Promise<Buffer | null> {
     try {
-      const made = await make();
+      const made = await ('paint' in this.#picture(place) ? this.#inTurn(make) : make());
       this.#done++;
       this.onProgress?.(this.#done / this.sources.length);
       return made;

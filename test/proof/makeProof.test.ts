@@ -43,6 +43,8 @@ describe.skipIf(noPoppler)(`a PDF sheet, read by Poppler${noPoppler ? ` (${noPop
     expect(others).toEqual([]);
     expect(page.widthPt).toBeCloseTo((210 / 25.4) * 72, 1);
     expect(page.heightPt).toBeCloseTo((297 / 25.4) * 72, 1);
+    // Its RGB is told to be sRGB: ISO 32000-1, 14.11.5.
+    expect((await readFile(out)).toString('latin1')).toMatch(/\/OutputIntents \[\d+ 0 R\]/);
     const fonts = await pdfFonts(out);
     expect(fonts.length).toBeGreaterThanOrEqual(3);
     for (const font of fonts) expect(font).toMatchObject({ embedded: true, subset: true });
@@ -243,6 +245,23 @@ describe('a sheet', () => {
     expect(asked).toHaveLength(1);
     expect(asked[0].widthPx).toBeGreaterThan(400);
     expect(asked[0].widthPx).toBeLessThan(800);
+  });
+
+  it('paints one picture at a time', async () => {
+    let underWay = 0;
+    let most = 0;
+    const paint = async (): Promise<ProofPixels> => {
+      most = Math.max(most, ++underWay);
+      await new Promise((resolve) => setTimeout(resolve, 10));
+      underWay--;
+      return { widthPx: 300, heightPx: 200, channels: 3, pixels: new Uint8Array(300 * 200 * 3) };
+    };
+    const sources = Array.from({ length: 6 }, (_, k) => ({
+      picture: { path: `plate ${k}`, widthPx: 300, heightPx: 200, paint },
+      caption: sourceOf(`plate ${k}`).caption,
+    }));
+    await makeProof(sources, order('turns.pdf'));
+    expect(most).toBe(1);
   });
 
   it('never lands on a frame of the series, and leaves nothing behind when it is stopped', async () => {
