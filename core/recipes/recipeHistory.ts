@@ -200,8 +200,12 @@ function layThread(
   return noteUse({ ...longer, work }, moment);
 }
 
-/** A delivered file; state, strokes, output settings and photo are taken from the recipe. */
-export type DeliveredFile = Pick<Delivery, 'path' | 'sha256' | 'pixelsSha256'>;
+/**
+ * A delivered file; state, strokes and output settings are taken from the recipe. So is the photo, unless its own
+ * hash is given: the file it was painted from may have other bytes by now than the recipe was begun for.
+ */
+export type DeliveredFile = Pick<Delivery, 'path' | 'sha256' | 'pixelsSha256'> &
+  Partial<Pick<Delivery, 'photoSha256'>>;
 
 /**
  * Notes a delivered file. Unkept changes are kept as a state first, so that a delivery always names one.
@@ -211,8 +215,8 @@ export function noteDelivery(recipe: Recipe, file: DeliveredFile, moment: Moment
   const kept = hasUnkeptChanges(recipe) ? keepState(recipe, 'Delivered', moment) : recipe;
   const { maps, tightnessId } = withMap(kept);
   const delivery: Delivery = {
-    ...file,
     photoSha256: kept.photo.sha256,
+    ...file,
     stateId: kept.work.stateId,
     tightnessId,
     output: kept.work.output,

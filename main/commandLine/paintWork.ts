@@ -87,7 +87,7 @@ export async function keepPainted(
   stores: Stores,
   photoPath: string,
   { read, look }: PaintWork,
-  file: WrittenFile,
+  file: Omit<WrittenFile, 'photoSha256'>,
 ): Promise<{ path: string; remarks: string[] }> {
   const known = read ?? (await readRecipe(stores, photoPath));
   const moment = now();
@@ -97,6 +97,6 @@ export async function keepPainted(
     if (recipe.work.preset !== look.preset.name || recipe.work.stateId !== look.state.id)
       recipe = layPreset(recipe, look.preset, look.state.id, moment);
   }
-  const noted = noteWrittenFile(recipe!, photoPath, file, moment);
+  const noted = noteWrittenFile(recipe!, photoPath, { ...file, photoSha256: known.photo.sha256 }, moment);
   return { path: known.path, remarks: await saveRecipe(stores, photoPath, known, noted) };
 }

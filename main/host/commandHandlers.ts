@@ -1,6 +1,7 @@
 import { homedir } from 'node:os';
 import { basename, dirname } from 'node:path';
 import { engineVersion } from '../../core/engineVersion.ts';
+import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
 import type { Choice, CommandName, HostCommands, OpenedPhoto, Session } from './api/hostCommands.ts';
 import { allowOpening, type HostState } from './host.ts';
@@ -122,8 +123,11 @@ async function startSession(state: HostState): Promise<Session> {
 
 async function openPhoto(state: HostState, given: string, call: RunningCall): Promise<OpenedPhoto> {
   const path = state.grants.checkPhoto(given);
+  // Reading the bytes to know the photo by goes on beside the decoding: neither waits for the other.
+  const fingerprint = fingerprintPhoto(path);
+  fingerprint.catch(() => undefined);
   const photo = await state.photos.open(path, call.signal);
-  await state.memories.open(photo.photoId, path);
+  await state.memories.open(photo.photoId, path, fingerprint);
   await state.memories.keepOnly(state.photos.all.map(({ photoId }) => photoId));
   allowOpening(state, path);
   const opened = await present(state, photo);

@@ -193,7 +193,8 @@ async function offerPath(state: HostState, given: string): Promise<void> {
 
 async function closeHost(state: HostState): Promise<void> {
   state.calls.cancelAll();
-  await state.photos.closeAll();
+  // What waits is saved at once: a painting may take a while to stop.
+  await Promise.all([state.photos.closeAll(), state.memories.flush()]);
   await Promise.all([state.memories.flush(), state.recents.flush(), state.walls.closeAll()]);
   state.events.close();
 }

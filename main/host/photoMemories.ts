@@ -2,7 +2,7 @@ import { dirname, join } from 'node:path';
 import { engineVersion } from '../../core/engineVersion.ts';
 import type { Moment } from '../../core/presets/preset.ts';
 import { stateById } from '../../core/presets/thread.ts';
-import type { Recipe } from '../../core/recipes/recipe.ts';
+import type { PhotoFingerprint, Recipe } from '../../core/recipes/recipe.ts';
 import {
   changeOutput,
   changeParameters,
@@ -14,7 +14,6 @@ import { DelayedSaver } from '../store/delayedSaver.ts';
 import { findMovedPhotos, reunite } from '../store/movedPhotos.ts';
 import { noteWrittenFile, type WrittenFile } from '../store/notedDelivery.ts';
 import type { Stores } from '../store/openStores.ts';
-import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { PresetStore } from '../store/presetStore.ts';
 import { recipeBeside } from '../store/recipePlaces.ts';
 import type { SavedRecipe } from '../store/storeResults.ts';
@@ -29,6 +28,8 @@ export const firstPresetName = 'low-water';
 interface Entry {
   photoId: string;
   path: string;
+  /** Of the photo's bytes when it was opened. */
+  photoSha256: string;
   recipe: Recipe;
   recipePath: string;
   version: FileVersion;
@@ -51,11 +52,14 @@ export class PhotoMemories {
     private readonly parts: { loadStores(): Promise<Stores>; events: EventHub; now?: () => Date },
   ) {}
 
-  /** Begins to load a photo's recipe; asked twice, it is loaded once. */
-  open(photoId: string, path: string): Promise<void> {
+  /**
+   * Loads a photo's recipe; asked twice, it is loaded once.
+   * @param fingerprint of the photo, which may still be under way
+   */
+  open(photoId: string, path: string, fingerprint: Promise<PhotoFingerprint>): Promise<void> {
     let entry = this.#entries.get(photoId);
     if (!entry) {
-      entry = this.#load(photoId, path);
+      entry = fingerprint.then((known) => this.#load(photoId, path, known));
       this.#entries.set(photoId, entry);
       entry.catch(() => this.#entries.delete(photoId));
     }
@@ -101,12 +105,13 @@ export class PhotoMemories {
    * Notes a delivered file. What was painted is the easel as it was when the painting began, whatever lies there
    * now; where no state holds it, it is kept as one.
    */
-  async noteDelivered(photoId: string, file: WrittenFile): Promise<PhotoMemory> {
+  async noteDelivered(photoId: string, file: Omit<WrittenFile, 'photoSha256'>): Promise<PhotoMemory> {
     const entry = await this.#find(photoId);
     if (entry.access === 'readOnly') return viewOf(entry);
+    const written = { ...file, photoSha256: entry.photoSha256 };
     return this.change(photoId, (recipe, moment) =>
       // Somebody may have gone on while the file was being painted: their work stays on the easel.
-      changeParameters(noteWrittenFile(recipe, entry.path, file, moment), currentParameters(recipe)),
+      changeParameters(noteWrittenFile(recipe, entry.path, written, moment), currentParameters(recipe)),
     );
   }
 
@@ -154,9 +159,8 @@ export class PhotoMemories {
     throw new Refusal('NotFound', 'This photo is no longer open.', 'Open it again; its changes are kept.');
   }
 
-  async #load(photoId: string, path: string): Promise<Entry> {
+  async #load(photoId: string, path: string, fingerprint: PhotoFingerprint): Promise<Entry> {
     const { recipes, presets, dataFolder, mirrorFolder } = await this.parts.loadStores();
-    const fingerprint = await fingerprintPhoto(path);
     let loaded = await recipes.load(path, fingerprint);
     const remarks: string[] = [];
     if (loaded.kind === 'none') {
@@ -197,6 +201,7 @@ export class PhotoMemories {
       ...known,
       photoId,
       path,
+      photoSha256: fingerprint.sha256,
       access: loaded.kind === 'newer' ? 'readOnly' : isMirrored ? 'mirrored' : 'writable',
       saved: { kind: 'saved', message: '' },
       saver: new DelayedSaver<Recipe>((recipe) => this.#save(entry, recipe)),

@@ -1,4 +1,4 @@
-import { dirname, isAbsolute, relative, resolve } from 'node:path';
+import { dirname, isAbsolute, relative, resolve, sep } from 'node:path';
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { Moment } from '../../core/presets/preset.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
@@ -10,6 +10,8 @@ export interface WrittenFile {
   path: string;
   sha256: string;
   pixelsSha256: string;
+  /** Of the photo as it was painted. */
+  photoSha256: string;
   parameters: Parameters;
   output: Partial<OutputSettings>;
 }
@@ -17,7 +19,7 @@ export interface WrittenFile {
 /**
  * Notes a delivered file in its photo's recipe. What it was painted from is laid on the easel, and kept as a state
  * where none holds it.
- * @param file its path is stored from the photo's folder where it lies in it or below
+ * @param file its path is stored from the photo's folder where it lies in it or below, with `/` on every system
  */
 export function noteWrittenFile(
   recipe: Recipe,
@@ -27,7 +29,11 @@ export function noteWrittenFile(
 ): Recipe {
   const { parameters, output, path, ...hashes } = file;
   const place = relative(dirname(resolve(photoPath)), resolve(path));
-  const isBelow = !place.startsWith('..') && !isAbsolute(place);
+  const isBelow = !isAbsolute(place) && place.split(sep)[0] !== '..';
   const painted = changeOutput(changeParameters(recipe, parameters), output);
-  return noteDelivery(painted, { ...hashes, path: isBelow ? place : resolve(path) }, moment);
+  return noteDelivery(
+    painted,
+    { ...hashes, path: isBelow ? place.split(sep).join('/') : resolve(path) },
+    moment,
+  );
 }

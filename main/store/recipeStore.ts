@@ -53,14 +53,14 @@ export class RecipeStore {
   }
 
   /**
-   * Opens the recipe of a photo.
+   * Opens the recipe of a photo. One that cannot be read counts as damaged: the photo can be worked on all the same,
+   * and saving never goes over what could not be read.
    * @param photo the photo's fingerprint, to tell whether it is still the one the recipe was made for
-   * @throws FileError only where the folder itself cannot be read
    */
   async load(photoPath: string, photo: PhotoFingerprint): Promise<LoadedRecipe> {
     const path = recipeBeside(photoPath);
     await removeAbandoned(dirname(path));
-    const beside = await readPlace(path);
+    const beside = await lookAtPlace(path);
     const mirrored = await this.#readMirror(photoPath);
     // The mirror was only ever written because the photo's folder could not be: its easel is the later one.
     const onDisk = mirrored ?? beside;
@@ -69,9 +69,9 @@ export class RecipeStore {
     const base = onDisk
       ? await this.#fromDisk(onDisk, path)
       : { recipe: null, remarks: [], path, version: null };
-    if ('kind' in base) return base;
-    let { recipe } = base;
-    const remarks = [...base.remarks];
+    if ('kind' in base && !(base.kind === 'damaged' && rescued.length > 0)) return base;
+    let recipe = 'kind' in base ? null : base.recipe;
+    const remarks = 'kind' in base ? [base.message] : [...base.remarks];
     if (mirrored && beside?.opened.kind === 'usable' && recipe)
       recipe = mergeRecipes(recipe, beside.opened.document, this.#moment());
     for (const { file, copy } of rescued) {
@@ -96,7 +96,7 @@ export class RecipeStore {
 
   async #readMirror(photoPath: string): Promise<OnDisk | null> {
     const { mirrorFolder } = this.#options;
-    return mirrorFolder ? readPlace(recipeInMirror(photoPath, mirrorFolder)) : null;
+    return mirrorFolder ? lookAtPlace(recipeInMirror(photoPath, mirrorFolder)) : null;
   }
 
   /** The recipe a place holds, or else the copy of the last one that was whole. */
@@ -240,6 +240,14 @@ async function readPlace(path: string): Promise<OnDisk | null> {
     if (!(failure instanceof UnreadableText)) throw failure;
     return { path, version: failure.version, opened: { kind: 'damaged', message: failure.problem } };
   }
+}
+
+/** As `readPlace`, for opening: what cannot be read counts as damaged. */
+function lookAtPlace(path: string): Promise<OnDisk | null> {
+  return readPlace(path).catch((failure) => {
+    const { problem } = asFileError(path, failure);
+    return { path, version: null, opened: { kind: 'damaged', message: problem } };
+  });
 }
 
 /** What we could not open again must not be written. */

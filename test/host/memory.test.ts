@@ -347,11 +347,11 @@ describe('presets', () => {
 
   it('that are built in stay as they are', async () => {
     for (const call of [
-      t.caller.call('renamePreset', { name: 'reed-pen', title: 'Mine' }),
-      t.caller.call('removePreset', { name: 'reed-pen' }),
-      t.caller.call('addToPreset', { name: 'reed-pen', parameters: {}, note: '' }),
+      () => t.caller.call('renamePreset', { name: 'reed-pen', title: 'Mine' }),
+      () => t.caller.call('removePreset', { name: 'reed-pen' }),
+      () => t.caller.call('addToPreset', { name: 'reed-pen', parameters: {}, note: '' }),
     ])
-      expect((await refusalOf(call)).remedy).toMatch(/duplicate/i);
+      expect((await refusalOf(call())).remedy).toMatch(/duplicate/i);
   });
 
   it('that cannot be read are named, and the others are there', async () => {
