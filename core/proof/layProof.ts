@@ -27,7 +27,7 @@ const ruleGapPt = 12;
 const emptyAspect = 2 / 3;
 const boxPaddingPt = 7;
 
-const linesAtMost = { name: 2, preset: 2, figures: 2, note: 4, fault: 6 };
+const linesAtMost = { name: 2, preset: 2, figures: 3, note: 4, fault: 6 };
 
 interface Cell {
   frame: number;

@@ -10,7 +10,7 @@ const looseEnd = /[\s·]+$/;
 /**
  * Breaks a text into lines.
  * @param atMost lines; what is left over is taken from the middle of the last one, so that the end of a file's
- *   name, its number, stays
+ *   name, its number, stays. A name gives up its gaps before it gives up letters.
  * @returns lines no wider than `widthPt`; none for an empty text
  */
 export function wrapText(
@@ -20,19 +20,37 @@ export function wrapText(
   atMost: number,
   type: TypeMeasure,
 ): string[] {
+  const characters = [...text.trim()];
+  const atGaps = brokenInto(characters, { style, widthPt, atMost, type }, breakBefore);
+  if (style !== 'name' || !atGaps.isShortened) return atGaps.lines;
+  return brokenInto(characters, { style, widthPt, atMost, type }, (_, count) => count).lines;
+}
+
+interface Measure {
+  style: TypeStyle;
+  widthPt: number;
+  atMost: number;
+  type: TypeMeasure;
+}
+
+function brokenInto(
+  characters: string[],
+  { style, widthPt, atMost, type }: Measure,
+  endOf: (rest: string[], count: number) => number,
+): { lines: string[]; isShortened: boolean } {
   const lines: string[] = [];
-  let rest = [...text.trim()];
+  let rest = characters;
   while (rest.length > 0 && lines.length < atMost) {
     if (lines.length === atMost - 1) {
-      lines.push(shortened(rest, style, widthPt, type));
-      break;
+      const whole = rest.join('');
+      const last = shortened(rest, style, widthPt, type);
+      return { lines: [...lines, last], isShortened: last !== whole };
     }
-    const count = fittingCount(rest, style, widthPt, type);
-    const end = breakBefore(rest, count);
+    const end = endOf(rest, fittingCount(rest, style, widthPt, type));
     lines.push(rest.slice(0, end).join('').replace(looseEnd, ''));
     rest = [...rest.slice(end).join('').trimStart()];
   }
-  return lines;
+  return { lines, isShortened: rest.length > 0 };
 }
 
 /** How many characters fit in the width; at least one, so that every line moves on. */

@@ -61,6 +61,11 @@ describe('a line of a caption', () => {
     expect(wrap('', 10, 2)).toEqual([]);
   });
 
+  it('gives up the gaps of a name before its letters', () => {
+    expect(wrap('plate_12.painted.png', 10, 2)).toEqual(['plate_12.p', 'ainted.png']);
+    expect(wrap('plate_12.painted.png', 14, 2)).toEqual(['plate_', '12.painted.png']);
+  });
+
   it('keeps the end of a name, for that is where the numbers are', () => {
     const [line] = wrap('a-very-long-name-from-the-river-bank-0042.tif', 20, 1);
     expect(line).toMatch(/^a-very.*….*0042\.tif$/);
