@@ -1,6 +1,8 @@
 import { z } from 'zod';
 import { defaultPrintLongEdgeMm } from '../parameters/lengths.ts';
 
+const fraction = z.number().min(0).max(1);
+
 export const outputSettingsSchema = z
   .looseObject({
     printLongEdgeMm: z.number().min(10).max(20_000).meta({ description: 'Brush and ink widths follow it.' }),
@@ -14,6 +16,15 @@ export const outputSettingsSchema = z
       .meta({ description: "The photo's own, sRGB, Display P3, or an ICC file." }),
     intent: z.enum(['perceptual', 'relative', 'saturation', 'absolute']),
     blackPointCompensation: z.boolean(),
+    isResampled: z
+      .boolean()
+      .optional()
+      .meta({ description: 'Brought to `ppi` before painting; its own pixels otherwise.' }),
+    crop: z
+      .looseObject({ aspect: z.number().min(0.01).max(100), x01: fraction, y01: fraction })
+      .optional()
+      .meta({ description: 'A frame of that width over height, its middle there.' }),
+    trimMarks: z.boolean().optional().meta({ description: 'Lines where the paper is to be cut.' }),
     metadata: z.enum(['all', 'essential', 'none']),
     layers: z.enum(['none', 'ora', 'tiff']).meta({ description: 'Strata as layers beside the picture.' }),
   })

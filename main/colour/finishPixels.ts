@@ -7,6 +7,7 @@ import {
 } from './colourEngine.ts';
 import { ditherTo8 } from './dither.ts';
 import { mirrorOut } from './mirrorOut.ts';
+import { type TrimMarks, withTrimMarks } from './trimMarks.ts';
 
 /** From the space of a profile to that of another. */
 export interface Conversion {
@@ -27,6 +28,7 @@ export interface FinishJob {
   conversion: Conversion | null;
   /** Mirrored on every side. */
   bleedPx: number;
+  trimMarks: TrimMarks | null;
   depth: 8 | 16;
 }
 
@@ -47,7 +49,7 @@ const bandPixels = 1 << 18;
  * @throws RangeError where a profile cannot be used
  */
 export function finishPixels(engine: ColourEngine, job: FinishJob): FinishedPixels {
-  const { widthPx, heightPx, conversion, bleedPx, depth, hasAlpha } = job;
+  const { widthPx, heightPx, conversion, bleedPx, trimMarks, depth, hasAlpha } = job;
   const converted = conversion ? convert(engine, job, conversion) : { pixels: job.pixels, space: job.space };
   const channels = channelsOf[converted.space] + (hasAlpha ? 1 : 0);
   const reduced =
@@ -56,14 +58,27 @@ export function finishPixels(engine: ColourEngine, job: FinishJob): FinishedPixe
       : depth === 16 && converted.pixels instanceof Uint8Array
         ? Uint16Array.from(converted.pixels, (value) => value * 257)
         : converted.pixels;
-  const pixels = bleedPx > 0 ? mirrorOut(reduced, widthPx, heightPx, channels, bleedPx) : reduced;
+  const bled = bleedPx > 0 ? mirrorOut(reduced, widthPx, heightPx, channels, bleedPx) : reduced;
+  const size = { widthPx: widthPx + 2 * bleedPx, heightPx: heightPx + 2 * bleedPx };
+  const { paper, ink } = marking(converted.space, hasAlpha, depth);
+  const pixels = trimMarks ? withTrimMarks(bled, size.widthPx, size.heightPx, trimMarks, paper, ink) : bled;
+  const slugPx = trimMarks?.slugPx ?? 0;
   return {
-    widthPx: widthPx + 2 * bleedPx,
-    heightPx: heightPx + 2 * bleedPx,
+    widthPx: size.widthPx + 2 * slugPx,
+    heightPx: size.heightPx + 2 * slugPx,
     pixels,
     space: converted.space,
     hasAlpha,
   };
+}
+
+/** Blank paper, and the marks on it: in CMYK no ink and black ink alone. */
+function marking(space: PixelSpace, hasAlpha: boolean, depth: 8 | 16): { paper: number[]; ink: number[] } {
+  const top = depth === 8 ? 255 : 65535;
+  const alpha = hasAlpha ? [top] : [];
+  if (space === 'CMYK') return { paper: [0, 0, 0, 0], ink: [0, 0, 0, top] };
+  const colours = Array<number>(channelsOf[space]).fill(0);
+  return { paper: [...colours.map(() => top), ...alpha], ink: [...colours, ...alpha] };
 }
 
 function convert(

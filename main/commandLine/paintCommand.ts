@@ -9,6 +9,7 @@ import { type PaintedFile, paintToFile } from '../painting/paintToFile.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import { choosePaintWork, keepPainted } from './paintWork.ts';
 import { commandStores } from './photoRecipe.ts';
+import { printOptionHelp, printOptions, readPrintOrder } from './printOptions.ts';
 import { ProgressLine } from './progressLine.ts';
 import { readNumber, readWhole, readWords } from './readWords.ts';
 import { type Command, exitCode, UsageError } from './usage.ts';
@@ -20,6 +21,7 @@ const options = {
   depth: { type: 'string' },
   'print-long-edge': { type: 'string' },
   layers: { type: 'string' },
+  ...printOptions,
   keep: { type: 'boolean' },
   workers: { type: 'string' },
   json: { type: 'boolean' },
@@ -45,6 +47,7 @@ export const paintCommand: Command = {
       '--layers ora|tiff',
       'Writes the strata too, beside the painting: one OpenRaster file, or a folder of 16-bit TIFFs.',
     ],
+    ...printOptionHelp,
     ['--keep', "Notes what was painted in the photo's recipe, which is made where there is none."],
     ['--workers N', 'Worker threads; one for each processor unless given.'],
     ['--json', 'Prints one JSON object with everything that was done.'],
@@ -73,6 +76,8 @@ async function paint(words: string[]): Promise<number> {
   );
   const askedDepth = readDepth(read.values.depth);
   const layers = readLayers(read.values.layers);
+  const usedRecipe = work.look === null ? (work.read?.recipe ?? null) : null;
+  const { print, output } = readPrintOrder(read.values, usedRecipe?.work.output ?? null);
   const named = read.values.out;
   const out = named ?? (await defaultOutputPath(photoPath, 'png'));
   const format = outputFormatFor(out);
@@ -83,7 +88,7 @@ async function paint(words: string[]): Promise<number> {
   const starting = createEngine({ workers });
   starting.catch(() => undefined);
   try {
-    const order = { parameters, out, format, depth: askedDepth, printLongEdgeMm, layers };
+    const order = { parameters, out, format, depth: askedDepth, printLongEdgeMm, layers, print };
     const painted = await paintToFile(starting, photoPath, order, {
       onProgress: (fraction01, stage) => progress.update(0.05 + 0.95 * fraction01, stage),
     });
@@ -129,8 +134,11 @@ async function paint(words: string[]): Promise<number> {
 
   async function keepFile({ path, depth, pixelsSha256 }: PaintedFile) {
     const { sha256 } = await fingerprintPhoto(path);
-    const output = { format, depth, printLongEdgeMm };
-    return keepPainted(stores, photoPath, work, { path, sha256, pixelsSha256, parameters, output });
+    const written = { path, sha256, pixelsSha256, photoSha256: work.read!.photo.sha256, parameters };
+    return keepPainted(stores, photoPath, work, {
+      ...written,
+      output: { ...output, format, depth, printLongEdgeMm },
+    });
   }
 }
 

@@ -9,6 +9,7 @@ import { depthOf } from './pictureRows.ts';
 import { pngWithParts } from './pngParts.ts';
 import { SpilledPixels } from './spilledPixels.ts';
 import { SpillFile } from './spillFile.ts';
+import { tiffPixelsAt, uncompressedTiff } from './tiffWriter.ts';
 import { webpWithParts } from './webpParts.ts';
 
 const defaultQuality = 92;
@@ -38,7 +39,12 @@ export async function encodePicture(
       raw: { width: widthPx, height: heightPx, channels },
       limitInputPixels: false,
     });
-    const encoded = await unlessAborted(compress(raw, picture).toBuffer(), signal);
+    const encoded = await unlessAborted(
+      picture.space === 'CMYK'
+        ? compressInks(pixels as Uint8Array, picture)
+        : compress(raw, picture).toBuffer(),
+      signal,
+    );
     return { pieces: withParts(encoded, parts, picture), rest: null, restAt: 0 };
   } catch (failure) {
     signal?.throwIfAborted();
@@ -51,6 +57,22 @@ export async function encodePicture(
       { cause: failure },
     );
   }
+}
+
+/** Raw samples cannot be called inks, so they go through an uncompressed TIFF that says so. */
+async function compressInks(pixels: Uint8Array, picture: AnyPictureFile): Promise<Buffer> {
+  const { widthPx, heightPx } = picture;
+  const facts = { widthPx, heightPx, channels: 4, bytesPerSample: 1, space: 'CMYK' } as const;
+  const { header, tail, tailAt } = uncompressedTiff(facts);
+  const tiff = new Uint8Array(tailAt + tail.length);
+  tiff.set(header, 0);
+  tiff.set(pixels, tiffPixelsAt);
+  tiff.set(tail, tailAt);
+  return sharp(tiff, { limitInputPixels: false, ignoreIcc: true })
+    .pipelineColourspace('cmyk')
+    .toColourspace('cmyk')
+    .jpeg({ quality: picture.quality ?? defaultQuality, chromaSubsampling: '4:4:4', optimiseCoding: false })
+    .toBuffer();
 }
 
 /** Enough for whatever the encoder puts before its pixels. */

@@ -57,12 +57,12 @@ export function outputDepth(format: OutputFormat, wanted: 8 | 16): 8 | 16 {
  */
 export async function assertFormatHolds(
   path: string,
-  picture: PixelHolder,
+  picture: PixelHolder & { space?: 'RGB' | 'CMYK' },
   signal?: AbortSignal,
   format: OutputFormat = outputFormatFor(path),
 ): Promise<void> {
   assertSizeFits(path, picture, format);
-  if (format === 'jpeg' && !(await isOpaque(picture, signal)))
+  if (format === 'jpeg' && picture.space !== 'CMYK' && !(await isOpaque(picture, signal)))
     throw new FileError(
       path,
       'the picture is partly transparent, which JPEG cannot hold',

@@ -23,6 +23,8 @@ export interface PictureFacts {
   widthPx: number;
   heightPx: number;
   channels: 3 | 4;
+  /** What the channels are; RGB, with alpha where there are four, unless given. */
+  space?: 'RGB' | 'CMYK';
   format: OutputFormat;
   iccProfile?: Uint8Array;
   densityPpi?: number;

@@ -191,6 +191,7 @@ async function decodeInks(photo: PhotoToDecode, inkProfile: Uint8Array, signal?:
         space: 'CMYK',
         conversion,
         bleedPx: 0,
+        trimMarks: null,
         depth: 16,
       },
       signal,

@@ -32,6 +32,7 @@ const noCompression = 1;
 const deflateCompression = 8;
 const horizontalPredictor = 2;
 const rgbPhotometric = 2;
+const separatedPhotometric = 5;
 const straightAlphaSample = 2;
 const perInch = 2;
 
@@ -66,7 +67,7 @@ export async function writeTiff(
 }
 
 /** What stands before and behind the pixels of an uncompressed TIFF whose pixels begin at `tiffPixelsAt`. */
-export function uncompressedTiff(facts: PixelFacts): {
+export function uncompressedTiff(facts: PixelFacts & { space?: 'RGB' | 'CMYK' }): {
   header: Uint8Array;
   tail: Uint8Array;
   tailAt: number;
@@ -149,7 +150,7 @@ function differencesAlongRows(
 }
 
 function fieldsOf(
-  picture: { widthPx: number; heightPx: number; channels: 3 | 4 },
+  picture: { widthPx: number; heightPx: number; channels: 3 | 4; space?: 'RGB' | 'CMYK' },
   parts: CarriedParts,
   { bits, compression, ...strips }: Strips & { bits: number; compression: number },
 ): Field[] {
@@ -159,7 +160,7 @@ function fieldsOf(
     { tag: 257, type: longType, values: [picture.heightPx] },
     { tag: 258, type: shortType, values: Array(channels).fill(bits) },
     { tag: 259, type: shortType, values: [compression] },
-    { tag: 262, type: shortType, values: [rgbPhotometric] },
+    { tag: 262, type: shortType, values: [picture.space === 'CMYK' ? separatedPhotometric : rgbPhotometric] },
     { tag: 273, type: longType, values: strips.offsets },
     { tag: 274, type: shortType, values: [1] },
     { tag: 277, type: shortType, values: [channels] },
@@ -175,7 +176,8 @@ function fieldsOf(
     fields.push({ tag: 283, type: rationalType, values: resolution });
     fields.push({ tag: 296, type: shortType, values: [perInch] });
   }
-  if (channels === 4) fields.push({ tag: 338, type: shortType, values: [straightAlphaSample] });
+  if (channels === 4 && picture.space !== 'CMYK')
+    fields.push({ tag: 338, type: shortType, values: [straightAlphaSample] });
   if (parts.iccProfile) fields.push({ tag: 34675, type: undefinedType, values: parts.iccProfile });
   return fields.sort((a, b) => a.tag - b.tag);
 }

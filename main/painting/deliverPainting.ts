@@ -1,11 +1,14 @@
+import { srgbProfile } from '../../core/colour/matrixProfile.ts';
 import { layerStack } from '../../core/composition/layerStack.ts';
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { Engine, EnginePhoto, StageTimes } from '../engine/engineApi.ts';
 import { type LayersKind, layersBeside, layersDepth, writeLayers } from '../files/layers/writeLayers.ts';
 import { assertSizeFits, outputDepth } from '../files/outputFormat.ts';
 import type { AnyPictureFile, OutputFormat, PhotoFile } from '../files/photoFile.ts';
+import { finishPainting } from './finishPainting.ts';
 import { type LayeredPixels, paintLayered } from './paintLayered.ts';
 import { type PaintedPixels, paintPixels } from './paintPixels.ts';
+import { type PrintOrder, planFinish } from './printOrder.ts';
 import { assertRoomToPaint } from './room.ts';
 
 /** A photo that was read and is held by an engine; its own pixels are not needed any more. */
@@ -25,6 +28,8 @@ export interface PaintingOrder {
   /** 1…100, for JPEG and WebP. */
   quality?: number;
   printLongEdgeMm: number;
+  /** Colours and place on paper; the photo's own unless given. */
+  print?: PrintOrder;
   /** Writes the strata too, beside the picture and under its name, in the photo's own colours. */
   layers?: LayersKind;
 }
@@ -81,7 +86,7 @@ export async function deliverPainting(
   { signal, onProgress, writePicture, place = placeAsNamed }: DeliveryOptions,
 ): Promise<DeliveredPainting> {
   const { enginePhoto, file } = photo;
-  const { widthPx, heightPx, channels, iccProfile, densityPpi, exif } = file;
+  const { widthPx, heightPx, channels, exif } = file;
   const depth = outputDepth(order.format, order.depth ?? file.depth);
   // Found out before the painting: of a very large picture that takes minutes.
   assertSizeFits(order.out, file, order.format);
@@ -91,14 +96,22 @@ export async function deliverPainting(
       : undefined;
     await assertRoomToPaint(order.out, { ...file, depth, format: order.format, layers });
   }
-  const painted = await paint(engine, enginePhoto, { ...order, depth }, { signal, onProgress });
+  const finish = await planFinish(order.out, order, file, depth);
+  const painted = await paint(
+    engine,
+    enginePhoto,
+    { ...order, depth: finish.paintDepth },
+    { signal, onProgress },
+  );
   try {
     signal?.throwIfAborted();
     onProgress?.(paintShare01, 'writing');
     const startMs = performance.now();
     const { pixels, pixelsSha256 } = painted;
+    const { iccProfile, densityPpi } = finish;
     const parts = { iccProfile, densityPpi, exif, format: order.format, quality: order.quality };
-    const picture: AnyPictureFile = { widthPx, heightPx, channels, pixels, ...parts };
+    const finished = await finishPainting(order.out, { widthPx, heightPx, channels, pixels }, finish, signal);
+    const picture: AnyPictureFile = { ...finished, ...parts };
     const remarks = [...file.remarks];
     const path = await place(
       order.out,
@@ -114,13 +127,23 @@ export async function deliverPainting(
       const { layers: kind, parameters } = order;
       const composed = { channels, pixels };
       const { layers } = painted;
-      const layered = { widthPx, heightPx, layers, composed, parameters, iccProfile, densityPpi };
+      const own = { iccProfile: file.iccProfile ?? srgbProfile(), densityPpi };
+      const layered = { widthPx, heightPx, layers, composed, parameters, ...own };
       const write = (at: string) => writeLayers(at, layered, kind, { signal });
       layersPath = await place(layersBeside(path, kind), write, signal);
     }
     onProgress?.(1, 'writing');
     const times = { ...painted.times, encodeMs: performance.now() - startMs };
-    return { path, layersPath, widthPx, heightPx, depth, pixelsSha256, times, remarks };
+    return {
+      path,
+      layersPath,
+      widthPx: picture.widthPx,
+      heightPx: picture.heightPx,
+      depth,
+      pixelsSha256,
+      times,
+      remarks,
+    };
   } finally {
     painted.release();
   }

@@ -11,6 +11,7 @@ import {
   type PaintingOrder,
 } from './deliverPainting.ts';
 import { holdPhoto, letGo, readAnyPhoto } from './holdPhoto.ts';
+import { prepareForPrint } from './prepareForPrint.ts';
 
 /** A painting made from a photo's file. */
 export interface PaintedFile extends DeliveredPainting {
@@ -36,7 +37,7 @@ export async function paintToFile(
   const startMs = performance.now();
   await refuseOverwritingOriginal(photoPath, order.out);
   await removeAbandonedSpills();
-  const photo = await readAnyPhoto(photoPath, { signal, inMemoryPixels });
+  const photo = await readForPrint(photoPath, order, { signal, inMemoryPixels });
   let painter: Engine;
   const readMs = performance.now() - startMs;
   try {
@@ -64,5 +65,20 @@ export async function paintToFile(
     return { ...delivered, noiseFloor: enginePhoto.noiseFloor, readMs, openMs };
   } finally {
     enginePhoto.close();
+  }
+}
+
+/** Reads a photo and brings it to the print's own pixels where that is asked for. */
+async function readForPrint(
+  photoPath: string,
+  { printLongEdgeMm, print }: PaintingOrder,
+  { signal, inMemoryPixels }: { signal?: AbortSignal; inMemoryPixels?: number },
+) {
+  const photo = await readAnyPhoto(photoPath, { signal, inMemoryPixels });
+  try {
+    return await prepareForPrint(photo, { printLongEdgeMm, ...print }, signal);
+  } catch (failure) {
+    letGo(photo);
+    throw failure;
   }
 }

@@ -7,12 +7,16 @@ import {
   deliveredPaintings,
   judgeDelivery,
 } from '../../core/recipes/deliveryCheck.ts';
+import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import type { Recipe } from '../../core/recipes/recipe.ts';
-import type { Engine, EnginePhoto } from '../engine/engineApi.ts';
+import type { Engine } from '../engine/engineApi.ts';
 import { readPhoto } from '../files/readPhoto.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
+import type { HeldPhotoFile } from './deliverPainting.ts';
 import { holdPhoto, readAnyPhoto } from './holdPhoto.ts';
 import { paintPixels } from './paintPixels.ts';
+import { prepareForPrint } from './prepareForPrint.ts';
+import { planFinish, printOrderOf } from './printOrder.ts';
 
 /** How far two pictures of one size are apart, in steps of an 8-bit sample. */
 export interface PictureDifference {
@@ -96,7 +100,7 @@ async function stateOfFile(path: string, sha256: string): Promise<VerifiedDelive
 
 /** One photo painted again, as often as its deliveries ask for; read when the first one does. */
 class RepaintedPhoto {
-  #held: Promise<EnginePhoto> | null = null;
+  readonly #held = new Map<string, Promise<HeldPhotoFile>>();
   readonly #hashes = new Map<string, Promise<string>>();
 
   constructor(
@@ -107,7 +111,7 @@ class RepaintedPhoto {
 
   hashOf(painting: DeliveredPainting): Promise<string> {
     const { delivery, output } = painting;
-    const key = [delivery.stateId, delivery.tightnessId, output.printLongEdgeMm, output.depth].join();
+    const key = JSON.stringify([delivery.stateId, delivery.tightnessId, output]);
     let hash = this.#hashes.get(key);
     if (!hash) {
       hash = this.#paint(painting).then(({ pixelsSha256, release }) => {
@@ -121,7 +125,7 @@ class RepaintedPhoto {
 
   async differenceFrom(painting: DeliveredPainting, filePath: string): Promise<PictureDifference | null> {
     const before = await readPhoto(filePath, { signal: this.signal }).catch(() => null);
-    const { widthPx, heightPx } = await this.#photo();
+    const { widthPx, heightPx } = (await this.#photo(painting.output)).enginePhoto;
     if (before?.widthPx !== widthPx || before.heightPx !== heightPx) return null;
     const today = await this.#paint(painting);
     try {
@@ -134,23 +138,40 @@ class RepaintedPhoto {
   }
 
   close(): void {
-    void this.#held?.then(
-      (held) => held.close(),
-      () => undefined,
-    );
+    for (const held of this.#held.values())
+      void held.then(
+        ({ enginePhoto }) => enginePhoto.close(),
+        () => undefined,
+      );
   }
 
   async #paint({ parameters, output }: DeliveredPainting) {
-    const { printLongEdgeMm, depth } = output;
+    const { printLongEdgeMm, format } = output;
+    const { enginePhoto, file } = await this.#photo(output);
+    const asDelivered = { printLongEdgeMm, format, print: printOrderOf(output) };
+    const { paintDepth: depth } = await planFinish(this.photoPath, asDelivered, file, output.depth);
     const order = { parameters, depth, printLongEdgeMm };
-    return paintPixels(this.engine, await this.#photo(), order, { signal: this.signal });
+    return paintPixels(this.engine, enginePhoto, order, { signal: this.signal });
   }
 
-  #photo(): Promise<EnginePhoto> {
-    this.#held ??= readAnyPhoto(this.photoPath, { signal: this.signal }).then((photo) =>
-      holdPhoto(this.engine, photo, { signal: this.signal }),
-    );
-    return this.#held;
+  /** Read and prepared once for all deliveries of one size. */
+  #photo(output: OutputSettings): Promise<HeldPhotoFile> {
+    const { printLongEdgeMm } = output;
+    const { ppi, crop } = printOrderOf(output);
+    const key = ppi === undefined && !crop ? '' : JSON.stringify([printLongEdgeMm, ppi, crop]);
+    let held = this.#held.get(key);
+    if (!held) {
+      held = this.#open({ printLongEdgeMm, ppi, crop });
+      this.#held.set(key, held);
+    }
+    return held;
+  }
+
+  async #open(size: Parameters<typeof prepareForPrint>[1]): Promise<HeldPhotoFile> {
+    const { engine, signal } = this;
+    const photo = await prepareForPrint(await readAnyPhoto(this.photoPath, { signal }), size, signal);
+    const { pixels: _, ...file } = photo;
+    return { enginePhoto: await holdPhoto(engine, photo, { signal }), file };
   }
 }
 
