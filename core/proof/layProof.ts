@@ -37,10 +37,7 @@ interface Cell {
   captionPt: number;
 }
 
-interface CaptionLine {
-  text: string;
-  style: TypeStyle;
-}
+type CaptionLine = Omit<PlacedText, 'xPt' | 'baselinePt'>;
 
 /**
  * Lays a series on sheets: rows of pictures that stand on a common line with their captions beneath, as many
@@ -176,7 +173,12 @@ function placeFoot(page: ProofPage, folio: string, sheet: Sheet, type: TypeMeasu
 
 function captionLines(caption: ProofCaption, widthPt: number, type: TypeMeasure): CaptionLine[] {
   const set = (text: string, style: 'name' | 'preset' | 'figures' | 'note') =>
-    wrapText(text, style, widthPt, linesAtMost[style], type).map((line) => ({ text: line, style }));
+    wrapText(text, style, widthPt, linesAtMost[style], type).map(
+      (line, k): CaptionLine =>
+        k > 0
+          ? { text: line, style, continues: true }
+          : { text: line, style, whole: line === text ? undefined : text },
+    );
   return [
     ...set(caption.name, 'name'),
     ...set(caption.preset, 'preset'),
@@ -231,9 +233,10 @@ function placeRow(
     if (sizePx) page.pictures.push({ frame: cell.frame, sizePx, ...place });
     else addFault(page, place, fault, type);
     let yPt = standPt + captionGapPt;
-    for (const { text, style } of cell.caption) {
-      yPt += styleTable[style].leadingPt;
-      page.texts.push({ text, style, xPt, baselinePt: yPt - styleTable[style].leadingPt * 0.22 });
+    for (const line of cell.caption) {
+      const { leadingPt } = styleTable[line.style];
+      yPt += leadingPt;
+      page.texts.push({ ...line, xPt, baselinePt: yPt - leadingPt * 0.22 });
     }
   });
 }

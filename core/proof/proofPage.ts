@@ -101,6 +101,10 @@ export interface PlacedText {
   style: TypeStyle;
   xPt: number;
   baselinePt: number;
+  /** The text that this line and those that continue it stand for, where they do not say it as it is. */
+  whole?: string;
+  /** Goes on with the line before. */
+  continues?: boolean;
 }
 
 /** A hairline from left to right. */

@@ -50,7 +50,7 @@ export async function writeProofPdf(
       pdf.addPage({ size: [page.widthPt, page.heightPt], margin: 0 });
       await drawPictures(pdf, page, pictures, flush, signal);
       drawRules(pdf, page);
-      for (const text of page.texts) drawText(pdf, text, type);
+      drawTexts(pdf, page.texts, type);
       await flush();
     }
     pdf.end();
@@ -121,12 +121,25 @@ function drawRules(pdf: Pdf, page: ProofPage): void {
   for (const { xPt, yPt, widthPt, heightPt } of page.boxes) pdf.rect(xPt, yPt, widthPt, heightPt).stroke();
 }
 
+/**
+ * Draws texts. Some are said a second time, for those who search and copy: what was broken into lines or shortened;
+ * what has letters for which the typeface draws a box; page numbers, whose kerned gaps readers take for none.
+ */
+function drawTexts(pdf: Pdf, texts: ProofPage['texts'], type: ProofType): void {
+  texts.forEach((text, k) => {
+    const isSaid = text.whole !== undefined || text.style === 'folio' || !type.hasAll(text.text, text.style);
+    let isOpen = k > 0 && text.continues === true;
+    if (isSaid && !isOpen) {
+      pdf.markContent('Span', { actual: text.whole ?? text.text });
+      isOpen = true;
+    }
+    drawText(pdf, text, type);
+    if (isOpen && texts[k + 1]?.continues !== true) pdf.endMarkedContent();
+  });
+}
+
 function drawText(pdf: Pdf, { text, style, xPt, baselinePt }: ProofPage['texts'][number], type: ProofType) {
   const { sizePt, colour } = styleTable[style];
-  // Said a second time where it could not be searched and copied: the typeface draws a box instead of a letter, or
-  // kerning leaves a page number's gaps so narrow that readers take them for none.
-  const isSaid = style === 'folio' || !type.hasAll(text, style);
-  if (isSaid) pdf.markContent('Span', { actual: text });
   let leftPt = xPt;
   for (const run of type.runs(text, style)) {
     pdf
@@ -136,5 +149,4 @@ function drawText(pdf: Pdf, { text, style, xPt, baselinePt }: ProofPage['texts']
       .text(run.text, leftPt, baselinePt, { lineBreak: false, baseline: 'alphabetic' });
     leftPt += run.widthPt;
   }
-  if (isSaid) pdf.endMarkedContent();
 }

@@ -90,6 +90,20 @@ describe.skipIf(noPoppler)(`a PDF sheet, read by Poppler${noPoppler ? ` (${noPop
     expect(remarks).toEqual(['渡し船.png: some letters are not in the typeface and are printed as boxes.']);
   });
 
+  it('lets a name be found that was broken into lines or shortened', async () => {
+    const names = [
+      'the ferry at low water, second plate of the morning.png',
+      `${'very-'.repeat(40)}long-7.tif`,
+    ];
+    const { files } = await makeProof(
+      names.map((name) => sourceOf(photographs.nagasakiBoats, name)),
+      order('found.pdf', { columns: 4 }),
+    );
+    const text = await pdfText(files[0]);
+    for (const name of names) expect(text.replaceAll('\n', '')).toContain(name);
+    expect(text).not.toContain('…');
+  });
+
   it('lays 200 frames on as many pages as they need, on paper that lies, every one once', async () => {
     const paths = await Promise.all([
       flatPicture('lying.png', 900, 600, '#8a6d3b'),
