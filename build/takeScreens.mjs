@@ -146,6 +146,7 @@ async function takeStates(page, keep) {
   await page.locator('.preset', { hasText: 'Heron at dusk' }).click();
   await page.getByRole('button', { name: 'Rename…' }).click();
   await keep('presets-own');
+  await page.keyboard.press('Escape');
   await page.keyboard.press('Control+z');
   await page.keyboard.press('Control+z');
   await page.keyboard.press('b');
@@ -158,6 +159,11 @@ async function takeFirst(page, keep, withDemo) {
   const demo = page.getByRole('button', { name: /demo/ });
   if (!withDemo || (await demo.count()) === 0) return;
   await demo.click();
+  const frame = page.getByRole('button', { name: /^plate-2-ferry/ });
+  // The plates are rendered when they are first asked for.
+  await frame.first().waitFor({ timeout: 300_000 });
+  await keep('wall');
+  await frame.first().dblclick();
   await takeEasel(page, keep);
 }
 
