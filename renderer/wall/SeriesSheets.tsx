@@ -65,7 +65,7 @@ export function RunSheet({ series, settings }: SheetProps) {
           onChange={(format) => setOutput({ format })}
         />
         <label className="field">
-          <span>Long edge of the print, in mm</span>
+          <span>Print, mm</span>
           <input
             type="number"
             min={10}
@@ -183,7 +183,7 @@ export function ProofSheet({ series }: SheetProps) {
             onChange={setPaper}
           />
           <FewField
-            label="Lying"
+            label="Way up"
             options={[
               { value: 'upright', name: 'Upright' },
               { value: 'lying', name: 'On its long edge' },
@@ -192,7 +192,7 @@ export function ProofSheet({ series }: SheetProps) {
             onChange={(value) => setLandscape(value === 'lying')}
           />
           <label className="field">
-            <span>Pictures beside one another</span>
+            <span>Across</span>
             <input
               type="number"
               min={1}

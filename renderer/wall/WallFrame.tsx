@@ -68,24 +68,22 @@ export const WallFrame = memo(function WallFrame(props: WallFrameProps) {
           <span className="wall-run" style={{ transform: `scaleX(${run.fraction01})` }} />
         )}
       </button>
-      {isOdd && <Thread widthPx={place.widthPx} heightPx={place.heightPx} />}
+      {isOdd && <Thread heightPx={place.heightPx} />}
       <span className="wall-pin" style={{ left: place.widthPx / 2 }} aria-hidden="true" />
       <Caption {...props} isOdd={isOdd} />
     </li>
   );
 });
 
-/** From the odd frame's corner, hanging down to the words that say why. */
-function Thread({ widthPx, heightPx }: { widthPx: number; heightPx: number }) {
-  const [x, y] = [widthPx - 7, 9];
-  const fall = heightPx + 34;
-  const sag = Math.min(44, widthPx * 0.2);
+/** From the odd frame's corner, down beside it to the words that say why. */
+function Thread({ heightPx }: { heightPx: number }) {
+  const end = heightPx + 72;
   return (
-    <svg className="wall-thread" width={widthPx + 12} height={fall + 6} aria-hidden="true">
+    <svg className="wall-thread" width={20} height={end} viewBox={`-12 0 20 ${end}`} aria-hidden="true">
       <path
-        d={`M ${x} ${y} C ${x + 9} ${heightPx * 0.4}, ${x - sag} ${heightPx * 0.75}, ${x - sag * 0.5} ${heightPx} S ${widthPx * 0.3} ${heightPx + 18}, 3 ${fall}`}
+        d={`M 7 8 C -3 ${heightPx * 0.12}, -13 ${heightPx * 0.3}, -9 ${heightPx * 0.55} S -4 ${heightPx * 0.9}, -8 ${heightPx + 12} S -9 ${heightPx + 44}, -5 ${end}`}
       />
-      <circle cx={x} cy={y} r={4} />
+      <circle cx={7} cy={8} r={4} />
     </svg>
   );
 }
