@@ -41,7 +41,7 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
       return present(state, photo);
     },
     closePhoto: async ({ photoId }) => {
-      await Promise.all([photos.close(photoId, 'asked'), memories.close(photoId)]);
+      await Promise.all([photos.close(photoId, 'asked'), memories.forget(photoId)]);
       return {};
     },
     paintStrata: (input, call) => paint.paintStrata(photos.find(input.photoId), input, call),

@@ -53,11 +53,12 @@ const plainCallId = /^[\w.:-]{1,64}$/;
 /** Builds a host from its parts; nothing heavy is loaded before it is asked for. */
 export function createHost(parts: HostParts): Host {
   const events = new EventHub();
+  const calls = new RunningCalls();
   const state: HostState = {
     parts,
     grants: new PathGrants(),
     events,
-    calls: new RunningCalls(),
+    calls,
     photos: new OpenPhotos({
       loadEngine: () => parts.loadEngine(),
       loadFiles: () => parts.loadFiles(),
@@ -66,7 +67,7 @@ export function createHost(parts: HostParts): Host {
     }),
     recents: new RecentPhotos(parts.dataFolder),
     memories: new PhotoMemories({ loadStores: () => parts.loadStores(), events }),
-    walls: new Walls(parts, events),
+    walls: new Walls(parts, events, calls),
     opening: null,
   };
   const app = routes(state);
@@ -195,6 +196,6 @@ async function closeHost(state: HostState): Promise<void> {
   state.calls.cancelAll();
   // What waits is saved at once: a painting may take a while to stop.
   await Promise.all([state.photos.closeAll(), state.memories.flush()]);
-  await Promise.all([state.memories.flush(), state.recents.flush(), state.walls.closeAll()]);
+  await Promise.all([state.memories.close(), state.recents.flush(), state.walls.closeAll()]);
   state.events.close();
 }

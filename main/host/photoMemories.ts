@@ -1,4 +1,4 @@
-import { dirname, join } from 'node:path';
+import { dirname } from 'node:path';
 import { engineVersion } from '../../core/engineVersion.ts';
 import type { Moment } from '../../core/presets/preset.ts';
 import { stateById } from '../../core/presets/thread.ts';
@@ -6,37 +6,26 @@ import type { PhotoFingerprint, Recipe } from '../../core/recipes/recipe.ts';
 import {
   changeOutput,
   changeParameters,
-  createRecipe,
   currentParameters,
   currentState,
 } from '../../core/recipes/recipeHistory.ts';
 import { DelayedSaver } from '../store/delayedSaver.ts';
-import { findMovedPhotos, reunite } from '../store/movedPhotos.ts';
 import { noteWrittenFile, type WrittenFile } from '../store/notedDelivery.ts';
 import type { Stores } from '../store/openStores.ts';
-import type { PresetStore } from '../store/presetStore.ts';
 import { recipeBeside } from '../store/recipePlaces.ts';
 import type { SavedRecipe } from '../store/storeResults.ts';
-import type { FileVersion } from '../store/versionedFile.ts';
 import type { PhotoMemory, WorkOnEasel } from './api/memoryCommands.ts';
 import type { EventHub } from './eventHub.ts';
+import { type LoadedMemory, loadMemory, takeRecipesAlong } from './loadMemory.ts';
 import { Refusal } from './refusal.ts';
 
-/** What a photo that was never worked on starts from. */
-export const firstPresetName = 'low-water';
+export { firstPresetName } from './loadMemory.ts';
 
-interface Entry {
+interface Entry extends LoadedMemory {
   photoId: string;
   path: string;
   /** Of the photo's bytes when it was opened. */
   photoSha256: string;
-  recipe: Recipe;
-  recipePath: string;
-  version: FileVersion;
-  access: PhotoMemory['access'];
-  photo: PhotoMemory['photo'];
-  isKept: boolean;
-  remarks: string[];
   saved: PhotoMemory['saved'];
   saver: DelayedSaver<Recipe>;
 }
@@ -47,6 +36,9 @@ interface Entry {
  */
 export class PhotoMemories {
   readonly #entries = new Map<string, Promise<Entry>>();
+  readonly #closing = new AbortController();
+  /** Recipes being brought to photos of opened folders, one folder after the other. */
+  #moving: Promise<unknown> = Promise.resolve();
 
   constructor(
     private readonly parts: { loadStores(): Promise<Stores>; events: EventHub; now?: () => Date },
@@ -132,7 +124,7 @@ export class PhotoMemories {
   }
 
   /** Saves what waits and forgets the photo. */
-  async close(photoId: string): Promise<void> {
+  async forget(photoId: string): Promise<void> {
     const opening = this.#entries.get(photoId);
     this.#entries.delete(photoId);
     const entry = await opening?.catch(() => null);
@@ -142,7 +134,22 @@ export class PhotoMemories {
   /** Forgets photos that were closed to make room. */
   async keepOnly(photoIds: readonly string[]): Promise<void> {
     const gone = [...this.#entries.keys()].filter((id) => !photoIds.includes(id));
-    await Promise.all(gone.map((id) => this.close(id)));
+    await Promise.all(gone.map((id) => this.forget(id)));
+  }
+
+  /** A folder was opened: photos that were moved there or renamed get their recipes back. */
+  folderOpened(paths: readonly string[]): void {
+    this.#moving = this.#moving.then(async () => {
+      const { signal } = this.#closing;
+      if (signal.aborted) return;
+      await takeRecipesAlong(await this.parts.loadStores(), paths, signal).catch(() => undefined);
+    });
+  }
+
+  /** Stops looking for recipes and waits until everything is on the disk. */
+  async close(): Promise<void> {
+    this.#closing.abort();
+    await Promise.all([this.flush(), this.#moving]);
   }
 
   /** Waits until everything is on the disk. */
@@ -160,59 +167,28 @@ export class PhotoMemories {
   }
 
   async #load(photoId: string, path: string, fingerprint: PhotoFingerprint): Promise<Entry> {
-    const { recipes, presets, dataFolder, mirrorFolder } = await this.parts.loadStores();
-    let loaded = await recipes.load(path, fingerprint);
-    const remarks: string[] = [];
-    if (loaded.kind === 'none') {
-      const [found] = await findMovedPhotos(recipes, [path], mirrorFolder).catch(() => []);
-      // A copy of a photo that is still where it was starts a life of its own.
-      if (found?.kind === 'moved') {
-        await reunite(recipes, found, join(dataFolder, 'bin', 'recipes'));
-        loaded = await recipes.load(path, fingerprint);
-        remarks.push(`This photo was moved here from ${found.oldPhotoPath}: its recipe came along.`);
-      }
-    }
-    const fresh = async () => createRecipe(fingerprint, await firstPreset(presets), this.moment());
-    const beside = { recipePath: recipeBeside(path), version: null as FileVersion };
-    const known =
-      loaded.kind === 'open'
-        ? {
-            recipe: loaded.recipe,
-            recipePath: loaded.path,
-            version: loaded.version,
-            photo: loaded.photo,
-            remarks: [...remarks, ...loaded.remarks],
-            isKept: true,
-          }
-        : loaded.kind === 'newer'
-          ? { ...beside, recipe: loaded.recipe ?? (await fresh()), remarks: [loaded.message], isKept: true }
-          : loaded.kind === 'damaged'
-            ? {
-                ...beside,
-                version: loaded.version,
-                recipe: await fresh(),
-                remarks: [loaded.message],
-                isKept: true,
-              }
-            : { ...beside, recipe: await fresh(), remarks, isKept: false };
-    const isMirrored = dirname(known.recipePath) !== dirname(beside.recipePath);
+    const loaded = await loadMemory(await this.parts.loadStores(), path, fingerprint, this.moment());
     const entry: Entry = {
-      photo: 'same',
-      ...known,
+      ...loaded,
       photoId,
       path,
       photoSha256: fingerprint.sha256,
-      access: loaded.kind === 'newer' ? 'readOnly' : isMirrored ? 'mirrored' : 'writable',
-      saved: { kind: 'saved', message: '' },
+      saved: { kind: loaded.whenSaved ? 'waiting' : 'saved', message: '' },
       saver: new DelayedSaver<Recipe>((recipe) => this.#save(entry, recipe)),
     };
+    if (loaded.whenSaved) entry.saver.change(entry.recipe);
     return entry;
   }
 
   async #save(entry: Entry, recipe: Recipe): Promise<void> {
     const { recipes } = await this.parts.loadStores();
     const at = { path: entry.recipePath, version: entry.version };
-    this.#take(entry, await recipes.save(entry.path, recipe, at), recipe);
+    const saved = await recipes.save(entry.path, recipe, at);
+    if (saved.kind === 'saved' && entry.whenSaved) {
+      await entry.whenSaved();
+      entry.whenSaved = null;
+    }
+    this.#take(entry, saved, recipe);
   }
 
   #take(entry: Entry, saved: SavedRecipe, recipe = entry.recipe): void {
@@ -226,12 +202,6 @@ export class PhotoMemories {
     } else entry.saved = { kind: saved.kind, message: saved.message };
     this.parts.events.send('memoryChanged', { photoId: entry.photoId });
   }
-}
-
-async function firstPreset(presets: PresetStore) {
-  const shelf = await presets.list();
-  const found = shelf.presets.find(({ preset }) => preset.name === firstPresetName) ?? shelf.presets[0];
-  return found.preset;
 }
 
 /** @throws Refusal where the recipe has no such state */

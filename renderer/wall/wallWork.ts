@@ -20,6 +20,7 @@ import { addNotice } from '../state/noticeStore.ts';
 import { openingStore, photoStore, sessionStore } from '../state/photoStore.ts';
 import { type ChangeGroup, recordChange, redo, startHistory, undo } from '../state/undoHistory.ts';
 import { pictureShelf } from './pictureShelf.ts';
+import { readRun, runStore } from './runWork.ts';
 import {
   chosenStore,
   comparedStore,
@@ -62,6 +63,7 @@ function hang(view: SeriesView): void {
   seriesStore.set(view);
   if (before?.seriesId !== view.seriesId) settingsStore.set(startHistory(view.settings));
   roomStore.set('wall');
+  void readRun();
 }
 
 /** Takes the series down; changes are kept. */
@@ -73,6 +75,7 @@ export async function closeSeries(): Promise<void> {
   settingsStore.set(null);
   comparedStore.set(null);
   wallSheetStore.set('none');
+  runStore.set(null);
   pictureShelf.follow(null);
   await host.call('closeSeries', { seriesId: series.seriesId }).catch(() => undefined);
 }

@@ -7,13 +7,14 @@ type SeriesHandlers = Pick<CommandHandlers, keyof SeriesCommands>;
 
 /** The commands of the series; each is described where the contract lists it. */
 export function createSeriesHandlers(state: HostState): SeriesHandlers {
-  const { walls, grants, recents, events } = state;
+  const { walls, grants, recents, events, memories } = state;
   return {
     openSeries: async ({ path }) => {
       const folder = grants.checkListing(path);
       const series = await walls.open(folder);
       // The user chose the folder: its photos may be opened, and paintings may lie in it.
       grants.folderWasListed(folder);
+      memories.folderOpened(series.frameIds.map((frameId) => series.pathOf(frameId)));
       const added = recents.add({ path: folder, frames: series.frameIds.length });
       void added.then(() => events.send('recentsChanged', {}));
       return series.view();

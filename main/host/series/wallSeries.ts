@@ -49,6 +49,8 @@ export interface WallParts {
   loadStores(): Promise<Stores>;
   pictures: FramePictures;
   events: EventHub;
+  /** The window waits for something: measuring can wait. */
+  isBusy(): boolean;
   /** How many plates of the demo are still to come into this folder. */
   coming(folder: string): number;
 }
@@ -85,7 +87,7 @@ export class WallSeries {
         measured: (frameId) => this.#note(frameId, { isMeasuring: false }),
         failed: (frameId, failure) => this.#noteFailure(frameId, failure),
       },
-      () => wall.pictures.isIdle && performance.now() - this.#lastPictureMs > restMs,
+      () => !wall.isBusy() && wall.pictures.isIdle && performance.now() - this.#lastPictureMs > restMs,
     );
   }
 

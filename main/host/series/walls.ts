@@ -1,6 +1,7 @@
 import type { EventHub } from '../eventHub.ts';
 import type { HostParts } from '../hostParts.ts';
 import { Refusal } from '../refusal.ts';
+import type { RunningCalls } from '../runningCalls.ts';
 import { FramePictures } from './framePictures.ts';
 import type { SeriesRun } from './seriesRun.ts';
 import { WallSeries } from './wallSeries.ts';
@@ -17,6 +18,7 @@ export class Walls {
   constructor(
     private readonly parts: HostParts,
     private readonly events: EventHub,
+    private readonly calls: RunningCalls,
   ) {
     this.pictures = new FramePictures(parts);
   }
@@ -36,6 +38,7 @@ export class Walls {
       loadStores: () => this.parts.loadStores(),
       pictures: this.pictures,
       events: this.events,
+      isBusy: () => this.calls.count > 0,
       coming: (path) => this.parts.demo?.coming(path) ?? 0,
     });
     this.#byId.set(series.seriesId, series);
