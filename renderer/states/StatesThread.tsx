@@ -13,7 +13,7 @@ import { StateCard } from './StateCard.tsx';
 import { sentenceOfUnkept } from './stateWords.ts';
 import { ThreadLine } from './ThreadLine.tsx';
 import { keepingStore, threadCallStore } from './threadCalls.ts';
-import { placeStates, threadWidthPx, toRem, xOf } from './threadLayout.ts';
+import { placeStates, ringWidthPx, threadWidthPx, toRem, xOf } from './threadLayout.ts';
 import { bringIntoView, useThreadView } from './threadScroll.ts';
 
 interface ThreadProps {
@@ -107,7 +107,7 @@ export function StatesThread({ history, look, photo, hasUnkeptWork, isReadOnly }
                 ]
                   .filter(Boolean)
                   .join(' ')}
-                style={{ left: toRem(xPx) }}
+                style={{ left: toRem(xPx), width: toRem(ringWidthPx(state.number)) }}
                 data-state={state.id}
                 tabIndex={state.id === (pointedId ?? look.stateId) ? 0 : -1}
                 aria-current={isPresent ? 'true' : undefined}

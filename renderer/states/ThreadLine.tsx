@@ -1,4 +1,4 @@
-import { type PlacedState, threadWidthPx, toRem, xOf } from './threadLayout.ts';
+import { type PlacedState, ringPx, ringWidthPx, threadWidthPx, toRem, xOf } from './threadLayout.ts';
 
 interface LineProps {
   placed: readonly PlacedState[];
@@ -9,7 +9,7 @@ interface LineProps {
 
 const heightPx = 48;
 const lineYPx = 26;
-const radiusPx = 14;
+const radiusPx = ringPx / 2;
 
 /**
  * The line that the numerals stand on. An arc leads over the states between, from a state to a follower that does not
@@ -36,7 +36,7 @@ export function ThreadLine({ placed, count, unkeptFrom }: LineProps) {
           className="thread-unkept-line"
           d={
             unkeptFrom === count - 1
-              ? `M ${xOf(unkeptFrom) + radiusPx} ${lineYPx} H ${xOf(count) - radiusPx}`
+              ? `M ${xOf(unkeptFrom) + ringWidthPx(count) / 2} ${lineYPx} H ${xOf(count) - radiusPx}`
               : arc(xOf(unkeptFrom), xOf(count), lineYPx + radiusPx, -1)
           }
         />

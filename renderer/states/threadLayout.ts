@@ -1,3 +1,4 @@
+import { toRoman } from '../../core/presets/roman.ts';
 import type { State } from '../../core/presets/state.ts';
 
 /*
@@ -6,10 +7,30 @@ import type { State } from '../../core/presets/state.ts';
  */
 export const rootPx = 14;
 
-/** Distance of two states on the thread. */
-export const pitchPx = 46;
 /** Room before the first and after the last. */
 export const marginPx = 26;
+/** How high a numeral's ring is, and how wide where the numeral is short. */
+export const ringPx = 28;
+const gapPx = 18;
+const paddingPx = 7;
+
+/** How wide the serif's capitals are, in its own height. */
+const letterEm: Readonly<Record<string, number>> = {
+  I: 0.34,
+  V: 0.66,
+  X: 0.66,
+  L: 0.57,
+  C: 0.66,
+  D: 0.74,
+  M: 0.9,
+};
+
+/** How wide the ring round a numeral is: a ring, or a longer band for a longer numeral. */
+export function ringWidthPx(number: number): number {
+  let em = 0;
+  for (const letter of toRoman(number)) em += letterEm[letter] ?? 0.7;
+  return Math.max(ringPx, Math.ceil(em * rootPx) + 2 * paddingPx);
+}
 
 /** A length of the thread for a style. */
 export function toRem(px: number): string {
@@ -24,13 +45,34 @@ export interface PlacedState {
   fromXPx: number | null;
 }
 
-/** How wide a thread of that many states is, with room for unkept work. */
-export function threadWidthPx(count: number): number {
-  return 2 * marginPx + Math.max(0, count - 1) * pitchPx + pitchPx;
+/** Where the numerals I, II, III … stand; a thread's numbers run without a gap, so that one row serves all threads. */
+const centresPx: number[] = [marginPx];
+
+/** Where the state of that index stands. */
+export function xOf(index: number): number {
+  while (centresPx.length <= index) {
+    const number = centresPx.length;
+    const stepPx = (ringWidthPx(number) + ringWidthPx(number + 1)) / 2 + gapPx;
+    centresPx.push(centresPx[number - 1] + stepPx);
+  }
+  return centresPx[index];
 }
 
-export function xOf(index: number): number {
-  return marginPx + index * pitchPx;
+/** How wide a thread of that many states is, with room for unkept work. */
+export function threadWidthPx(count: number): number {
+  return xOf(count) + marginPx;
+}
+
+/** The first state that does not stand left of `xPx`. */
+function indexAt(xPx: number, count: number): number {
+  let from = 0;
+  let to = count;
+  while (from < to) {
+    const middle = (from + to) >> 1;
+    if (xOf(middle) < xPx) from = middle + 1;
+    else to = middle;
+  }
+  return from;
 }
 
 /**
@@ -39,8 +81,8 @@ export function xOf(index: number): number {
  * @param leftPx @param widthPx what is shown of the thread
  */
 export function placeStates(states: readonly State[], leftPx: number, widthPx: number): PlacedState[] {
-  const first = Math.max(0, Math.floor((leftPx - marginPx) / pitchPx) - 2);
-  const last = Math.min(states.length - 1, Math.ceil((leftPx + widthPx - marginPx) / pitchPx) + 2);
+  const first = Math.max(0, indexAt(leftPx, states.length) - 3);
+  const last = Math.min(states.length - 1, indexAt(leftPx + widthPx, states.length) + 2);
   const placed: PlacedState[] = [];
   for (let index = first; index <= last; index++) {
     const state = states[index];

@@ -1,5 +1,5 @@
 import { type RefObject, useEffect, useState } from 'react';
-import { pitchPx, rootPx, xOf } from './threadLayout.ts';
+import { marginPx, rootPx, xOf } from './threadLayout.ts';
 
 /** What is in view of a thread longer than the window, in the thread's own pixels. */
 export interface ThreadView {
@@ -52,8 +52,8 @@ export function useThreadView(hold: RefObject<HTMLElement | null>): ThreadView {
 export function bringIntoView(hold: HTMLElement | null, index: number): void {
   if (!hold || index < 0) return;
   const scale = scaleNow();
-  const x = xOf(index) * scale;
-  const reach = 1.5 * pitchPx * scale;
-  if (x - reach < hold.scrollLeft) hold.scrollLeft = x - reach;
-  else if (x + reach > hold.scrollLeft + hold.clientWidth) hold.scrollLeft = x + reach - hold.clientWidth;
+  const leftPx = (index === 0 ? 0 : xOf(index - 1) - marginPx) * scale;
+  const rightPx = (xOf(index + 1) + marginPx) * scale;
+  if (leftPx < hold.scrollLeft) hold.scrollLeft = leftPx;
+  else if (rightPx > hold.scrollLeft + hold.clientWidth) hold.scrollLeft = rightPx - hold.clientWidth;
 }
