@@ -20,7 +20,7 @@ export const outputSettingsSchema = z
       .boolean()
       .optional()
       .meta({ description: 'Brought to `ppi` before painting; its own pixels otherwise.' }),
-    crop: z
+    cropFrame: z
       .looseObject({ aspect: z.number().min(0.01).max(100), x01: fraction, y01: fraction })
       .optional()
       .meta({ description: 'A frame of that width over height, its middle there.' }),

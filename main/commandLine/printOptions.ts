@@ -64,7 +64,7 @@ export function readPrintOrder(
     output.ppi = readNumber(values.ppi, '--ppi', 1, 9600);
     output.isResampled = true;
   }
-  if (values.crop !== undefined) output.crop = readCrop(values.crop);
+  if (values.crop !== undefined) output.cropFrame = readCrop(values.crop);
   if (values.bleed !== undefined) output.bleedMm = readNumber(values.bleed, '--bleed', 0, 100);
   if (values['trim-marks']) output.trimMarks = true;
   const asked = { ...recipe, ...output } as OutputSettings;
@@ -85,7 +85,7 @@ function readIntent(text: string): OutputSettings['intent'] {
   );
 }
 
-function readCrop(text: string): NonNullable<OutputSettings['crop']> {
+function readCrop(text: string): NonNullable<OutputSettings['cropFrame']> {
   const parts = /^([\d.]+):([\d.]+)(?:@([\d.]+),([\d.]+))?$/.exec(text);
   const [width, height, x01, y01] = (parts ?? [])
     .slice(1)

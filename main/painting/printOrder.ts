@@ -28,7 +28,7 @@ export interface PrintOrder {
 
 /** What a recipe's output settings ask for. */
 export function printOrderOf(output: OutputSettings): PrintOrder {
-  const { profile, intent, blackPointCompensation, bleedMm, crop, trimMarks } = output;
+  const { profile, intent, blackPointCompensation, bleedMm, cropFrame: crop, trimMarks } = output;
   return {
     profile,
     intent,

@@ -4,6 +4,7 @@ import { describe, expect, it } from 'vitest';
 import { FileError } from '../../main/files/fileError.ts';
 import { readPhotoSize } from '../../main/files/photoHeader.ts';
 import { readPhoto } from '../../main/files/readPhoto.ts';
+import { writePicture } from '../../main/files/writePicture.ts';
 import { photographs } from '../fixtures/photographs.ts';
 import { plainPng, pngColour } from '../fixtures/plainPng.ts';
 import { plainTiff } from '../fixtures/plainTiff.ts';
@@ -135,7 +136,7 @@ describe('colour', () => {
     expect(photo.remarks).toEqual([]);
   });
 
-  it('converts CMYK to sRGB and says so', async () => {
+  it('brings CMYK through its profile to wide RGB of 16 bits and says so', async () => {
     const cmyk = await sharp({ create: { width: 8, height: 8, channels: 3, background: '#c02020' } })
       .toColourspace('cmyk')
       .withIccProfile('cmyk')
@@ -144,9 +145,13 @@ describe('colour', () => {
     expect((await sharp(cmyk).metadata()).space).toBe('cmyk');
     const photo = await readPhoto(await folder.file('cmyk.jpg', cmyk));
     expect(photo.channels).toBe(3);
-    expect(photo.iccProfile).toBeUndefined();
-    expect(photo.remarks).toEqual(['The photo is CMYK: converted to sRGB through its embedded profile.']);
-    const [red, green, blue] = photo.pixels;
+    expect(photo.remarks.join()).toMatch(/CMYK: converted through its embedded profile/);
+    expect(photo.depth).toBe(16);
+    // What it is by the library's own colour engine, which reads the profile that comes along.
+    const written = folder.path('cmyk as wide.tif');
+    await writePicture(written, { ...photo, format: 'tiff' });
+    const { data } = await sharp(written).toColourspace('srgb').raw().toBuffer({ resolveWithObject: true });
+    const [red, green, blue] = data;
     expect(Math.max(Math.abs(red - 0xc0), Math.abs(green - 0x20), Math.abs(blue - 0x20))).toBeLessThan(24);
   });
 
