@@ -3,10 +3,12 @@ import { ParameterError } from '../../core/parameters/parameterError.ts';
 import { FileError } from '../files/fileError.ts';
 import { discardUnfinished } from '../files/unfinishedFile.ts';
 import { compareCommand } from './compareCommand.ts';
-import { paramsCommand, presetsCommand } from './listCommands.ts';
 import { paintCommand } from './paintCommand.ts';
+import { paramsCommand } from './paramsCommand.ts';
+import { presetsCommand } from './presetsCommand.ts';
 import { proofCommand } from './proofCommand.ts';
 import { returnCommand } from './returnCommand.ts';
+import { settingsCommand } from './settingsCommand.ts';
 import { statesCommand } from './statesCommand.ts';
 import { describeCommand, describeProgram, exitCode, UsageError } from './usage.ts';
 import { verifyCommand } from './verifyCommand.ts';
@@ -20,6 +22,7 @@ const commands = [
   proofCommand,
   presetsCommand,
   paramsCommand,
+  settingsCommand,
 ];
 
 /**

@@ -1,4 +1,3 @@
-import { stat } from 'node:fs/promises';
 import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import type { Parameters } from '../../core/parameters/table.ts';
@@ -11,11 +10,11 @@ import {
   currentState,
   layPreset,
 } from '../../core/recipes/recipeHistory.ts';
+import { findMovedPhotos, hasRecipe } from '../store/movedPhotos.ts';
 import { noteWrittenFile, type WrittenFile } from '../store/notedDelivery.ts';
 import type { Stores } from '../store/openStores.ts';
-import { recipeBeside, recipeInMirror } from '../store/recipePlaces.ts';
 import { type ChosenLook, chosenLook, readSettings } from './chosenLook.ts';
-import { now, type PhotoRecipe, readRecipe, saveRecipe } from './photoRecipe.ts';
+import { now, type PhotoRecipe, readRecipe, refuseReadOnly, saveRecipe } from './photoRecipe.ts';
 
 /** What a photo is to be painted by: its own recipe, or a preset. */
 export interface PaintWork {
@@ -41,8 +40,10 @@ export async function choosePaintWork(
   photoPath: string,
   asked: { preset: string | undefined; settings: readonly string[]; isKept: boolean },
 ): Promise<PaintWork> {
-  const isToRead = asked.isKept || (asked.preset === undefined && (await hasRecipe(stores, photoPath)));
+  const isToRead = asked.isKept || (asked.preset === undefined && (await mayHaveRecipe(stores, photoPath)));
   const read = isToRead ? await readRecipe(stores, photoPath) : null;
+  // Found out before the painting, not after it.
+  if (asked.isKept && read) refuseReadOnly(read);
   if (asked.preset === undefined && read?.recipe) return fromRecipe(read, read.recipe, asked.settings);
   const look = await chosenLook(stores.presets, asked.preset, asked.settings);
   const { preset, state, parameters } = look;
@@ -72,10 +73,11 @@ function fromRecipe(read: PhotoRecipe, recipe: Recipe, settings: readonly string
   };
 }
 
-async function hasRecipe({ mirrorFolder }: Stores, photoPath: string): Promise<boolean> {
-  const places = [recipeBeside(photoPath), recipeInMirror(photoPath, mirrorFolder)];
-  const found = await Promise.all(places.map((path) => stat(path).catch(() => null)));
-  return found.some((facts) => facts !== null);
+/** Found out without reading the photo, unless a recipe was made for one of its size. */
+async function mayHaveRecipe({ recipes }: Stores, photoPath: string): Promise<boolean> {
+  if (await hasRecipe(recipes, photoPath)) return true;
+  const found = await findMovedPhotos(recipes, [photoPath]).catch(() => []);
+  return found.some(({ kind }) => kind === 'moved');
 }
 
 /**
@@ -98,5 +100,5 @@ export async function keepPainted(
       recipe = layPreset(recipe, look.preset, look.state.id, moment);
   }
   const noted = noteWrittenFile(recipe!, photoPath, { ...file, photoSha256: known.photo.sha256 }, moment);
-  return { path: known.path, remarks: await saveRecipe(stores, photoPath, known, noted) };
+  return saveRecipe(stores, photoPath, known, noted);
 }

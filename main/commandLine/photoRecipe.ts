@@ -7,10 +7,9 @@ import type { PhotoFingerprint, PresetHistory, Recipe } from '../../core/recipes
 import { currentHistory } from '../../core/recipes/recipeHistory.ts';
 import { FileError } from '../files/fileError.ts';
 import { dataFolder } from '../store/dataFolder.ts';
+import { findMovedPhotos, putOrphanAside, type Reunion, recipeBin } from '../store/movedPhotos.ts';
 import { openStores, type Stores } from '../store/openStores.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
-import { recipeBeside } from '../store/recipePlaces.ts';
-import type { SavedRecipe } from '../store/storeResults.ts';
 import type { FileVersion } from '../store/versionedFile.ts';
 import { UsageError } from './usage.ts';
 
@@ -24,6 +23,8 @@ export interface PhotoRecipe {
   /** A newer version wrote it: nothing may be saved. */
   isReadOnly: boolean;
   remarks: string[];
+  /** The recipe was found by the photo's bytes, where the photo was before it was moved or renamed. */
+  reunion: Reunion | null;
 }
 
 export function commandStores(): Stores {
@@ -35,35 +36,35 @@ export function now(): Moment {
 }
 
 /**
- * Reads the recipe of a photo.
+ * Reads the recipe of a photo; one that was moved or renamed is known by its bytes. Nothing is written.
  * @throws FileError where the photo cannot be read
  */
 export async function readRecipe(stores: Stores, photoPath: string): Promise<PhotoRecipe> {
   const photo = await fingerprintPhoto(photoPath);
   const loaded = await stores.recipes.load(photoPath, photo);
-  const common = { photo, path: recipeBeside(photoPath), version: null, isReadOnly: false };
+  const common = { photo, path: loaded.path, version: null, isReadOnly: false, reunion: null };
   switch (loaded.kind) {
     case 'none':
-      return { ...common, recipe: null, remarks: [] };
+      return { ...common, ...(await fromBefore(stores, photoPath)) };
     case 'open':
-      return {
-        ...common,
-        recipe: loaded.recipe,
-        path: loaded.path,
-        version: loaded.version,
-        remarks: loaded.remarks,
-      };
+      return { ...common, recipe: loaded.recipe, version: loaded.version, remarks: loaded.remarks };
     case 'newer':
-      return {
-        ...common,
-        recipe: loaded.recipe,
-        path: loaded.path,
-        isReadOnly: true,
-        remarks: [loaded.message],
-      };
+      return { ...common, recipe: loaded.recipe, isReadOnly: true, remarks: [loaded.message] };
     case 'damaged':
       return { ...common, recipe: null, version: loaded.version, remarks: [loaded.message] };
   }
+}
+
+async function fromBefore(
+  { recipes }: Stores,
+  photoPath: string,
+): Promise<Pick<PhotoRecipe, 'recipe' | 'remarks' | 'reunion'>> {
+  const [reunion] = await findMovedPhotos(recipes, [photoPath]).catch(() => []);
+  // A copy of a photo that is still where it was has a life of its own.
+  if (reunion?.kind !== 'moved') return { recipe: null, remarks: [], reunion: null };
+  const recipe = { ...reunion.recipe, photo: { ...reunion.recipe.photo, ...reunion.photo } };
+  const remark = `This photo was moved here from ${reunion.oldPhotoPath}: its recipe is used.`;
+  return { recipe, remarks: [remark], reunion };
 }
 
 /**
@@ -75,9 +76,15 @@ export function requireRecipe(photoPath: string, { recipe }: PhotoRecipe): Recip
   throw new FileError(photoPath, 'has no recipe', 'Paint it with --keep, or work on it in the window.');
 }
 
+/** @throws FileError where a newer version wrote the recipe */
+export function refuseReadOnly({ isReadOnly, path }: PhotoRecipe): void {
+  if (isReadOnly)
+    throw new FileError(path, 'was written by a newer version', 'Update Oxgall to go on with it.');
+}
+
 /**
  * Saves a recipe; what somebody else saved meanwhile is taken in.
- * @returns what to tell: where it went instead, or that it is rescued; usually empty
+ * @returns where it is now, and what to tell: usually nothing
  * @throws FileError where it could not be saved; it is rescued then, and says so
  */
 export async function saveRecipe(
@@ -85,18 +92,21 @@ export async function saveRecipe(
   photoPath: string,
   read: PhotoRecipe,
   recipe: Recipe,
-): Promise<string[]> {
-  if (read.isReadOnly)
-    throw new FileError(read.path, 'was written by a newer version', 'Update Oxgall to go on with it.');
+): Promise<{ path: string; remarks: string[] }> {
+  refuseReadOnly(read);
   const at = { path: read.path, version: read.version };
   const { saved } = await stores.recipes.saveKeepingBoth(photoPath, recipe, at);
-  return remarksOf(saved);
-}
-
-function remarksOf(saved: SavedRecipe): string[] {
-  if (saved.kind === 'saved') return saved.remarks;
-  if (saved.kind === 'failed') throw saved.error;
-  throw new FileError(saved.path, saved.message, 'Close the other program and try again.');
+  if (saved.kind === 'failed') {
+    const { problem, remedy } = saved.error;
+    const safe = saved.rescuedTo
+      ? ` The work is safe in ${saved.rescuedTo} and comes back with the photo.`
+      : '';
+    throw new FileError(saved.path, problem, `${remedy}${safe}`, { cause: saved.error });
+  }
+  if (saved.kind === 'conflict')
+    throw new FileError(saved.path, saved.message, 'Close the other program and try again.');
+  if (read.reunion) await putOrphanAside(read.reunion, recipeBin(stores.dataFolder));
+  return { path: saved.path, remarks: saved.remarks };
 }
 
 /**

@@ -40,12 +40,13 @@ async function goBack(words: string[]): Promise<number> {
   const history = historyFor(recipe, values.preset);
   const state = stateOf(history, values.state, '--state');
   const returned = returnToState(recipe, state.id, now(), history.preset);
-  const remarks = [...read.remarks, ...(await saveRecipe(stores, photoPath, read, returned))];
+  const saved = await saveRecipe(stores, photoPath, read, returned);
+  const remarks = [...read.remarks, ...saved.remarks];
   const present = currentState(returned);
   if (values.json) {
     const report = {
       photo: photoPath,
-      recipe: read.path,
+      recipe: saved.path,
       preset: history.preset,
       returnedTo: state.number,
       state: present.number,

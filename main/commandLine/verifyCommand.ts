@@ -1,4 +1,4 @@
-import { readdir, stat } from 'node:fs/promises';
+import { stat } from 'node:fs/promises';
 import { basename, dirname, join } from 'node:path';
 import { toRoman } from '../../core/presets/roman.ts';
 import { stateById } from '../../core/presets/thread.ts';
@@ -6,7 +6,8 @@ import type { Recipe } from '../../core/recipes/recipe.ts';
 import { createEngine } from '../engine/paintEngine.ts';
 import { FileError } from '../files/fileError.ts';
 import type { VerifiedDelivery } from '../painting/verifyDelivery.ts';
-import { isRecipeName, photoOfRecipe } from '../store/recipePlaces.ts';
+import { photosWithRecipes } from '../store/movedPhotos.ts';
+import type { Stores } from '../store/openStores.ts';
 import { commandStores, readRecipe, requireRecipe } from './photoRecipe.ts';
 import { ProgressLine } from './progressLine.ts';
 import { readWhole, readWords } from './readWords.ts';
@@ -17,7 +18,8 @@ const options = { workers: { type: 'string' }, json: { type: 'boolean' } } as co
 export const verifyCommand: Command = {
   name: 'verify',
   usage: 'verify PHOTO…|FOLDER [--workers N] [--json]',
-  summary: 'Paints what was delivered again from the recipes and says whether it is the same to the pixel.',
+  summary:
+    'Paints what was delivered again from the recipes and says whether it is the same to the pixel; exit code 1 where anything is not.',
   options: [
     ['--workers N', 'Worker threads; one for each processor unless given.'],
     ['--json', 'Prints one JSON object with everything that was found.'],
@@ -40,9 +42,10 @@ async function verify(words: string[]): Promise<number> {
     what: 'photos or a folder',
   });
   const workers = values.workers === undefined ? undefined : readWhole(values.workers, '--workers', 1, 64);
-  const photos = (await Promise.all(positionals.map(photosOf))).flat();
-  const { verifyDeliveries } = await import('../painting/verifyDelivery.ts');
   const stores = commandStores();
+  const named = await Promise.all(positionals.map((path) => photosOf(stores, path)));
+  const photos = [...new Set(named.flat())];
+  const { verifyDeliveries } = await import('../painting/verifyDelivery.ts');
   const progress = new ProgressLine();
   const engine = await createEngine({ workers });
   const found: VerifiedPhoto[] = [];
@@ -69,26 +72,37 @@ async function verify(words: string[]): Promise<number> {
     await engine.close();
   }
   const all = found.flatMap(({ deliveries }) => deliveries);
-  const identical = all.filter(({ verdict }) => verdict === 'identical').length;
   const summary = {
     deliveries: all.length,
-    identical,
+    identical: all.filter(({ verdict }) => verdict === 'identical').length,
+    changedFiles: all.filter(({ file }) => file === 'changed').length,
+    missingFiles: all.filter(({ file }) => file === 'missing').length,
     problems: found.filter(({ problem }) => problem).length,
   };
   if (values.json) process.stdout.write(`${JSON.stringify({ photos: found, ...summary }, null, 2)}\n`);
-  else process.stdout.write(`${identical} of ${all.length} deliveries identical\n`);
-  return identical === all.length && summary.problems === 0 ? exitCode.done : exitCode.failed;
+  else process.stdout.write(`${sentenceOf(summary)}\n`);
+  // A file that is elsewhere by now takes nothing from the proof: its painting is the same to the pixel.
+  const isProven = summary.identical === all.length && summary.changedFiles + summary.problems === 0;
+  return isProven ? exitCode.done : exitCode.failed;
 }
 
-/** A photo itself, or every photo of a folder that has a recipe beside it. */
-async function photosOf(path: string): Promise<string[]> {
+function sentenceOf(summary: Record<'deliveries' | 'identical' | 'changedFiles' | 'missingFiles', number>) {
+  const { deliveries, identical, changedFiles, missingFiles } = summary;
+  const files = [
+    changedFiles > 0 && `${changedFiles} of the files changed since`,
+    missingFiles > 0 && `${missingFiles} of the files not there`,
+  ].filter(Boolean);
+  return [`${identical} of ${deliveries} deliveries identical`, ...files].join(', ');
+}
+
+/** A photo itself, or every photo of a folder that has a recipe. */
+async function photosOf(stores: Stores, path: string): Promise<string[]> {
   const facts = await stat(path).catch(() => null);
   if (!facts?.isDirectory()) return [path];
-  const names = (await readdir(path)).filter(isRecipeName);
-  if (names.length === 0)
+  const photos = await photosWithRecipes(stores.recipes, path);
+  if (photos.length === 0)
     throw new FileError(path, 'holds no recipes', 'Name a folder of photos that were painted with --keep.');
-  const collator = new Intl.Collator('en', { numeric: true });
-  return names.map((name) => photoOfRecipe(join(path, name))).sort((a, b) => collator.compare(a, b));
+  return photos;
 }
 
 function placeOf(recipe: Recipe, { stateId }: VerifiedDelivery): { state: number | null; preset: string } {
@@ -119,7 +133,7 @@ function print({ photo, deliveries, problem, remarks }: VerifiedPhoto): void {
       verdictWords[verdict],
       verdict === 'engine-differs' && `engine ${engineVersion}`,
       difference &&
-        `by ${difference.largest.toFixed(1)} at most, ${difference.mean.toFixed(3)} on average, in ${(100 * difference.share01).toFixed(2)} % of the samples`,
+        `by ${difference.largest.toFixed(1)} at most, ${difference.mean.toFixed(3)} on average, in ${(100 * difference.share01).toFixed(2)} % of the samples${difference.isLossyFile ? ', the losses of its format among them' : ''}`,
       file !== 'untouched' && `the file is ${file === 'missing' ? 'not there' : 'changed'}`,
     ].filter(Boolean);
     const name = join(dirname(photo), path);

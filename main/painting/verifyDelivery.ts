@@ -24,6 +24,8 @@ export interface PictureDifference {
   mean: number;
   /** Share of samples that differ at all, 0…1. */
   share01: number;
+  /** The file holds less than was painted: its own loss is part of the difference. */
+  isLossyFile: boolean;
 }
 
 /** What painting a delivery again has shown. */
@@ -131,7 +133,8 @@ class RepaintedPhoto {
     try {
       const { pixels } = today;
       if (!('BYTES_PER_ELEMENT' in pixels) || pixels.length !== before.pixels.length) return null;
-      return pixelDifference(pixels, before.pixels);
+      const isLossyFile = ['jpeg', 'webp'].includes(painting.output.format);
+      return { ...pixelDifference(pixels, before.pixels), isLossyFile };
     } finally {
       today.release();
     }
@@ -175,7 +178,10 @@ class RepaintedPhoto {
   }
 }
 
-function pixelDifference(one: Uint8Array | Uint16Array, other: Uint8Array | Uint16Array): PictureDifference {
+function pixelDifference(
+  one: Uint8Array | Uint16Array,
+  other: Uint8Array | Uint16Array,
+): Omit<PictureDifference, 'isLossyFile'> {
   // Samples of 16 bits count in steps of 8, so that figures can be told without saying the depth.
   const [oneStep, otherStep] = [one, other].map((samples) => (samples.BYTES_PER_ELEMENT === 2 ? 257 : 1));
   let largest = 0;

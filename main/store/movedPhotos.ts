@@ -1,11 +1,12 @@
 import { mkdir, readdir, rename, stat } from 'node:fs/promises';
-import { basename, dirname, join } from 'node:path';
+import { basename, dirname, join, resolve } from 'node:path';
 import { recipeFormat } from '../../core/recipes/documentFormats.ts';
 import { openDocument } from '../../core/recipes/openDocument.ts';
 import type { PhotoFingerprint, Recipe } from '../../core/recipes/recipe.ts';
+import { fileErrorFrom } from '../files/systemErrors.ts';
 import { freePath } from './freePath.ts';
 import { fingerprintPhoto } from './photoFingerprint.ts';
-import { isRecipeName, photoOfRecipe, recipeBeside, recipeInMirror } from './recipePlaces.ts';
+import { isRecipeName, photoOfRecipe } from './recipePlaces.ts';
 import type { RecipeStore } from './recipeStore.ts';
 import type { SavedRecipe } from './storeResults.ts';
 import { readVersioned } from './versionedFile.ts';
@@ -39,11 +40,10 @@ interface Candidate {
 export async function findMovedPhotos(
   store: RecipeStore,
   photoPaths: readonly string[],
-  mirrorFolder: string | null = null,
   signal?: AbortSignal,
 ): Promise<Reunion[]> {
   const bare: string[] = [];
-  for (const path of photoPaths) if (!(await hasRecipe(path, mirrorFolder))) bare.push(path);
+  for (const path of photoPaths) if (!(await hasRecipe(store, path))) bare.push(path);
   if (bare.length === 0) return [];
   const orphans = await findOrphans(new Set(bare.map((path) => dirname(path))));
   const knownSizes = await store.copies.knownSizes();
@@ -88,9 +88,33 @@ async function findFor(
   return reunions.find(({ kind }) => kind === 'moved') ?? reunions[0] ?? null;
 }
 
-async function hasRecipe(photoPath: string, mirrorFolder: string | null): Promise<boolean> {
-  if (await exists(recipeBeside(photoPath))) return true;
-  return mirrorFolder !== null && exists(recipeInMirror(photoPath, mirrorFolder));
+/** Whether a recipe lies in one of the places a photo's may lie. */
+export async function hasRecipe(store: RecipeStore, photoPath: string): Promise<boolean> {
+  const found = await Promise.all(store.placesOf(photoPath).map(exists));
+  return found.includes(true);
+}
+
+/**
+ * The photos of a folder that have a recipe: beside them, in a mirror, or under the name they had before. A recipe
+ * whose photo is nowhere counts too, by the photo it is missing.
+ * @throws FileError where the folder cannot be read
+ */
+export async function photosWithRecipes(store: RecipeStore, folder: string): Promise<string[]> {
+  const names = await readdir(folder).catch((failure) => {
+    throw fileErrorFrom(folder, failure);
+  });
+  const [, ...mirrors] = store.placesOf(join(folder, 'photo')).map((place) => dirname(place));
+  const mirrored = (await Promise.all(mirrors.map((mirror) => readdir(mirror).catch(() => [])))).flat();
+  const found = [...names, ...mirrored].filter(isRecipeName).map((name) => photoOfRecipe(join(folder, name)));
+  const bare = names.filter((name) => !isRecipeName(name)).map((name) => join(folder, name));
+  const moved = (await findMovedPhotos(store, bare)).filter(({ kind }) => kind === 'moved');
+  const left = new Set(moved.map(({ oldPhotoPath }) => resolve(oldPhotoPath)));
+  const photos = [
+    ...found.filter((path) => !left.has(resolve(path))),
+    ...moved.map(({ photoPath }) => photoPath),
+  ];
+  const collator = new Intl.Collator('en', { numeric: true });
+  return [...new Set(photos)].sort(collator.compare);
 }
 
 async function findOrphans(folders: ReadonlySet<string>): Promise<Candidate[]> {
@@ -122,13 +146,22 @@ export async function reunite(
 ): Promise<{ recipe: Recipe; saved: SavedRecipe }> {
   const recipe = { ...reunion.recipe, photo: { ...reunion.recipe.photo, ...reunion.photo } };
   const result = await store.saveKeepingBoth(reunion.photoPath, recipe, { version: null });
-  if (result.saved.kind === 'saved' && reunion.orphanPath && reunion.kind === 'moved') {
-    await mkdir(binFolder, { recursive: true });
-    const inBin = await freePath(join(binFolder, basename(reunion.orphanPath)));
-    // Another disk refuses the rename; then the sidecar simply stays where it is.
-    await rename(reunion.orphanPath, inBin).catch(() => {});
-  }
+  if (result.saved.kind === 'saved') await putOrphanAside(reunion, binFolder);
   return result;
+}
+
+/** Puts the sidecar that a renamed photo left behind into the bin, once its recipe is saved beside the photo. */
+export async function putOrphanAside({ orphanPath, kind }: Reunion, binFolder: string): Promise<void> {
+  if (!orphanPath || kind !== 'moved') return;
+  await mkdir(binFolder, { recursive: true });
+  const inBin = await freePath(join(binFolder, basename(orphanPath)));
+  // Another disk refuses the rename; then the sidecar simply stays where it is.
+  await rename(orphanPath, inBin).catch(() => {});
+}
+
+/** Where sidecars go that lost their photo. */
+export function recipeBin(dataFolder: string): string {
+  return join(dataFolder, 'bin', 'recipes');
 }
 
 async function exists(path: string): Promise<boolean> {

@@ -47,10 +47,11 @@ export class RecipeCopies {
     return new Set((await this.#names()).map((name) => Number(name.split('-')[0])));
   }
 
-  /** Every copy made for a photo of these bytes, wherever it lay. */
+  /** Every copy made for a photo of these bytes, wherever it lay; the one kept last first. */
   async forPhoto(sizeBytes: number, sha256: string): Promise<RecipeCopy[]> {
     const names = (await this.#names()).filter((name) => name.startsWith(`${sizeBytes}-${sha256}-`));
-    const copies = await Promise.all(names.map((name) => readCopy(join(this.#folder, name))));
+    const paths = await newestFirst(names.map((name) => join(this.#folder, name)));
+    const copies = await Promise.all(paths.map(readCopy));
     return copies.filter((copy) => copy !== null);
   }
 
@@ -90,16 +91,19 @@ export class RecipeCopies {
   }
 
   async #newest(paths: string[]): Promise<RecipeCopy | null> {
-    const dated = await Promise.all(
-      paths.map(async (path) => ({ path, atMs: (await stat(path).catch(() => null))?.mtimeMs ?? 0 })),
-    );
-    dated.sort((one, other) => other.atMs - one.atMs);
-    for (const { path } of dated) {
+    for (const path of await newestFirst(paths)) {
       const copy = await readCopy(path);
       if (copy) return copy;
     }
     return null;
   }
+}
+
+async function newestFirst(paths: readonly string[]): Promise<string[]> {
+  const dated = await Promise.all(
+    paths.map(async (path) => ({ path, atMs: (await stat(path).catch(() => null))?.mtimeMs ?? 0 })),
+  );
+  return dated.sort((one, other) => other.atMs - one.atMs).map(({ path }) => path);
 }
 
 /** Stands for a path in a file name. */

@@ -1,5 +1,5 @@
 import { constants, copyFile, mkdir } from 'node:fs/promises';
-import { basename, dirname, join } from 'node:path';
+import { basename, dirname, join, resolve } from 'node:path';
 import type { Moment } from '../../core/presets/preset.ts';
 import { threadFaults } from '../../core/presets/thread.ts';
 import { recipeFormat } from '../../core/recipes/documentFormats.ts';
@@ -21,6 +21,8 @@ export interface RecipeStoreOptions {
   dataFolder: string;
   /** Where recipes go when the photo's folder cannot be written; null for nowhere. */
   mirrorFolder?: string | null;
+  /** Where they went before; those that lie there stay there. */
+  earlierMirrorFolders?: readonly string[];
   engineVersion: string;
   /** The clock; the system's unless given. */
   now?: () => Date;
@@ -94,9 +96,20 @@ export class RecipeStore {
     };
   }
 
+  /** Everywhere the recipe of a photo may lie: beside it, and in mirrors, today's first. */
+  placesOf(photoPath: string): [beside: string, ...mirrored: string[]] {
+    const { mirrorFolder, earlierMirrorFolders = [] } = this.#options;
+    const mirrors = mirrorFolder ? [mirrorFolder, ...earlierMirrorFolders] : earlierMirrorFolders;
+    return [recipeBeside(photoPath), ...mirrors.map((folder) => recipeInMirror(photoPath, folder))];
+  }
+
   async #readMirror(photoPath: string): Promise<OnDisk | null> {
-    const { mirrorFolder } = this.#options;
-    return mirrorFolder ? lookAtPlace(recipeInMirror(photoPath, mirrorFolder)) : null;
+    const [, ...mirrored] = this.placesOf(photoPath);
+    for (const path of mirrored) {
+      const found = await lookAtPlace(path);
+      if (found) return found;
+    }
+    return null;
   }
 
   /** The recipe a place holds, or else the copy of the last one that was whole. */
@@ -164,7 +177,8 @@ export class RecipeStore {
     expected: FileVersion,
   ): Promise<SavedRecipe> {
     const text = documentText(recipe);
-    const copy = { photoPath, recipePath: path, recipe };
+    // Whoever reads the copy may stand in another folder.
+    const copy = { photoPath: resolve(photoPath), recipePath: resolve(path), recipe };
     try {
       refuseUnfit(path, text);
       const lock = join(this.#options.dataFolder, 'locks', placeOf(path));

@@ -4,7 +4,7 @@ import { describe, expect, it } from 'vitest';
 import { findMovedPhotos, reunite } from '../../main/store/movedPhotos.ts';
 import { fingerprintPhoto } from '../../main/store/photoFingerprint.ts';
 import { photoOfRecipe, recipeInMirror } from '../../main/store/recipePlaces.ts';
-import { storeWithPhoto } from './storeFolders.ts';
+import { newStore, storeWithPhoto } from './storeFolders.ts';
 
 async function savedPhoto() {
   const made = await storeWithPhoto();
@@ -58,11 +58,13 @@ describe('a photo and its recipe find each other', () => {
   });
 
   it('and one whose recipe is in the mirror needs no other', async () => {
-    const { store, root, photoPath, recipePath } = await savedPhoto();
-    const mirror = recipeInMirror(photoPath, join(root, 'mirror'));
+    const { store, root, dataFolder, photoPath, recipePath } = await savedPhoto();
+    const mirrorFolder = join(root, 'mirror');
+    const mirror = recipeInMirror(photoPath, mirrorFolder);
     await mkdir(join(mirror, '..'), { recursive: true });
     await rename(recipePath, mirror);
-    expect(await findMovedPhotos(store, [photoPath], join(root, 'mirror'))).toEqual([]);
+    for (const mirrors of [{ mirrorFolder }, { mirrorFolder: null, earlierMirrorFolders: [mirrorFolder] }])
+      expect(await findMovedPhotos(newStore({ dataFolder, ...mirrors }), [photoPath])).toEqual([]);
     expect(await findMovedPhotos(store, [photoPath])).toHaveLength(1);
   });
 });
