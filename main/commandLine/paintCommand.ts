@@ -45,7 +45,7 @@ export const paintCommand: Command = {
     ],
     [
       '--layers ora|tiff',
-      'Writes the strata too, beside the painting: one OpenRaster file, or a folder of 16-bit TIFFs.',
+      'Writes the strata too, beside the painting: one OpenRaster file, or a folder of 16-bit TIFFs; none if not.',
     ],
     ...printOptionHelp,
     ['--keep', "Notes what was painted in the photo's recipe, which is made where there is none."],
@@ -75,9 +75,10 @@ async function paint(words: string[]): Promise<number> {
     20_000,
   );
   const askedDepth = readDepth(read.values.depth);
-  const layers = readLayers(read.values.layers);
   const usedRecipe = work.look === null ? (work.read?.recipe ?? null) : null;
+  const layers = readLayers(read.values.layers) ?? usedRecipe?.work.output.layers ?? 'none';
   const { print, output } = readPrintOrder(read.values, usedRecipe?.work.output ?? null);
+  const layersKind = layers === 'none' ? undefined : layers;
   const named = read.values.out;
   const out = named ?? (await defaultOutputPath(photoPath, 'png'));
   const format = outputFormatFor(out);
@@ -88,7 +89,7 @@ async function paint(words: string[]): Promise<number> {
   const starting = createEngine({ workers });
   starting.catch(() => undefined);
   try {
-    const order = { parameters, out, format, depth: askedDepth, printLongEdgeMm, layers, print };
+    const order = { parameters, out, format, depth: askedDepth, printLongEdgeMm, print, layers: layersKind };
     const painted = await paintToFile(starting, photoPath, order, {
       onProgress: (fraction01, stage) => progress.update(0.05 + 0.95 * fraction01, stage),
     });
@@ -137,7 +138,7 @@ async function paint(words: string[]): Promise<number> {
     const written = { path, sha256, pixelsSha256, photoSha256: work.read!.photo.sha256, parameters };
     return keepPainted(stores, photoPath, work, {
       ...written,
-      output: { ...output, format, depth, printLongEdgeMm },
+      output: { ...output, format, depth, printLongEdgeMm, layers },
     });
   }
 }
@@ -148,9 +149,9 @@ function readDepth(text: string | undefined): 8 | 16 | undefined {
   return text === '8' ? 8 : 16;
 }
 
-function readLayers(text: string | undefined): LayersKind | undefined {
-  if (text === undefined || text === 'ora' || text === 'tiff') return text;
-  throw new UsageError(`Expected ora or tiff for --layers, received ${text}`);
+function readLayers(text: string | undefined): LayersKind | 'none' | undefined {
+  if (text === undefined || text === 'none' || text === 'ora' || text === 'tiff') return text;
+  throw new UsageError(`Expected ora, tiff or none for --layers, received ${text}`);
 }
 
 function roundAll<T extends Record<string, number>>(times: T): T {

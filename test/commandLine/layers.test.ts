@@ -1,5 +1,5 @@
 import { spawn } from 'node:child_process';
-import { mkdir, readdir, writeFile } from 'node:fs/promises';
+import { copyFile, mkdir, readdir, writeFile } from 'node:fs/promises';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import sharp from 'sharp';
@@ -55,9 +55,22 @@ describe('oxgall paint --layers', () => {
     expect(largestDifference(strata.layers, strata.composed)).toBeLessThanOrEqual(1.0001 / 255);
   });
 
+  it('are kept in the recipe, and written again by it until somebody says none', async () => {
+    const photo = folder.path('kept.jpg');
+    await copyFile(photographs.nagasakiBoats, photo);
+    const layersOf = async (...words: string[]) => {
+      const { out } = await start(photo, '--out', 'kept.png', '--json', ...plain, ...words).ended;
+      return JSON.parse(out).layers;
+    };
+    expect(await layersOf()).toBeNull();
+    expect(await layersOf('--layers', 'ora', '--keep')).toBe('kept.ora');
+    expect(await layersOf()).toBe('kept.ora');
+    expect(await layersOf('--layers', 'none')).toBeNull();
+  });
+
   it('refuses another kind, and a folder of somebody else’s', async () => {
     const { code, err } = await start(photographs.nagasakiBoats, '--layers', 'gif').ended;
-    expect([code, err]).toEqual([2, 'oxgall: Expected ora or tiff for --layers, received gif\n']);
+    expect([code, err]).toEqual([2, 'oxgall: Expected ora, tiff or none for --layers, received gif\n']);
     await mkdir(folder.path('mine.strata'));
     await writeFile(folder.path('mine.strata/letter.txt'), 'kept');
     const ended = await start(photographs.nagasakiBoats, '--out', 'mine.png', '--layers', 'tiff').ended;
