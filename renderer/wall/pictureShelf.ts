@@ -14,10 +14,14 @@ interface Held {
   longEdgePx: number;
 }
 
+/** How the names of rough pictures end. */
+const roughName = 'rough';
 /** Pictures kept in the window. */
 const shelfBytes = 72 * 2 ** 20;
 /** The browser opens six connections at most, and one carries the events. */
 const atOnce = 3;
+/** Fine ones take longer: there is always room beside one for rough ones that come into view. */
+const fineAtOnce = 1;
 
 /**
  * The pictures of the frames in and around the view. Rough ones are asked for first, then fine ones, each in the order
@@ -53,8 +57,10 @@ export class PictureShelf {
   want(wanted: readonly WantedPicture[], longEdgePx: number): void {
     this.#wanted = wanted;
     this.#longEdgePx = longEdgePx;
-    const names = new Set(wanted.flatMap((one) => [this.#nameOf(one, true), this.#nameOf(one, false)]));
-    for (const [name, work] of this.#underWay) if (!names.has(name)) work.abort();
+    const names = new Set(wanted.map((one) => this.#nameOf(one, false)));
+    // A rough one is there before calling it off would be.
+    for (const [name, work] of this.#underWay)
+      if (!name.endsWith(roughName) && !names.has(name)) work.abort();
     this.#next();
   }
 
@@ -75,7 +81,9 @@ export class PictureShelf {
   #next(): void {
     while (this.#underWay.size < atOnce) {
       const rough = this.#wanted.find((one) => this.#isMissing(one, true));
-      const next = rough ?? this.#wanted.find((one) => this.#isMissing(one, false));
+      const fineUnderWay = [...this.#underWay.keys()].filter((name) => !name.endsWith(roughName)).length;
+      const mayBeFine = rough === undefined && fineUnderWay < fineAtOnce;
+      const next = mayBeFine ? this.#wanted.find((one) => this.#isMissing(one, false)) : rough;
       if (!next) return;
       void this.#fetch(next, rough !== undefined);
     }
@@ -138,7 +146,7 @@ export class PictureShelf {
   }
 
   #nameOf({ frameId, pictureKey }: WantedPicture, rough: boolean): string {
-    return `${frameId}|${pictureKey}|${rough ? 'rough' : this.#longEdgePx}`;
+    return `${frameId}|${pictureKey}|${rough ? roughName : this.#longEdgePx}`;
   }
 }
 
