@@ -1,10 +1,9 @@
 import { useEffect, useState } from 'react';
 import type { DesktopBridge } from '../../main/host/api/desktopBridge.ts';
-import { takeLookOf } from '../app/memoryWork.ts';
 import { openPhoto } from '../app/photoWork.ts';
-import { importPresets } from '../app/presetWork.ts';
+import { takeDocument } from '../app/takeDocument.ts';
 import { dialogStore } from '../state/panelStore.ts';
-import { openingStore, photoStore } from '../state/photoStore.ts';
+import { openingStore } from '../state/photoStore.ts';
 
 declare global {
   interface Window {
@@ -12,7 +11,7 @@ declare global {
   }
 }
 
-/** Takes a photograph dropped anywhere on the window. */
+/** Takes a photograph, a recipe or a file of presets dropped anywhere on the window. */
 export function useDrop(): boolean {
   const [isOver, setOver] = useState(false);
   useEffect(() => {
@@ -42,12 +41,8 @@ export function useDrop(): boolean {
   return isOver;
 }
 
-/** A recipe gives its look to the photo on the easel, a file of presets goes to the shelf, all else is a photo. */
 async function takeDropped(file: File): Promise<void> {
-  const name = file.name.toLowerCase();
-  if (name.endsWith('.oxgall.json') && photoStore.get()) await takeLookOf(file.name, await file.text());
-  else if (name.endsWith('.oxgall-presets.json')) await importPresets(file);
-  else await openDropped(file);
+  if (!(await takeDocument(file))) await openDropped(file);
 }
 
 async function openDropped(file: File): Promise<void> {

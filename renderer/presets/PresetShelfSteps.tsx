@@ -2,6 +2,7 @@ import { useState } from 'react';
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import type { PresetOffer } from '../../main/host/api/memoryCommands.ts';
 import { createPreset, handOnPresets, importPresets } from '../app/presetWork.ts';
+import { takeDocument } from '../app/takeDocument.ts';
 import type { Look } from '../state/lookStore.ts';
 import { AskForWords } from './AskForWords.tsx';
 
@@ -58,10 +59,16 @@ export function PresetShelfSteps({ presets, look, photo }: StepsProps) {
   );
 }
 
-/** A file of presets, chosen in the browser's own dialog. */
+/** A file of presets, or a recipe for its look, chosen in the browser's own dialog. */
 function TakeIn() {
+  const take = async (file: File) => {
+    if (!(await takeDocument(file))) await importPresets(file);
+  };
   return (
-    <label className="plain-button desk-file">
+    <label
+      className="plain-button desk-file"
+      title="Presets that were handed on, or another photograph’s recipe: its look comes to the easel"
+    >
       Take in from a file…
       <input
         className="unseen"
@@ -70,7 +77,7 @@ function TakeIn() {
         onChange={(event) => {
           const [file] = event.target.files ?? [];
           event.target.value = '';
-          if (file) void importPresets(file);
+          if (file) void take(file);
         }}
       />
     </label>

@@ -4,8 +4,9 @@ import type { Page } from 'playwright-core';
 import { describe, expect, it } from 'vitest';
 import { seriousFindings } from './axe.ts';
 import { chromiumFound } from './chromium.ts';
+import { makeLongRecipe, writeRecipe } from './longThread.ts';
 import { keepScreen } from './openWindow.ts';
-import { setHold, usePhotoWindows } from './photoWindow.ts';
+import { numeralsOf, presentOf, setHold, usePhotoWindows } from './photoWindow.ts';
 
 const own = (page: Page, title: string) => page.locator('.preset', { hasText: title });
 
@@ -67,6 +68,12 @@ describe.skipIf(!chromiumFound.path)('presets of one’s own in a real window', 
     await other.page.getByLabel('Take in from a file…').setInputFiles(file);
     await other.page.getByText('Taken in from My presets.oxgall-presets.json: 2.').waitFor();
     await expect.poll(() => other.page.locator('.preset-own').count()).toBe(2);
+    // A recipe taken in the same way gives its look, so that nobody needs to drag one.
+    const plate = await room.freshPhoto(600);
+    await writeRecipe(plate, await makeLongRecipe(plate, 3));
+    await other.page.getByLabel('Take in from a file…').setInputFiles(`${plate}.oxgall.json`);
+    await expect.poll(() => numeralsOf(other.page)).toEqual(['I', 'II', 'III']);
+    expect(await presentOf(other.page)).toBe('III');
     await room.close(other);
   });
 
