@@ -70,7 +70,11 @@ export function createHostCaller<Commands extends CommandMap<Commands>>(
       signal,
     });
     // Not every shell tells the host that a request was aborted, so the host is told in words as well.
-    const cancel = () => void post('cancelCall', { callId }, {}).catch(() => undefined);
+    // The answer is read to its end: one that is left unread may keep its connection.
+    const cancel = () =>
+      void post('cancelCall', { callId }, {})
+        .then((response) => response.arrayBuffer())
+        .catch(() => undefined);
     signal?.addEventListener('abort', cancel, { once: true });
     try {
       const response = await send(request);

@@ -31,11 +31,14 @@ import {
   wallSheetStore,
 } from './wallStore.ts';
 
+/** A series is opened only after one that was taken down is closed: it may be the same folder. */
+let closing: Promise<unknown> = Promise.resolve();
+
 /** Hangs a folder on the Wall. */
 export async function openSeries(path: string): Promise<void> {
   openingStore.set({ path, trouble: null });
   try {
-    await tellWork();
+    await Promise.all([tellWork(), closing]);
     const view = await host.call('openSeries', { path });
     openingStore.set({ path: null, trouble: null });
     hang(view);
@@ -77,7 +80,9 @@ export async function closeSeries(): Promise<void> {
   wallSheetStore.set('none');
   runStore.set(null);
   pictureShelf.follow(null);
-  await host.call('closeSeries', { seriesId: series.seriesId }).catch(() => undefined);
+  const { seriesId } = series;
+  closing = telling.then(() => host.call('closeSeries', { seriesId })).catch(() => undefined);
+  await closing;
 }
 
 /** The host found out something new. */

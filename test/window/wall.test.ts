@@ -202,7 +202,7 @@ function timeToPictures(page: Page, count: number): Promise<number> {
           if (document.querySelectorAll('.wall-print canvas.is-there').length >= wanted)
             resolve(performance.now() - started);
           else if (performance.now() - started < 30_000) requestAnimationFrame(look);
-          else reject(new Error(`Expected pictures, received: ${document.body.innerText.slice(0, 400)}`));
+          else reject(new Error(`Expected pictures, received: ${document.body.textContent.slice(0, 900)}`));
         };
         look();
       }),
