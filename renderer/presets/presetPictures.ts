@@ -28,20 +28,24 @@ function sourceOf({ states }: PresetOffer, printLongEdgeMm: number | undefined):
 }
 
 async function paintInTurn(photoId: string, printLongEdgeMm: number | undefined, signal: AbortSignal) {
-  for (const preset of sessionStore.get()?.presets ?? []) {
-    const source = sourceOf(preset, printLongEdgeMm);
-    if (painted.get(preset.name) === source) continue;
+  // The shelf may change meanwhile: the next one is looked for each time.
+  const nextMissing = () =>
+    sessionStore
+      .get()
+      ?.presets.find((preset) => painted.get(preset.name) !== sourceOf(preset, printLongEdgeMm));
+  for (let preset = nextMissing(); preset; preset = nextMissing()) {
+    const { name, parameters } = preset;
     try {
       const { header, planes } = await host.callForFrame(
         'paintSmallPicture',
-        { photoId, parameters: preset.parameters, longEdgePx, printLongEdgeMm },
+        { photoId, parameters, longEdgePx, printLongEdgeMm },
         { signal },
       );
       if (signal.aborted) return;
       const pixels = new Uint8ClampedArray(planes.rgba as Uint8Array);
       const picture = new ImageData(pixels, header.widthPx, header.heightPx);
-      painted.set(preset.name, source);
-      presetPictureStore.update((pictures) => new Map(pictures).set(preset.name, picture));
+      painted.set(name, sourceOf(preset, printLongEdgeMm));
+      presetPictureStore.update((pictures) => new Map(pictures).set(name, picture));
     } catch {
       // A preset without its picture can still be chosen; the next pause tries again.
       return;

@@ -4,7 +4,7 @@ import type { Page } from 'playwright-core';
 import { describe, expect, it } from 'vitest';
 import { seriousFindings } from './axe.ts';
 import { chromiumFound } from './chromium.ts';
-import { makeLongRecipe, writeRecipe } from './longThread.ts';
+import { makeLongRecipe, writeRecipe } from './longRecipe.ts';
 import { keepScreen } from './openWindow.ts';
 import { numeralsOf, presentOf, setHold, usePhotoWindows } from './photoWindow.ts';
 
@@ -77,14 +77,19 @@ describe.skipIf(!chromiumFound.path)('presets of one’s own in a real window', 
     await room.close(other);
   });
 
-  it('go into the bin with one step, and are taken back with another', async () => {
+  it('are renamed, go into the bin with one step, and are taken back with another', async () => {
     const window = await room.open({ path: await room.freshPhoto() });
     const { page } = window;
-    await makeOwn(page, 'Low Tide');
+    await makeOwn(page, 'Odalys at dusk');
+    await page.getByRole('button', { name: 'Rename…' }).click();
+    await page.getByRole('textbox', { name: 'New name' }).fill('Low Tide');
+    await page.keyboard.press('Enter');
+    await own(page, 'Low Tide').waitFor();
     await page.getByRole('button', { name: 'Put in the bin' }).click();
     await expect.poll(() => own(page, 'Low Tide').count()).toBe(0);
     // The photograph goes on being painted by it.
-    await page.getByRole('button', { name: 'Low Tide', exact: true }).waitFor();
+    await page.locator('.thread-preset').waitFor();
+    expect(await page.locator('.thread-state.is-present').count()).toBe(1);
     await page.getByText('In the bin: 1').click();
     await page.getByRole('button', { name: 'Take back Low Tide' }).click();
     await own(page, 'Low Tide').waitFor();
