@@ -28,6 +28,12 @@ export const chosenStore = createStore<Chosen>(nothingChosen);
 export const wallScaleStore = createStore<number>(250);
 export const wallScales = { leastPx: 130, mostPx: 560, stepPx: 30 };
 
+/** A print scale at which a short series fills the wall, and a long one is still easy to look at. */
+export function startingScalePx(frameCount: number, wall: { widthPx: number; heightPx: number }): number {
+  const share = 0.66 * Math.sqrt((wall.widthPx * wall.heightPx) / Math.max(1, frameCount));
+  return Math.round(Math.min(440, Math.max(220, share)) / 10) * 10;
+}
+
 /** Two frames that are compared at one print scale. */
 export const comparedStore = createStore<readonly [string, string] | null>(null);
 

@@ -28,6 +28,8 @@ import {
   roomStore,
   seriesStore,
   settingsStore,
+  startingScalePx,
+  wallScaleStore,
   wallSheetStore,
 } from './wallStore.ts';
 
@@ -64,7 +66,11 @@ function hang(view: SeriesView): void {
   comparedStore.set(null);
   wallSheetStore.set('none');
   seriesStore.set(view);
-  if (before?.seriesId !== view.seriesId) settingsStore.set(startHistory(view.settings));
+  if (before?.seriesId !== view.seriesId) {
+    settingsStore.set(startHistory(view.settings));
+    const wall = { widthPx: window.innerWidth * 0.8, heightPx: window.innerHeight * 0.9 };
+    wallScaleStore.set(startingScalePx(view.frames.length + view.coming, wall));
+  }
   roomStore.set('wall');
   void readRun();
 }

@@ -58,7 +58,7 @@ export interface WallParts {
 /** Headers read at the same time. */
 const readersAtOnce = 4;
 /** A series is shown after this long, whether all sizes are known or not. */
-const firstAnswerMs = 300;
+const firstAnswerMs = 120;
 const tellEveryMs = 400;
 /** Measuring waits until pictures have rested for this long: somebody may be scrolling. */
 const restMs = 1200;
