@@ -8,6 +8,7 @@ import {
   currentHistory,
   currentParameters,
   currentState,
+  hasUnkeptChanges,
   layPreset,
 } from '../../core/recipes/recipeHistory.ts';
 import { findMovedPhotos, hasRecipe } from '../store/movedPhotos.ts';
@@ -61,7 +62,9 @@ export async function choosePaintWork(
 function fromRecipe(read: PhotoRecipe, recipe: Recipe, settings: readonly string[]): PaintWork {
   const state = currentState(recipe);
   const { title, preset } = currentHistory(recipe);
-  const remark = `Painted by its recipe: ${title}, State ${toRoman(state.number)}.`;
+  const isChanged = hasUnkeptChanges(recipe) || settings.length > 0;
+  const changed = isChanged ? ' with changes over it' : '';
+  const remark = `Painted by its recipe: ${title}, State ${toRoman(state.number)}${changed}.`;
   return {
     preset,
     state: state.number,

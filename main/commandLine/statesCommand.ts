@@ -1,5 +1,5 @@
 import { stat } from 'node:fs/promises';
-import { sentenceOfDifferences } from '../../core/presets/differences.ts';
+import { differences, sentenceOfDifferences } from '../../core/presets/differences.ts';
 import { fullParameters } from '../../core/presets/parametersSchema.ts';
 import { toRoman } from '../../core/presets/roman.ts';
 import type { State } from '../../core/presets/state.ts';
@@ -34,6 +34,8 @@ interface ListedState {
   /** On the easel of the photo now. */
   isPresent: boolean;
   note: string;
+  /** Name of the branch that begins here; usually empty. */
+  branch: string;
   time: string;
   engineVersion: string;
   follows: string | null;
@@ -108,17 +110,23 @@ function listStates(
       id: state.id,
       isPresent: state.id === of.presentId,
       note: of.margins[state.id]?.note ?? state.note,
+      branch: of.margins[state.id]?.branch ?? '',
       time: state.time,
       engineVersion: state.engineVersion,
       follows: parent ? toRoman(parent.number) : null,
-      changed: parent
-        ? sentenceOfDifferences(fullParameters(parent.parameters), fullParameters(state.parameters))
-        : '',
+      changed: parent ? changeFrom(parent, state) : '',
       deliveries: of.deliveries
         .filter(({ stateId }) => stateId === state.id)
         .map(({ path, sha256, time }) => ({ path, sha256, time })),
     };
   });
+}
+
+/** A state that was returned to is a new one, equal to the old. */
+function changeFrom(parent: State, state: State): string {
+  const [before, after] = [parent, state].map(({ parameters }) => fullParameters(parameters));
+  if (differences(before, after).length === 0) return `As State ${toRoman(parent.number)}.`;
+  return sentenceOfDifferences(before, after);
 }
 
 function print({ threads, remarks, hasUnkeptChanges: isUnkept }: Listed): void {
@@ -129,8 +137,10 @@ function print({ threads, remarks, hasUnkeptChanges: isUnkept }: Listed): void {
     for (const state of listed) {
       const mark = state.isPresent ? (isUnkept ? '*' : '•') : ' ';
       const time = state.time === '' ? 'as it comes' : state.time.replace('T', ' ').slice(0, 16);
-      const words = [state.note, state.changed].filter(Boolean).join('. ');
-      process.stdout.write(`${mark} ${state.numeral.padEnd(width)}  ${time}  ${words}\n`);
+      const branch = state.branch && `Branch ${state.branch}`;
+      const words = [branch, state.note, state.changed].filter(Boolean).join('. ');
+      process.stdout.write(`${mark} ${state.numeral.padEnd(width)}  ${time}  ${words}`.trimEnd());
+      process.stdout.write('\n');
       for (const { path } of state.deliveries) process.stdout.write(`    delivered: ${path}\n`);
     }
   }

@@ -32,9 +32,6 @@ export function describeCommand(command: Command): string {
 
 /** The help of the whole program. */
 export function describeProgram(commands: readonly Command[]): string {
-  const width = Math.max(...commands.map((command) => command.usage.length));
-  const lines = commands.map(
-    (command) => `  oxgall ${command.usage.padEnd(width)}\n      ${command.summary}\n`,
-  );
+  const lines = commands.map((command) => `  oxgall ${command.usage}\n      ${command.summary}\n`);
   return `Oxgall turns photographs into painterly illustrations.\n\n${lines.join('')}\n  oxgall help COMMAND\n      Shows the options of a command.\n`;
 }

@@ -1,5 +1,5 @@
 import { stat } from 'node:fs/promises';
-import { basename, dirname, join } from 'node:path';
+import { dirname, isAbsolute, join } from 'node:path';
 import { toRoman } from '../../core/presets/roman.ts';
 import { stateById } from '../../core/presets/thread.ts';
 import type { Recipe } from '../../core/recipes/recipe.ts';
@@ -136,9 +136,7 @@ function print({ photo, deliveries, problem, remarks }: VerifiedPhoto): void {
         `by ${difference.largest.toFixed(1)} at most, ${difference.mean.toFixed(3)} on average, in ${(100 * difference.share01).toFixed(2)} % of the samples${difference.isLossyFile ? ', the losses of its format among them' : ''}`,
       file !== 'untouched' && `the file is ${file === 'missing' ? 'not there' : 'changed'}`,
     ].filter(Boolean);
-    const name = join(dirname(photo), path);
-    process.stdout.write(
-      `${basename(name)}, State ${state === null ? '?' : toRoman(state)}: ${facts.join('; ')}\n`,
-    );
+    const name = isAbsolute(path) ? path : join(dirname(photo), path);
+    process.stdout.write(`${name}, State ${state === null ? '?' : toRoman(state)}: ${facts.join('; ')}\n`);
   }
 }

@@ -70,7 +70,7 @@ describe('recipes on the command line', () => {
     expect(back.told).toMatchObject({ returnedTo: 2, state: 4 });
     const after = (await runJson('states', photo)).told.threads[0].states;
     expect(after.slice(0, 3)).toMatchObject(thread.states.map(({ id }: { id: string }) => ({ id })));
-    expect(after[3]).toMatchObject({ isPresent: true, follows: 'II' });
+    expect(after[3]).toMatchObject({ isPresent: true, follows: 'II', changed: 'As State II.' });
 
     const compared = await runJson('compare', photo, '--states', 'I,3', '--out', 'both.png');
     expect(compared.told.differences).toMatchObject([{ key: 'body.hold', after: 0.7 }]);
