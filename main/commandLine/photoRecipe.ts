@@ -95,7 +95,9 @@ export async function saveRecipe(
 ): Promise<{ path: string; remarks: string[] }> {
   refuseReadOnly(read);
   const at = { path: read.path, version: read.version };
-  const { saved } = await stores.recipes.saveKeepingBoth(photoPath, recipe, at);
+  // Whoever saves means this photo, though its bytes may have been others when the recipe was begun.
+  const ours = { ...recipe, photo: { ...recipe.photo, ...read.photo } };
+  const { saved } = await stores.recipes.saveKeepingBoth(photoPath, ours, at);
   if (saved.kind === 'failed') {
     const { problem, remedy } = saved.error;
     const safe = saved.rescuedTo

@@ -12,6 +12,7 @@ import {
 import { DelayedSaver } from '../store/delayedSaver.ts';
 import { noteWrittenFile, type WrittenFile } from '../store/notedDelivery.ts';
 import type { Stores } from '../store/openStores.ts';
+import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import { recipeBeside } from '../store/recipePlaces.ts';
 import type { SavedRecipe } from '../store/storeResults.ts';
 import type { PhotoMemory, WorkOnEasel } from './api/memoryCommands.ts';
@@ -25,7 +26,7 @@ interface Entry extends LoadedMemory {
   photoId: string;
   path: string;
   /** Of the photo's bytes when it was opened. */
-  photoSha256: string;
+  fingerprint: PhotoFingerprint;
   saved: PhotoMemory['saved'];
   saver: DelayedSaver<Recipe>;
 }
@@ -75,13 +76,17 @@ export class PhotoMemories {
         'This recipe was written by a newer version of Oxgall and is only for looking.',
         'Update Oxgall to go on with it. The painting itself can be saved.',
       );
-    const recipe = change(entry.recipe, this.moment());
-    if (recipe !== entry.recipe) {
-      entry.recipe = recipe;
-      entry.saved = { kind: 'waiting', message: '' };
-      entry.saver.change(recipe);
-    }
+    this.#put(entry, change(entry.recipe, this.moment()));
     return viewOf(entry);
+  }
+
+  #put(entry: Entry, recipe: Recipe): void {
+    if (recipe === entry.recipe) return;
+    // Keeping or delivering means it: the recipe is this photo's from now on, though its bytes were others before.
+    const isMeant = entry.photo === 'changed' && recipe.histories !== entry.recipe.histories;
+    entry.recipe = isMeant ? { ...recipe, photo: { ...recipe.photo, ...entry.fingerprint } } : recipe;
+    entry.saved = { kind: 'waiting', message: '' };
+    entry.saver.change(entry.recipe);
   }
 
   /** Lays work on the easel: a state of the recipe, and the parameters over it. */
@@ -94,17 +99,22 @@ export class PhotoMemories {
   }
 
   /**
-   * Notes a delivered file. What was painted is the easel as it was when the painting began, whatever lies there
-   * now; where no state holds it, it is kept as one.
+   * Notes a delivered file, also where its photo was closed while it was being written. What was painted is the easel
+   * as it was when the painting began, whatever lies there now; where no state holds it, it is kept as one.
    */
-  async noteDelivered(photoId: string, file: Omit<WrittenFile, 'photoSha256'>): Promise<PhotoMemory> {
-    const entry = await this.#find(photoId);
+  async noteDelivered(
+    { photoId, path }: { photoId: string; path: string },
+    file: Omit<WrittenFile, 'photoSha256'>,
+  ): Promise<PhotoMemory> {
+    const open = await this.#entries.get(photoId);
+    const entry = open ?? (await this.#load(photoId, path, await fingerprintPhoto(path)));
     if (entry.access === 'readOnly') return viewOf(entry);
-    const written = { ...file, photoSha256: entry.photoSha256 };
-    return this.change(photoId, (recipe, moment) =>
-      // Somebody may have gone on while the file was being painted: their work stays on the easel.
-      changeParameters(noteWrittenFile(recipe, entry.path, written, moment), currentParameters(recipe)),
-    );
+    const written = { ...file, photoSha256: entry.fingerprint.sha256 };
+    const noted = noteWrittenFile(entry.recipe, path, written, this.moment());
+    // Somebody may have gone on while the file was being painted: their work stays on the easel.
+    this.#put(entry, changeParameters(noted, currentParameters(entry.recipe)));
+    if (!open) await entry.saver.flush();
+    return viewOf(entry);
   }
 
   /** Makes one recipe of ours and of what somebody else saved meanwhile. */
@@ -172,7 +182,7 @@ export class PhotoMemories {
       ...loaded,
       photoId,
       path,
-      photoSha256: fingerprint.sha256,
+      fingerprint,
       saved: { kind: loaded.whenSaved ? 'waiting' : 'saved', message: '' },
       saver: new DelayedSaver<Recipe>((recipe) => this.#save(entry, recipe)),
     };

@@ -79,7 +79,7 @@ export async function savePainting(
   report(1, 'writing');
   const { path, widthPx, heightPx } = delivered;
   const { sizeBytes, sha256 } = await fingerprintPhoto(path);
-  const memory = await parts.memories.noteDelivered(photo.photoId, {
+  const memory = await parts.memories.noteDelivered(photo, {
     path,
     sha256,
     pixelsSha256: delivered.pixelsSha256,

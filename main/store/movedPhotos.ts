@@ -18,7 +18,7 @@ export interface Reunion {
   recipe: Recipe;
   /** Where the photo was when the recipe was saved. */
   oldPhotoPath: string;
-  /** `moved`: nothing is at the old place any more. `twin`: the other photo is still there. */
+  /** `moved`: the photo is not at the old place any more. `twin`: it is still there too. */
   kind: 'moved' | 'twin';
   /** The sidecar that lost its photo, where it lies in the photo's own folder. */
   orphanPath: string | null;
@@ -80,9 +80,10 @@ async function findFor(
   }));
   const reunions = await Promise.all(
     [...ours, ...copies].map(async (candidate): Promise<Reunion> => {
-      const kind = (await exists(candidate.photoPath)) ? 'twin' : 'moved';
-      const { recipe, orphanPath } = candidate;
-      return { photoPath, photo, recipe, oldPhotoPath: candidate.photoPath, kind, orphanPath };
+      const { recipe, orphanPath, photoPath: oldPhotoPath } = candidate;
+      // Another photo may have taken its name since: cameras count anew.
+      const kind = (await hasBytesOf(oldPhotoPath, photo)) ? 'twin' : 'moved';
+      return { photoPath, photo, recipe, oldPhotoPath, kind, orphanPath };
     }),
   );
   return reunions.find(({ kind }) => kind === 'moved') ?? reunions[0] ?? null;
@@ -162,6 +163,16 @@ export async function putOrphanAside({ orphanPath, kind }: Reunion, binFolder: s
 /** Where sidecars go that lost their photo. */
 export function recipeBin(dataFolder: string): string {
   return join(dataFolder, 'bin', 'recipes');
+}
+
+async function hasBytesOf(path: string, { sizeBytes, sha256 }: PhotoFingerprint): Promise<boolean> {
+  const facts = await stat(path).catch(() => null);
+  if (!facts?.isFile() || facts.size !== sizeBytes) return false;
+  return fingerprintPhoto(path).then(
+    (found) => found.sha256 === sha256,
+    // It is there and cannot be read: it may well be the same.
+    () => true,
+  );
 }
 
 async function exists(path: string): Promise<boolean> {

@@ -3,6 +3,9 @@ import { mkdir, readdir, readFile, rename, stat, writeFile } from 'node:fs/promi
 import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import { readEvents } from '../../core/hostProtocol/eventStream.ts';
+import { fullParameters } from '../../core/presets/parametersSchema.ts';
+import { EventHub } from '../../main/host/eventHub.ts';
+import { PhotoMemories } from '../../main/host/photoMemories.ts';
 import { startLoopbackShell } from '../shells/runningShell.ts';
 import { temporaryFolder } from '../store/storeFolders.ts';
 import { base, makePhoto, type TestHost } from './testHost.ts';
@@ -51,6 +54,30 @@ describe('work that was not saved yet', () => {
     });
 });
 
+describe('a delivery', () => {
+  it('is noted though its photo was closed when its file was there', async () => {
+    const { photoId, memory, path } = await openNew(t, folder);
+    const painted = join(folder, 'out.png');
+    await writeFile(painted, 'a painting');
+    await t.caller.call('closePhoto', { photoId });
+    const memories = new PhotoMemories({ loadStores: t.parts.loadStores, events: new EventHub() });
+    const hash = 'ab'.repeat(32);
+    await memories.noteDelivered(
+      { photoId, path },
+      {
+        path: painted,
+        sha256: hash,
+        pixelsSha256: hash,
+        parameters: { ...fullParameters(statesOf(memory)[0].parameters), 'body.hold': 0.6 },
+        output: {},
+      },
+    );
+    const { deliveries, states } = (await recipeOf(path)).histories[0];
+    expect(deliveries).toMatchObject([{ path: 'out.png', sha256: hash, stateId: states[1].id }]);
+    expect(states[1].parameters['body.hold']).toBe(0.6);
+  });
+});
+
 describe('a photo that was moved', () => {
   it('gets its recipe back when the folder is opened, before anybody opens the photo', async () => {
     const { photoId, path } = await openNew(t, folder);
@@ -64,6 +91,20 @@ describe('a photo that was moved', () => {
     await expect.poll(() => readdir(folder)).not.toContain('heron.png.oxgall.json');
     expect(await readdir(join(data, 'bin', 'recipes'))).toEqual(['heron.png.oxgall.json']);
     expect(notesOf((await openAt(t, renamed)).memory)).toContain('kept');
+  });
+
+  it('is known where another photo has taken its name', async () => {
+    const { photoId, path } = await openNew(t, folder);
+    await keepNoted(t, photoId, 'kept');
+    await t.caller.call('closePhoto', { photoId });
+    const away = join(folder, 'card 1');
+    await mkdir(away);
+    await rename(path, join(away, 'heron.png'));
+    await makePhoto(path, 50, 40);
+    const { memory } = await openAt(t, join(away, 'heron.png'));
+    expect(notesOf(memory)).toContain('kept');
+    expect(memory.remarks.join()).toContain('moved here');
+    expect((await openAt(t, path)).memory.photo).toBe('changed');
   });
 
   it('brings the newest of its recipes along where it was moved twice', async () => {
@@ -108,7 +149,24 @@ describe('a photo whose bytes have changed', () => {
       .update(await readFile(path))
       .digest('hex');
     expect(delivery.photoSha256).toBe(hash);
-    expect(saved.memory.recipe.photo.sha256).not.toBe(hash);
+    // From now on the recipe is this photo's.
+    await t.caller.call('closePhoto', { photoId: again });
+    const later = (await openAt(t, path)).memory;
+    expect(later).toMatchObject({ photo: 'same', remarks: [], recipe: { photo: { sha256: hash } } });
+    expect(notesOf(later)).toEqual(notesOf(saved.memory));
+  });
+
+  it('does not become another photo’s by being tried on it', async () => {
+    const { photoId, path, memory } = await openNew(t, folder);
+    await keepNoted(t, photoId, 'kept');
+    await t.caller.call('closePhoto', { photoId });
+    await makePhoto(path, 90, 60);
+    const other = await openAt(t, path);
+    await t.caller.call('layWork', {
+      photoId: other.photoId,
+      work: workOf(other.memory, { 'body.hold': 0.1 }),
+    });
+    expect((await untilSaved(t, other.photoId)).recipe.photo).toEqual(memory.recipe.photo);
   });
 });
 
