@@ -62,11 +62,11 @@ export async function buildHost() {
       minify: false,
       rollupOptions: {
         input,
-        external: ['sharp', 'electron'],
+        external: ['sharp', 'electron', 'bullmq'],
         output: { entryFileNames: '[name].js', chunkFileNames: 'chunks/[name]-[hash].js', format: 'es' },
       },
     },
-    ssr: { noExternal: true, external: ['sharp', 'electron'] },
+    ssr: { noExternal: true, external: ['sharp', 'electron', 'bullmq'] },
   });
   await buildPreload();
   await cp(join(root, 'node_modules/lcms-wasm/dist/lcms.wasm'), join(root, 'dist/main/lcms.wasm'));

@@ -8,10 +8,12 @@ import { paramsCommand } from './paramsCommand.ts';
 import { presetsCommand } from './presetsCommand.ts';
 import { proofCommand } from './proofCommand.ts';
 import { returnCommand } from './returnCommand.ts';
+import { seriesCommand } from './seriesCommand.ts';
 import { settingsCommand } from './settingsCommand.ts';
 import { statesCommand } from './statesCommand.ts';
 import { describeCommand, describeProgram, exitCode, UsageError } from './usage.ts';
 import { verifyCommand } from './verifyCommand.ts';
+import { workerCommand } from './workerCommand.ts';
 
 const commands = [
   paintCommand,
@@ -19,6 +21,8 @@ const commands = [
   returnCommand,
   compareCommand,
   verifyCommand,
+  seriesCommand,
+  workerCommand,
   proofCommand,
   presetsCommand,
   paramsCommand,

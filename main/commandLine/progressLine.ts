@@ -10,6 +10,7 @@ const stageWords = {
   relief: 'Lighting the surface',
   compose: 'Laying the strata',
   writing: 'Writing',
+  series: 'Painting the series',
   proof: 'Setting the sheet',
 };
 
