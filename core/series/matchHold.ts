@@ -5,8 +5,8 @@ export interface HoldTrial {
 }
 
 /** How far hold may go from the preset's, as a factor: further, one frame would look worked by another hand. */
-export const holdReach = 2.5;
-const leastHold = 0.06;
+export const holdReach = 3.5;
+const leastHold = 0.04;
 const mostHold = 1;
 /** Shares this close are the same. */
 export const closeShare01 = 0.004;
