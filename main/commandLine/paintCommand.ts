@@ -5,6 +5,7 @@ import { createEngine } from '../engine/paintEngine.ts';
 import type { LayersKind } from '../files/layers/writeLayers.ts';
 import { outputFormatFor } from '../files/outputFormat.ts';
 import { defaultOutputPath } from '../files/outputPath.ts';
+import { describePainting } from '../painting/describePainting.ts';
 import { type PaintedFile, paintToFile } from '../painting/paintToFile.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import { choosePaintWork, keepPainted } from './paintWork.ts';
@@ -89,7 +90,10 @@ async function paint(words: string[]): Promise<number> {
   const starting = createEngine({ workers });
   starting.catch(() => undefined);
   try {
-    const order = { parameters, out, format, depth: askedDepth, printLongEdgeMm, print, layers: layersKind };
+    const asked = { depth: askedDepth, printLongEdgeMm, print, layers: layersKind };
+    const metadata = output.metadata ?? usedRecipe?.work.output.metadata;
+    const told = { metadata, ...describePainting(work.title, work.state) };
+    const order = { parameters, out, format, ...asked, ...told };
     const painted = await paintToFile(starting, photoPath, order, {
       onProgress: (fraction01, stage) => progress.update(0.05 + 0.95 * fraction01, stage),
     });

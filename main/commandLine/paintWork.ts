@@ -20,6 +20,8 @@ import { now, type PhotoRecipe, readRecipe, refuseReadOnly, saveRecipe } from '.
 /** What a photo is to be painted by: its own recipe, or a preset. */
 export interface PaintWork {
   preset: string;
+  /** The preset's name as people read it. */
+  title: string;
   /** Number of the state; changes of one's own may lie over it. */
   state: number;
   parameters: Parameters;
@@ -50,6 +52,7 @@ export async function choosePaintWork(
   const { preset, state, parameters } = look;
   return {
     preset: preset.name,
+    title: preset.title,
     state: state.number,
     parameters,
     printLongEdgeMm: read?.recipe?.work.output.printLongEdgeMm ?? defaultPrintLongEdgeMm,
@@ -67,6 +70,7 @@ function fromRecipe(read: PhotoRecipe, recipe: Recipe, settings: readonly string
   const remark = `Painted by its recipe: ${title}, State ${toRoman(state.number)}${changed}.`;
   return {
     preset,
+    title,
     state: state.number,
     parameters: parseParameters(readSettings(settings), currentParameters(recipe)),
     printLongEdgeMm: recipe.work.output.printLongEdgeMm,

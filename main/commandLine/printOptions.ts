@@ -13,6 +13,7 @@ export const printOptions = {
   crop: { type: 'string' },
   bleed: { type: 'string' },
   'trim-marks': { type: 'boolean' },
+  metadata: { type: 'string' },
 } as const;
 
 /** Their lines in the help. */
@@ -32,6 +33,10 @@ export const printOptionHelp = [
   ],
   ['--crop W:H[@X,Y]', 'Cuts to an aspect such as 4:5, about the middle or about a place such as @0.3,0.5.'],
   ['--bleed MM', 'Mirrors the picture beyond the edge of the print, on every side.'],
+  [
+    '--metadata NAME',
+    "How much of the photo's camera data goes along: all, essential (without the place; the default) or none.",
+  ],
   ['--trim-marks', 'Puts the picture on a white margin with marks where it is to be cut.'],
 ] as const;
 
@@ -43,6 +48,7 @@ export interface PrintValues {
   crop?: string;
   bleed?: string;
   'trim-marks'?: boolean;
+  metadata?: string;
   'print-long-edge'?: string;
 }
 
@@ -67,6 +73,7 @@ export function readPrintOrder(
   if (values.crop !== undefined) output.cropFrame = readCrop(values.crop);
   if (values.bleed !== undefined) output.bleedMm = readNumber(values.bleed, '--bleed', 0, 100);
   if (values['trim-marks']) output.trimMarks = true;
+  if (values.metadata !== undefined) output.metadata = readMetadata(values.metadata);
   const asked = { ...recipe, ...output } as OutputSettings;
   const writesSize = values['print-long-edge'] !== undefined || recipe !== null;
   return { print: { ...printOrderOf(asked), writesSize }, output };
@@ -76,6 +83,11 @@ function readProfile(text: string): OutputSettings['profile'] {
   if (text === 'keep' || text === 'srgb' || text === 'p3') return text;
   if (/\.ic[cm]$/i.test(text)) return { file: text };
   throw new UsageError(`Expected keep, srgb, p3 or an .icc file for --profile, received ${text}`);
+}
+
+function readMetadata(text: string): OutputSettings['metadata'] {
+  if (text === 'all' || text === 'essential' || text === 'none') return text;
+  throw new UsageError(`Expected all, essential or none for --metadata, received ${text}`);
 }
 
 function readIntent(text: string): OutputSettings['intent'] {

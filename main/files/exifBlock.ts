@@ -10,6 +10,9 @@ const tag = {
   gpsDirectory: 0x8825,
   pixelWidth: 0xa002,
   pixelHeight: 0xa003,
+  imageDescription: 0x010e,
+  software: 0x0131,
+  makerNote: 0x927c,
 };
 const bytesPerValue: Record<number, number> = {
   1: 1,
@@ -25,6 +28,7 @@ const bytesPerValue: Record<number, number> = {
   11: 4,
   12: 8,
 };
+const asciiType = 2;
 const shortType = 3;
 const longType = 4;
 const rationalType = 5;
@@ -125,8 +129,14 @@ export interface ExifChanges {
   widthPx: number;
   heightPx: number;
   densityPpi?: number;
-  /** Where the photo was taken stays out unless asked for. */
-  keepLocation?: boolean;
+  /**
+   * `essential`, unless given: all but where the photo was taken and what the camera's maker noted for itself. XMP and
+   * IPTC blocks are not carried.
+   */
+  metadata?: 'all' | 'essential';
+  /** What it is painted by, in words. */
+  description?: string;
+  software?: string;
 }
 
 const prefix = 'Exif\0\0';
@@ -137,9 +147,73 @@ export function withoutExifMark(block: Uint8Array): Uint8Array {
   return marked ? block.subarray(prefix.length) : block;
 }
 
+/** EXIF of a photo that has none: an empty directory, little-endian. */
+export const emptyExif = (): Uint8Array => Uint8Array.from([0x49, 0x49, 42, 0, 8, 0, 0, 0, 0, 0, 0, 0, 0, 0]);
+
+/** Blanks one entry's value and takes the entry out of its directory. */
+function removeEntry(exif: ExifBytes, directory: Directory, which: number): void {
+  const entry = directory.entries.find((candidate) => candidate.tag === which);
+  if (!entry) return;
+  const size = (bytesPerValue[entry.type] ?? 1) * entry.count;
+  exif.bytes.fill(0, entry.valueAt, entry.valueAt + size);
+  exif.bytes.copyWithin(entry.at, entry.at + 12, directory.nextAt + 4);
+  const entryCount = exif.view.getUint16(directory.at, exif.littleEndian);
+  exif.view.setUint16(directory.at, entryCount - 1, exif.littleEndian);
+}
+
+/**
+ * The block with texts in its first directory. The directory is written anew at the end and nothing else is moved, so
+ * that offsets inside the block stay true.
+ * @param texts tag → text, stored as UTF-8 (which EXIF 3.0 permits and readers take for ASCII otherwise)
+ */
+function withTexts(
+  exif: ExifBytes,
+  first: Directory,
+  texts: readonly (readonly [number, string])[],
+): Uint8Array {
+  const { bytes, littleEndian } = exif;
+  const kept = first.entries.filter((entry) => !texts.some(([which]) => which === entry.tag));
+  const values = texts.map(([which, text]) => ({ which, value: Buffer.from(`${text}\0`, 'utf8') }));
+  const start = bytes.length + (bytes.length % 2);
+  const count = kept.length + values.length;
+  const behind = start + 2 + count * 12 + 4;
+  const out = Buffer.alloc(
+    behind + values.reduce((sum, { value }) => sum + value.length + (value.length % 2), 0),
+  );
+  out.set(bytes, 0);
+  const put16 = (value: number, at: number) =>
+    littleEndian ? out.writeUInt16LE(value, at) : out.writeUInt16BE(value, at);
+  const put32 = (value: number, at: number) =>
+    littleEndian ? out.writeUInt32LE(value, at) : out.writeUInt32BE(value, at);
+  put32(start, 4);
+  put16(count, start);
+  const entries = [
+    ...kept.map((entry) => ({ which: entry.tag, raw: bytes.subarray(entry.at, entry.at + 12), value: null })),
+    ...values.map(({ which, value }) => ({ which, raw: null, value })),
+  ].sort((a, b) => a.which - b.which);
+  let at = start + 2;
+  let valueAt = behind;
+  for (const { which, raw, value } of entries) {
+    if (raw) out.set(raw, at);
+    else if (value) {
+      put16(which, at);
+      put16(asciiType, at + 2);
+      put32(value.length, at + 4);
+      if (value.length <= 4) out.set(value, at + 8);
+      else {
+        put32(valueAt, at + 8);
+        out.set(value, valueAt);
+        valueAt += value.length + (value.length % 2);
+      }
+    }
+    at += 12;
+  }
+  return new Uint8Array(out);
+}
+
 /**
  * A copy of the photo's EXIF that is true of the painting: upright, its own size and density, no thumbnail of
- * the photo, no location.
+ * the photo, no location unless all is asked for, and what it is painted by.
  * @returns the TIFF without the "Exif" mark, or undefined where the block cannot be understood
  */
 export function exifForPainting(block: Uint8Array, changes: ExifChanges): Uint8Array | undefined {
@@ -152,7 +226,11 @@ export function exifForPainting(block: Uint8Array, changes: ExifChanges): Uint8A
   let first = read();
   if (!first) return undefined;
   removeThumbnail(exif, first);
-  if (!changes.keepLocation) removeSubDirectory(exif, first, tag.gpsDirectory);
+  if (changes.metadata !== 'all') {
+    removeSubDirectory(exif, first, tag.gpsDirectory);
+    const details = subDirectory(exif, first, tag.exifDirectory);
+    if (details) removeEntry(exif, details, tag.makerNote);
+  }
   first = read();
   if (!first) return undefined;
   const entry = (directory: Directory | undefined, which: number) =>
@@ -166,5 +244,79 @@ export function exifForPainting(block: Uint8Array, changes: ExifChanges): Uint8A
   const details = subDirectory(exif, first, tag.exifDirectory);
   setNumber(exif, entry(details, tag.pixelWidth), changes.widthPx);
   setNumber(exif, entry(details, tag.pixelHeight), changes.heightPx);
-  return bytes;
+  const texts: [number, string][] = [];
+  if (changes.description) texts.push([tag.imageDescription, changes.description]);
+  if (changes.software) texts.push([tag.software, changes.software]);
+  return texts.length > 0 ? withTexts(exif, first, texts) : bytes;
+}
+
+/** One entry as a TIFF of any byte order can store it again. */
+export interface ExifField {
+  tag: number;
+  /** 1, 2, 6 and 7 are bytes; 3 and 8 have 16 bits; 4, 5, 9 and 10 have 32, two of them for fractions. */
+  type: number;
+  values: number[] | Uint8Array;
+}
+
+/** Only true at their own place or size in the photo's file. */
+const placeBound = new Set([
+  0x0100,
+  0x0101,
+  0x0102,
+  0x0103,
+  0x0106,
+  0x0111,
+  0x0112,
+  0x0115,
+  0x0116,
+  0x0117,
+  0x011a,
+  0x011b,
+  0x011c,
+  0x0128,
+  0x0213,
+  tag.exifDirectory,
+  tag.gpsDirectory,
+  0xa005,
+  tag.makerNote,
+  0x8773,
+]);
+
+/**
+ * The entries of an EXIF block, for a TIFF, which has them in directories of its own.
+ * @param block as `exifForPainting` gives it
+ */
+export function exifFields(block: Uint8Array): {
+  main: ExifField[];
+  capture: ExifField[];
+  place: ExifField[];
+} {
+  const bytes = new Uint8Array(block);
+  const view = new DataView(bytes.buffer);
+  const exif: ExifBytes = { bytes, view, littleEndian: bytes[0] === 0x49 };
+  const first = readDirectory(exif, view.getUint32(4, exif.littleEndian));
+  const fieldsIn = (directory: Directory | undefined) =>
+    (directory?.entries ?? [])
+      .filter((entry) => !placeBound.has(entry.tag))
+      .map((entry) => fieldOf(exif, entry));
+  return {
+    main: fieldsIn(first),
+    capture: fieldsIn(first && subDirectory(exif, first, tag.exifDirectory)),
+    place: fieldsIn(first && subDirectory(exif, first, tag.gpsDirectory)),
+  };
+}
+
+function fieldOf(
+  { bytes, view, littleEndian }: ExifBytes,
+  { tag: which, type, count, valueAt }: Entry,
+): ExifField {
+  const size = bytesPerValue[type] ?? 1;
+  if (size === 1) return { tag: which, type, values: bytes.slice(valueAt, valueAt + count) };
+  const step = size === 2 ? 2 : 4;
+  const numbers = Array.from({ length: (count * size) / step }, (_, i) =>
+    step === 2
+      ? view.getUint16(valueAt + 2 * i, littleEndian)
+      : view.getUint32(valueAt + 4 * i, littleEndian),
+  );
+  return { tag: which, type, values: numbers };
 }

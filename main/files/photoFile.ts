@@ -28,10 +28,13 @@ export interface PictureFacts {
   format: OutputFormat;
   iccProfile?: Uint8Array;
   densityPpi?: number;
-  /** The photo's EXIF; size, density and orientation in it are set right while writing. Not kept in TIFF. */
+  /** The photo's EXIF; size, density and orientation in it are set right while writing. */
   exif?: Uint8Array;
-  /** Keeps the GPS data of the EXIF, which stays out otherwise. */
-  keepLocation?: boolean;
+  /** How much of the EXIF goes into the file; `essential` unless given. */
+  metadata?: 'all' | 'essential' | 'none';
+  /** What the picture is painted by, in words, and with what; both go into the EXIF. */
+  description?: string;
+  software?: string;
   /** 1…100, for JPEG and WebP. */
   quality?: number;
 }

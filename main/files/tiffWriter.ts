@@ -2,6 +2,7 @@ import { endianness } from 'node:os';
 import { promisify } from 'node:util';
 import { deflate } from 'node:zlib';
 import type { CarriedParts } from './carriedParts.ts';
+import { exifFields } from './exifBlock.ts';
 import { Turns } from './interruption.ts';
 import type { AnyPictureFile } from './photoFile.ts';
 import { depthOf, samplesOf } from './pictureRows.ts';
@@ -19,6 +20,12 @@ const longType = 4;
 const rationalType = 5;
 const undefinedType = 7;
 const bytesOfType: Record<number, number> = {
+  1: 1,
+  2: 1,
+  6: 1,
+  8: 2,
+  9: 4,
+  10: 8,
   [shortType]: 2,
   [longType]: 4,
   [rationalType]: 8,
@@ -60,10 +67,35 @@ export async function writeTiff(
   // Directories start on a word boundary.
   if (file.bytesWritten % 2 === 1) await file.append(Uint8Array.of(0));
   const directoryAt = Buffer.alloc(4);
-  writeUint32(directoryAt, file.bytesWritten, 0);
   const layout = { ...strips, bits: depthOf(picture), compression: deflateCompression };
-  await file.append(directoryBytes(fieldsOf(picture, parts, layout), file.bytesWritten), signal);
+  const fields = fieldsOf(picture, parts, layout);
+  if (parts.exif) fields.push(...(await appendExif(file, parts.exif)));
+  fields.sort((a, b) => a.tag - b.tag);
+  writeUint32(directoryAt, file.bytesWritten, 0);
+  await file.append(directoryBytes(fields, file.bytesWritten), signal);
   await file.patch(directoryAt, 4);
+}
+
+const exifDirectoryTag = 34665;
+const gpsDirectoryTag = 34853;
+
+/** Capture data and place go into directories of their own; what is left belongs into the picture's. */
+async function appendExif(file: UnfinishedFile, exif: Uint8Array): Promise<Field[]> {
+  const { main, capture, place } = exifFields(exif);
+  const fields: Field[] = [...main];
+  for (const [tag, directory] of [
+    [exifDirectoryTag, capture],
+    [gpsDirectoryTag, place],
+  ] as const) {
+    if (directory.length === 0) continue;
+    fields.push({ tag, type: longType, values: [file.bytesWritten] });
+    const bytes = directoryBytes(
+      [...directory].sort((a, b) => a.tag - b.tag),
+      file.bytesWritten,
+    );
+    await file.append(bytes.length % 2 === 0 ? bytes : Buffer.concat([bytes, Uint8Array.of(0)]));
+  }
+  return fields;
 }
 
 /** What stands before and behind the pixels of an uncompressed TIFF whose pixels begin at `tiffPixelsAt`. */
@@ -208,7 +240,7 @@ function directoryBytes(fields: Field[], at: number): Uint8Array {
 
 function valueBytes({ type, values }: Field): Uint8Array {
   if (values instanceof Uint8Array) return values;
-  const isShort = type === shortType;
+  const isShort = type === shortType || type === 8;
   const bytes = Buffer.alloc(values.length * (isShort ? 2 : 4));
   values.forEach((value, k) => {
     if (isShort) writeUint16(bytes, value, k * 2);

@@ -1,6 +1,6 @@
 import type { CarriedParts } from './carriedParts.ts';
 import { type EncodedPicture, encodePicture } from './encodePicture.ts';
-import { exifForPainting } from './exifBlock.ts';
+import { emptyExif, exifForPainting } from './exifBlock.ts';
 import { FileError } from './fileError.ts';
 import { sharp } from './imageLibrary.ts';
 import { jpegLimits } from './jpegParts.ts';
@@ -88,10 +88,14 @@ function requireSoundPicture(picture: AnyPictureFile): void {
 
 function partsToCarry(picture: AnyPictureFile, remarks: string[]): CarriedParts {
   const parts: CarriedParts = { iccProfile: picture.iccProfile, densityPpi: picture.densityPpi };
-  const hasRoomForExif = picture.format !== 'tiff';
-  if (picture.exif && hasRoomForExif) {
-    parts.exif = exifForPainting(picture.exif, picture);
-    if (!parts.exif) remarks.push('The camera data of the photo is damaged and was left out.');
+  const { metadata = 'essential', description, software } = picture;
+  if (metadata !== 'none') {
+    const changes = { ...picture, metadata };
+    if (picture.exif) {
+      parts.exif = exifForPainting(picture.exif, changes);
+      if (!parts.exif) remarks.push('The camera data of the photo is damaged and was left out.');
+    }
+    if (!parts.exif && (description || software)) parts.exif = exifForPainting(emptyExif(), changes);
   }
   if (picture.format !== 'jpeg') return parts;
   if (parts.exif && parts.exif.length > jpegLimits.exifBytes) {

@@ -28,6 +28,11 @@ export interface PaintingOrder {
   /** 1…100, for JPEG and WebP. */
   quality?: number;
   printLongEdgeMm: number;
+  /** How much of the photo's EXIF goes along; `essential` unless given. */
+  metadata?: 'all' | 'essential' | 'none';
+  /** What it is painted by, in words, and with what. */
+  description?: string;
+  software?: string;
   /** Colours and place on paper; the photo's own unless given. */
   print?: PrintOrder;
   /** Writes the strata too, beside the picture and under its name, in the photo's own colours. */
@@ -109,7 +114,8 @@ export async function deliverPainting(
     const startMs = performance.now();
     const { pixels, pixelsSha256 } = painted;
     const { iccProfile, densityPpi } = finish;
-    const parts = { iccProfile, densityPpi, exif, format: order.format, quality: order.quality };
+    const { format, quality, metadata, description, software } = order;
+    const parts = { iccProfile, densityPpi, exif, format, quality, metadata, description, software };
     const finished = await finishPainting(order.out, { widthPx, heightPx, channels, pixels }, finish, signal);
     const picture: AnyPictureFile = { ...finished, ...parts };
     const remarks = [...file.remarks];

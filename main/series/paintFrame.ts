@@ -42,7 +42,7 @@ export async function paintFrame(
   { photoPath, out, parameters, output, match: asked }: FrameOrder,
   { signal, onProgress }: FrameOptions = {},
 ): Promise<PaintedFrame> {
-  const { printLongEdgeMm, format, depth, quality, layers } = output;
+  const { printLongEdgeMm, format, depth, quality, layers, metadata } = output;
   const print = printOrderOf(output);
   const photo = await prepareForPrint(
     await readAnyPhoto(photoPath, { signal }),
@@ -73,6 +73,7 @@ export async function paintFrame(
       format,
       depth,
       quality,
+      metadata,
       printLongEdgeMm,
       print: { ...print, writesSize: true },
       layers: layers === 'none' ? undefined : layers,

@@ -56,7 +56,7 @@ describe.each([false, true])('EXIF of a painting (big-endian: %s)', (bigEndian) 
     expect(original.includes(place)).toBe(true);
     expect(Buffer.from(painted).includes(place)).toBe(false);
     expect(numberIn(painted, 0x8825)).toBeUndefined();
-    const withPlace = exifForPainting(original, { ...changes, keepLocation: true })!;
+    const withPlace = exifForPainting(original, { ...changes, metadata: 'all' })!;
     expect(Buffer.from(withPlace).includes(place)).toBe(true);
     expect(numberIn(withPlace, 0x8825)).toBeGreaterThan(0);
   });
