@@ -12,7 +12,11 @@ const program = fileURLToPath(new URL('../../dist/main/commandLine.js', import.m
 const folder = temporaryFolder();
 
 function start(...words: string[]) {
-  const child = spawn(process.execPath, [program, 'paint', ...words], { cwd: folder.path('.') });
+  const child = spawn(process.execPath, [program, 'paint', ...words], {
+    cwd: folder.path('.'),
+    // Recipes of photos that were moved come from there: nobody else's may.
+    env: { ...process.env, OXGALL_DATA: folder.path('data') },
+  });
   let [out, err] = ['', ''];
   child.stdout.on('data', (text) => {
     out += text;
