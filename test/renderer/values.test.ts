@@ -54,11 +54,16 @@ describe('strata key', () => {
       'line.strength',
       'line.blend',
       'line.colour',
+      'relief.strength',
     ]);
     for (const key of parameterKeys) {
       const changed = { ...base, [key]: 'other' };
       expect(strataKey(changed, 300) === strataKey(base, 300), key).toBe(composed.has(key));
     }
+    // The surface is only lit where it is to be seen.
+    const lit = { ...base, 'relief.strength': 0.3 };
+    expect(strataKey(lit, 300)).not.toBe(strataKey(base, 300));
+    expect(strataKey({ ...lit, 'relief.strength': 0.6 }, 300)).toBe(strataKey(lit, 300));
     expect(strataKey(base, 420)).not.toBe(strataKey(base, 300));
   });
 });
