@@ -9,7 +9,8 @@ import { depthOf } from './pictureRows.ts';
 import { pngWithParts } from './pngParts.ts';
 import { SpilledPixels } from './spilledPixels.ts';
 import { SpillFile } from './spillFile.ts';
-import { tiffPixelsAt, uncompressedTiff } from './tiffWriter.ts';
+import { tiffPixelsAt } from './tiffDirectory.ts';
+import { uncompressedTiff } from './tiffWriter.ts';
 import { webpWithParts } from './webpParts.ts';
 
 const defaultQuality = 92;

@@ -1,3 +1,6 @@
+import type { PhotoCredits } from './photoCredits.ts';
+import { bytesOfType, fieldType, type TiffField } from './tiffDirectory.ts';
+
 // EXIF travels as a small TIFF: a byte-order mark, directories of 12-byte entries, values by offset
 // (CIPA DC-008). Everything is changed in place, so offsets inside maker notes stay true.
 
@@ -12,26 +15,11 @@ const tag = {
   pixelHeight: 0xa003,
   imageDescription: 0x010e,
   software: 0x0131,
+  artist: 0x013b,
+  copyright: 0x8298,
   makerNote: 0x927c,
 };
-const bytesPerValue: Record<number, number> = {
-  1: 1,
-  2: 1,
-  3: 2,
-  4: 4,
-  5: 8,
-  6: 1,
-  7: 1,
-  8: 2,
-  9: 4,
-  10: 8,
-  11: 4,
-  12: 8,
-};
-const asciiType = 2;
-const shortType = 3;
-const longType = 4;
-const rationalType = 5;
+const { ascii: asciiType, short: shortType, long: longType, rational: rationalType } = fieldType;
 
 interface Entry {
   tag: number;
@@ -65,7 +53,7 @@ function readDirectory({ view, littleEndian }: ExifBytes, at: number): Directory
   for (let entryAt = at + 2; entryAt < nextAt; entryAt += 12) {
     const type = view.getUint16(entryAt + 2, littleEndian);
     const valueCount = view.getUint32(entryAt + 4, littleEndian);
-    const size = (bytesPerValue[type] ?? 1) * valueCount;
+    const size = (bytesOfType[type] ?? 1) * valueCount;
     const valueAt = size <= 4 ? entryAt + 8 : view.getUint32(entryAt + 8, littleEndian);
     if (valueAt + size > view.byteLength) continue;
     entries.push({
@@ -102,7 +90,7 @@ function removeSubDirectory(exif: ExifBytes, parent: Directory, which: number): 
   const directory = subDirectory(exif, parent, which);
   if (directory) {
     for (const { type, count, valueAt } of directory.entries)
-      exif.bytes.fill(0, valueAt, valueAt + (bytesPerValue[type] ?? 1) * count);
+      exif.bytes.fill(0, valueAt, valueAt + (bytesOfType[type] ?? 1) * count);
     exif.bytes.fill(0, directory.at, directory.nextAt + 4);
   }
   exif.bytes.copyWithin(pointer.at, pointer.at + 12, parent.nextAt + 4);
@@ -150,11 +138,42 @@ export function withoutExifMark(block: Uint8Array): Uint8Array {
 /** EXIF of a photo that has none: an empty directory, little-endian. */
 export const emptyExif = (): Uint8Array => Uint8Array.from([0x49, 0x49, 42, 0, 8, 0, 0, 0, 0, 0, 0, 0, 0, 0]);
 
+/**
+ * The block with creator and copyright where it names none; a new block where there is none.
+ * @returns the block itself where nothing is missing or it cannot be understood
+ */
+export function withCredits(
+  block: Uint8Array | undefined,
+  { creator, copyright }: PhotoCredits,
+): Uint8Array | undefined {
+  const exif = parseBlock(block ?? emptyExif());
+  const first = exif && firstDirectory(exif);
+  if (!first) return block;
+  const names = (which: number) =>
+    first.entries.some((entry) => entry.tag === which && exif.bytes[entry.valueAt] !== 0);
+  const texts: [number, string][] = [];
+  if (creator && !names(tag.artist)) texts.push([tag.artist, creator]);
+  if (copyright && !names(tag.copyright)) texts.push([tag.copyright, copyright]);
+  return texts.length > 0 ? withTexts(exif, first, texts) : block;
+}
+
+/** A copy of a block to work on; undefined where it does not begin as one. */
+function parseBlock(block: Uint8Array): ExifBytes | undefined {
+  const bytes = new Uint8Array(withoutExifMark(block));
+  const mark = Buffer.from(bytes.subarray(0, 4)).toString('latin1');
+  if (bytes.length < 14 || (mark !== 'II*\0' && mark !== 'MM\0*')) return undefined;
+  return { bytes, view: new DataView(bytes.buffer), littleEndian: mark.startsWith('II') };
+}
+
+function firstDirectory(exif: ExifBytes): Directory | undefined {
+  return readDirectory(exif, exif.view.getUint32(4, exif.littleEndian));
+}
+
 /** Blanks one entry's value and takes the entry out of its directory. */
 function removeEntry(exif: ExifBytes, directory: Directory, which: number): void {
   const entry = directory.entries.find((candidate) => candidate.tag === which);
   if (!entry) return;
-  const size = (bytesPerValue[entry.type] ?? 1) * entry.count;
+  const size = (bytesOfType[entry.type] ?? 1) * entry.count;
   exif.bytes.fill(0, entry.valueAt, entry.valueAt + size);
   exif.bytes.copyWithin(entry.at, entry.at + 12, directory.nextAt + 4);
   const entryCount = exif.view.getUint16(directory.at, exif.littleEndian);
@@ -217,13 +236,9 @@ function withTexts(
  * @returns the TIFF without the "Exif" mark, or undefined where the block cannot be understood
  */
 export function exifForPainting(block: Uint8Array, changes: ExifChanges): Uint8Array | undefined {
-  const bytes = new Uint8Array(withoutExifMark(block));
-  const mark = Buffer.from(bytes.subarray(0, 4)).toString('latin1');
-  if (bytes.length < 14 || (mark !== 'II*\0' && mark !== 'MM\0*')) return undefined;
-  const view = new DataView(bytes.buffer);
-  const exif: ExifBytes = { bytes, view, littleEndian: mark.startsWith('II') };
-  const read = () => readDirectory(exif, view.getUint32(4, exif.littleEndian));
-  let first = read();
+  const exif = parseBlock(block);
+  if (!exif) return undefined;
+  let first = firstDirectory(exif);
   if (!first) return undefined;
   removeThumbnail(exif, first);
   if (changes.metadata !== 'all') {
@@ -231,7 +246,7 @@ export function exifForPainting(block: Uint8Array, changes: ExifChanges): Uint8A
     const details = subDirectory(exif, first, tag.exifDirectory);
     if (details) removeEntry(exif, details, tag.makerNote);
   }
-  first = read();
+  first = firstDirectory(exif);
   if (!first) return undefined;
   const entry = (directory: Directory | undefined, which: number) =>
     directory?.entries.find((candidate) => candidate.tag === which);
@@ -247,15 +262,7 @@ export function exifForPainting(block: Uint8Array, changes: ExifChanges): Uint8A
   const texts: [number, string][] = [];
   if (changes.description) texts.push([tag.imageDescription, changes.description]);
   if (changes.software) texts.push([tag.software, changes.software]);
-  return texts.length > 0 ? withTexts(exif, first, texts) : bytes;
-}
-
-/** One entry as a TIFF of any byte order can store it again. */
-export interface ExifField {
-  tag: number;
-  /** 1, 2, 6 and 7 are bytes; 3 and 8 have 16 bits; 4, 5, 9 and 10 have 32, two of them for fractions. */
-  type: number;
-  values: number[] | Uint8Array;
+  return texts.length > 0 ? withTexts(exif, first, texts) : exif.bytes;
 }
 
 /** Only true at their own place or size in the photo's file. */
@@ -287,9 +294,9 @@ const placeBound = new Set([
  * @param block as `exifForPainting` gives it
  */
 export function exifFields(block: Uint8Array): {
-  main: ExifField[];
-  capture: ExifField[];
-  place: ExifField[];
+  main: TiffField[];
+  capture: TiffField[];
+  place: TiffField[];
 } {
   const bytes = new Uint8Array(block);
   const view = new DataView(bytes.buffer);
@@ -297,7 +304,7 @@ export function exifFields(block: Uint8Array): {
   const first = readDirectory(exif, view.getUint32(4, exif.littleEndian));
   const fieldsIn = (directory: Directory | undefined) =>
     (directory?.entries ?? [])
-      .filter((entry) => !placeBound.has(entry.tag))
+      .filter((entry) => !placeBound.has(entry.tag) && bytesOfType[entry.type] !== undefined)
       .map((entry) => fieldOf(exif, entry));
   return {
     main: fieldsIn(first),
@@ -309,8 +316,8 @@ export function exifFields(block: Uint8Array): {
 function fieldOf(
   { bytes, view, littleEndian }: ExifBytes,
   { tag: which, type, count, valueAt }: Entry,
-): ExifField {
-  const size = bytesPerValue[type] ?? 1;
+): TiffField {
+  const size = bytesOfType[type] ?? 1;
   if (size === 1) return { tag: which, type, values: bytes.slice(valueAt, valueAt + count) };
   const step = size === 2 ? 2 : 4;
   const numbers = Array.from({ length: (count * size) / step }, (_, i) =>

@@ -1,6 +1,14 @@
 import type { CarriedParts } from './carriedParts.ts';
 
-const mark = { startOfImage: 0xd8, app0: 0xe0, app1: 0xe1, app2: 0xe2, app15: 0xef, comment: 0xfe };
+const mark = {
+  startOfImage: 0xd8,
+  app0: 0xe0,
+  app1: 0xe1,
+  app2: 0xe2,
+  app14: 0xee,
+  app15: 0xef,
+  comment: 0xfe,
+};
 const longestPayload = 0xffff - 2;
 
 function segment(marker: number, ...payload: Uint8Array[]): Uint8Array {
@@ -45,12 +53,14 @@ export const jpegLimits = { profileBytes: 255 * (longestPayload - 14), exifBytes
  * after the other: the compressed pixels are not copied.
  */
 export function jpegWithParts(encoded: Uint8Array, parts: CarriedParts): Uint8Array[] {
+  const pieces = [encoded.subarray(0, 2), jfifSegment(parts.densityPpi)];
   let at = 2;
   while (encoded[at] === 0xff && encoded[at + 1] >= mark.app0 && encoded[at + 1] <= mark.app15) {
-    // The colour transform mark of some encoders must stay; ours writes Y'CbCr, which is what JFIF implies.
-    at += 2 + ((encoded[at + 2] << 8) | encoded[at + 3]);
+    const end = at + 2 + ((encoded[at + 2] << 8) | encoded[at + 3]);
+    // Tells readers how colours were coded (ITU-T T.872); of four inks, that 0 is full ink, as is usual.
+    if (encoded[at + 1] === mark.app14) pieces.push(encoded.subarray(at, end));
+    at = end;
   }
-  const pieces = [encoded.subarray(0, 2), jfifSegment(parts.densityPpi)];
   if (parts.exif) pieces.push(segment(mark.app1, Buffer.from('Exif\0\0', 'latin1'), parts.exif));
   if (parts.iccProfile) pieces.push(...profileSegments(parts.iccProfile));
   pieces.push(encoded.subarray(at));

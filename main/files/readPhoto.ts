@@ -1,13 +1,16 @@
 import type { Metadata, Sharp } from 'sharp';
 import { rgbProfileOfGrey, wideProfile } from '../../core/colour/matrixProfile.ts';
 import { whyUndecodable } from './decodeFaults.ts';
+import { withCredits } from './exifBlock.ts';
 import { FileError } from './fileError.ts';
 import { sharp } from './imageLibrary.ts';
 import { profileSpace } from './inputProfile.ts';
 import { unlessAborted } from './interruption.ts';
 import { turnUpright } from './orientation.ts';
+import { creditsOf } from './photoCredits.ts';
 import type { PhotoFile } from './photoFile.ts';
 import { openPhoto, type PhotoHeader, readHeader } from './photoHeader.ts';
+import { readTiffExif } from './tiffExif.ts';
 
 /** What becomes of the colours while reading. */
 export interface ColourPlan {
@@ -37,7 +40,7 @@ export async function readPhoto(path: string, options: { signal?: AbortSignal } 
     ? await decodeInks({ path, source: opened.source, header, colours }, colours.inkProfile, signal)
     : await decode({ path, source: opened.source, header, colours }, signal);
   const upright = await turnUpright(decoded, header.orientation, signal);
-  const facts = factsOf(path, header, colours, decoded.remarks);
+  const facts = await factsOf(path, opened.source, header, colours, decoded.remarks);
   return {
     ...facts,
     ...(colours.inkProfile && { depth: 16 as const, iccProfile: wideProfile() }),
@@ -49,26 +52,28 @@ export async function readPhoto(path: string, options: { signal?: AbortSignal } 
 }
 
 /** What travels on to the painted file. */
-export function factsOf(
+export async function factsOf(
   path: string,
+  source: Buffer | string,
   header: PhotoHeader,
   colours: ColourPlan,
   remarks: string[],
-): Omit<PhotoFile, 'widthPx' | 'heightPx' | 'channels' | 'pixels'> {
+): Promise<Omit<PhotoFile, 'widthPx' | 'heightPx' | 'channels' | 'pixels'>> {
   const { metadata } = header;
+  const exif = header.format === 'tiff' ? await readTiffExif(source) : metadata.exif;
   return {
     path,
     format: header.format,
     depth: header.depth,
     iccProfile: colours.iccProfile,
     densityPpi: writtenDensity(metadata),
-    exif: metadata.exif && asPlainBytes(metadata.exif),
+    exif: withCredits(exif && plainBytes(exif), creditsOf(metadata.xmp, metadata.iptc)),
     remarks: [...colours.remarks, ...remarks, ...pageRemarks(metadata)],
   };
 }
 
 export function planColours(metadata: Metadata): ColourPlan {
-  const embedded = metadata.icc && asPlainBytes(metadata.icc);
+  const embedded = metadata.icc && plainBytes(metadata.icc);
   const space = metadata.space;
   const described = embedded && profileSpace(embedded);
   if (space === 'cmyk' && described === 'CMYK')
@@ -186,7 +191,7 @@ async function decodeInks(photo: PhotoToDecode, inkProfile: Uint8Array, signal?:
       {
         widthPx: info.width,
         heightPx: info.height,
-        pixels: header.depth === 16 ? asSamples16(data) : asPlainBytes(data),
+        pixels: header.depth === 16 ? asSamples16(data) : plainBytes(data),
         hasAlpha: false,
         space: 'CMYK',
         conversion,
@@ -217,7 +222,7 @@ async function decode(photo: PhotoToDecode, signal?: AbortSignal) {
   );
   const { data, info } = result;
   const channels = paintableChannels(path, info.channels);
-  const pixels = header.depth === 16 ? asSamples16(data) : asPlainBytes(data);
+  const pixels = header.depth === 16 ? asSamples16(data) : plainBytes(data);
   if (pixels.length !== info.width * info.height * channels)
     throw new FileError(
       path,
@@ -234,7 +239,7 @@ export function paintableChannels(path: string, channels: number): 3 | 4 {
 }
 
 /** The same memory without Buffer's own methods, which differ from those of a plain array (`slice`). */
-function asPlainBytes(bytes: Buffer): Uint8Array {
+function plainBytes(bytes: Uint8Array): Uint8Array {
   return new Uint8Array(bytes.buffer, bytes.byteOffset, bytes.byteLength);
 }
 

@@ -44,7 +44,8 @@ export async function spillPhoto(
       throw new FileError(path, 'decodes to a wrong bit depth', 'Export it again as RGB and open that.');
     const upright = await turned(pixels, header.orientation, signal);
     const { widthPx, heightPx, channels } = upright;
-    return { ...factsOf(path, header, colours, remarks), widthPx, heightPx, channels, pixels: upright };
+    const facts = await factsOf(path, opened.source, header, colours, remarks);
+    return { ...facts, widthPx, heightPx, channels, pixels: upright };
   } catch (failure) {
     stored.discardBehind(decoding);
     throw failure;

@@ -1,6 +1,7 @@
 import { type PixelFacts, SpilledPixels } from './spilledPixels.ts';
 import { SpillFile } from './spillFile.ts';
-import { tiffPixelsAt, uncompressedTiff } from './tiffWriter.ts';
+import { tiffPixelsAt } from './tiffDirectory.ts';
+import { uncompressedTiff } from './tiffWriter.ts';
 
 /** Takes the rows of a picture, from top to bottom, into a temporary TIFF that the image library can read. */
 export class PictureSpill {

@@ -1,4 +1,3 @@
-import { endianness } from 'node:os';
 import { promisify } from 'node:util';
 import { deflate } from 'node:zlib';
 import type { CarriedParts } from './carriedParts.ts';
@@ -7,6 +6,7 @@ import { Turns } from './interruption.ts';
 import type { AnyPictureFile } from './photoFile.ts';
 import { depthOf, samplesOf } from './pictureRows.ts';
 import type { PixelFacts } from './spilledPixels.ts';
+import { directoryBytes, fieldType, type TiffField, tiffHeader, tiffPixelsAt } from './tiffDirectory.ts';
 import type { UnfinishedFile } from './unfinishedFile.ts';
 
 // Written here and not by the image library: strips go to the disk as they are packed, on every core, so no
@@ -15,25 +15,7 @@ import type { UnfinishedFile } from './unfinishedFile.ts';
 
 const pack = promisify(deflate);
 
-const shortType = 3;
-const longType = 4;
-const rationalType = 5;
-const undefinedType = 7;
-const bytesOfType: Record<number, number> = {
-  1: 1,
-  2: 1,
-  6: 1,
-  8: 2,
-  9: 4,
-  10: 8,
-  [shortType]: 2,
-  [longType]: 4,
-  [rationalType]: 8,
-  [undefinedType]: 1,
-};
-
-/** Where the pixels of an uncompressed TIFF begin. */
-export const tiffPixelsAt = 8;
+const { short: shortType, long: longType, rational: rationalType, undefined: undefinedType } = fieldType;
 
 const noCompression = 1;
 const deflateCompression = 8;
@@ -47,14 +29,6 @@ const stripBytes = 256 * 1024;
 const stripsInFlight = 4;
 const deflateLevel = 1;
 
-interface Field {
-  tag: number;
-  type: number;
-  values: number[] | Uint8Array;
-}
-
-const littleEndian = endianness() === 'LE';
-
 /** Writes a picture as a baseline TIFF 6.0 with deflate and horizontal differencing; 16 bits stay 16 bits. */
 export async function writeTiff(
   file: UnfinishedFile,
@@ -62,27 +36,26 @@ export async function writeTiff(
   parts: CarriedParts,
   signal?: AbortSignal,
 ): Promise<void> {
-  await file.append(fileHeader(0));
+  await file.append(tiffHeader(0));
   const strips = await writeStrips(file, picture, signal);
   // Directories start on a word boundary.
   if (file.bytesWritten % 2 === 1) await file.append(Uint8Array.of(0));
-  const directoryAt = Buffer.alloc(4);
   const layout = { ...strips, bits: depthOf(picture), compression: deflateCompression };
   const fields = fieldsOf(picture, parts, layout);
   if (parts.exif) fields.push(...(await appendExif(file, parts.exif)));
   fields.sort((a, b) => a.tag - b.tag);
-  writeUint32(directoryAt, file.bytesWritten, 0);
-  await file.append(directoryBytes(fields, file.bytesWritten), signal);
-  await file.patch(directoryAt, 4);
+  const directoryAt = file.bytesWritten;
+  await file.append(directoryBytes(fields, directoryAt), signal);
+  await file.patch(tiffHeader(directoryAt), 0);
 }
 
 const exifDirectoryTag = 34665;
 const gpsDirectoryTag = 34853;
 
 /** Capture data and place go into directories of their own; what is left belongs into the picture's. */
-async function appendExif(file: UnfinishedFile, exif: Uint8Array): Promise<Field[]> {
+async function appendExif(file: UnfinishedFile, exif: Uint8Array): Promise<TiffField[]> {
   const { main, capture, place } = exifFields(exif);
-  const fields: Field[] = [...main];
+  const fields: TiffField[] = [...main];
   for (const [tag, directory] of [
     [exifDirectoryTag, capture],
     [gpsDirectoryTag, place],
@@ -113,15 +86,7 @@ export function uncompressedTiff(facts: PixelFacts & { space?: 'RGB' | 'CMYK' })
   const tailAt = end + (end % 2);
   const bits = facts.bytesPerSample * 8;
   const fields = fieldsOf(facts, {}, { rows, offsets, sizes, bits, compression: noCompression });
-  return { header: fileHeader(tailAt), tail: directoryBytes(fields, tailAt), tailAt };
-}
-
-function fileHeader(directoryAt: number): Uint8Array {
-  const header = Buffer.alloc(tiffPixelsAt);
-  header.write(littleEndian ? 'II' : 'MM', 'latin1');
-  writeUint16(header, 42, 2);
-  writeUint32(header, directoryAt, 4);
-  return header;
+  return { header: tiffHeader(tailAt), tail: directoryBytes(fields, tailAt), tailAt };
 }
 
 interface Strips {
@@ -185,9 +150,9 @@ function fieldsOf(
   picture: { widthPx: number; heightPx: number; channels: 3 | 4; space?: 'RGB' | 'CMYK' },
   parts: CarriedParts,
   { bits, compression, ...strips }: Strips & { bits: number; compression: number },
-): Field[] {
+): TiffField[] {
   const { channels } = picture;
-  const fields: Field[] = [
+  const fields: TiffField[] = [
     { tag: 256, type: longType, values: [picture.widthPx] },
     { tag: 257, type: longType, values: [picture.heightPx] },
     { tag: 258, type: shortType, values: Array(channels).fill(bits) },
@@ -212,49 +177,4 @@ function fieldsOf(
     fields.push({ tag: 338, type: shortType, values: [straightAlphaSample] });
   if (parts.iccProfile) fields.push({ tag: 34675, type: undefinedType, values: parts.iccProfile });
   return fields.sort((a, b) => a.tag - b.tag);
-}
-
-/** The image file directory with the values that do not fit in their entries behind it. */
-function directoryBytes(fields: Field[], at: number): Uint8Array {
-  const entries = Buffer.alloc(2 + fields.length * 12 + 4);
-  writeUint16(entries, fields.length, 0);
-  const behind: Uint8Array[] = [];
-  let behindAt = at + entries.length;
-  fields.forEach((field, k) => {
-    const entryAt = 2 + k * 12;
-    const value = valueBytes(field);
-    writeUint16(entries, field.tag, entryAt);
-    writeUint16(entries, field.type, entryAt + 2);
-    writeUint32(entries, value.length / bytesOfType[field.type], entryAt + 4);
-    if (value.length <= 4) {
-      entries.set(value, entryAt + 8);
-      return;
-    }
-    writeUint32(entries, behindAt, entryAt + 8);
-    const padded = value.length % 2 === 0 ? value : Buffer.concat([value, Uint8Array.of(0)]);
-    behind.push(padded);
-    behindAt += padded.length;
-  });
-  return Buffer.concat([entries, ...behind]);
-}
-
-function valueBytes({ type, values }: Field): Uint8Array {
-  if (values instanceof Uint8Array) return values;
-  const isShort = type === shortType || type === 8;
-  const bytes = Buffer.alloc(values.length * (isShort ? 2 : 4));
-  values.forEach((value, k) => {
-    if (isShort) writeUint16(bytes, value, k * 2);
-    else writeUint32(bytes, value, k * 4);
-  });
-  return bytes;
-}
-
-function writeUint16(bytes: Buffer, value: number, at: number): void {
-  if (littleEndian) bytes.writeUInt16LE(value, at);
-  else bytes.writeUInt16BE(value, at);
-}
-
-function writeUint32(bytes: Buffer, value: number, at: number): void {
-  if (littleEndian) bytes.writeUInt32LE(value, at);
-  else bytes.writeUInt32BE(value, at);
 }
