@@ -78,7 +78,17 @@ describe.skipIf(!chromiumFound.path)('the Wall', () => {
   });
 
   it('changes the lead and takes it back by keys alone', { timeout: 60_000 }, async () => {
-    await frame(page, 'plate-1.jpg').focus();
+    // Frames are hung anew while the series is still being read: the focus holds once they rest.
+    await expect
+      .poll(
+        async () => {
+          await frame(page, 'plate-1.jpg').focus();
+          await page.waitForTimeout(400);
+          return page.locator('[data-frame="plate-1.jpg"]:focus').count();
+        },
+        { timeout: 15_000 },
+      )
+      .toBe(1);
     for (const next of ['plate-2.jpg', 'plate-3.jpg']) {
       await page.keyboard.press('ArrowRight');
       await page.locator(`[data-frame="${next}"]:focus`).waitFor();
