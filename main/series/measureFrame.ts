@@ -20,11 +20,16 @@ const textureEdgePx = 800;
 /** Gathers the colours of a photo, and how crisp it is, each at a print scale that all frames share. */
 export async function measureColours(photo: DecodedPhoto): Promise<ColourMeasures> {
   const [few, many] = await Promise.all([reducedTo(photo, paletteEdgePx), reducedTo(photo, textureEdgePx)]);
-  const luma = Float64Array.from({ length: many.widthPx * many.heightPx }, (_, i) => {
-    const [r, g, b] = [many.rgb16[3 * i], many.rgb16[3 * i + 1], many.rgb16[3 * i + 2]];
-    return (0.299 * r + 0.587 * g + 0.114 * b) / 257;
-  });
-  return { palette: paletteOf(few.rgb16), focus: focusOf(luma, many.widthPx, many.heightPx) };
+  const focus = focusOf(lumaOf(many.rgb16), many.widthPx, many.heightPx);
+  return { palette: paletteOf(few.rgb16), focus };
+}
+
+/** Luma (ITU-R BT.601) in 8-bit steps. */
+function lumaOf(rgb16: Uint16Array): Float64Array {
+  const luma = new Float64Array(rgb16.length / 3);
+  for (let i = 0, at = 0; i < luma.length; i++, at += 3)
+    luma[i] = (0.299 * rgb16[at] + 0.587 * rgb16[at + 1] + 0.114 * rgb16[at + 2]) / 257;
+  return luma;
 }
 
 async function reducedTo(photo: DecodedPhoto, longEdgePx: number) {
@@ -41,10 +46,15 @@ async function reducedTo(photo: DecodedPhoto, longEdgePx: number) {
     .removeAlpha();
   const raw = isWide ? image.toColourspace('rgb16').raw({ depth: 'ushort' }) : image.raw();
   const { data, info } = await raw.toBuffer({ resolveWithObject: true });
-  const rgb16 = isWide
-    ? new Uint16Array(new Uint8Array(data).buffer)
-    : Uint16Array.from(data, (value) => value * 257);
+  const rgb16 = isWide ? new Uint16Array(new Uint8Array(data).buffer) : widened(data);
   return { rgb16, widthPx: info.width, heightPx: info.height };
+}
+
+/** A plain loop: `Uint16Array.from` with a function took 170 ms for 0.4 megapixels, on the thread that answers. */
+function widened(bytes: Uint8Array): Uint16Array {
+  const wide = new Uint16Array(bytes.length);
+  for (let i = 0; i < bytes.length; i++) wide[i] = bytes[i] * 257;
+  return wide;
 }
 
 /** The sample windows of a photo, taken once and painted as often as is needed. */
