@@ -1,3 +1,5 @@
+import { curveAt, isCurve, sampledCurve } from './toneCurve.ts';
+
 /**
  * Builds ICC profiles of RGB spaces that are a matrix and one curve (ICC.1:2010, profile version 4.2), byte for byte
  * the same everywhere.
@@ -223,7 +225,24 @@ export function tagOf(profile: Uint8Array, signature: string): Uint8Array | null
  */
 export function rgbProfileOfGrey(grey: Uint8Array): Uint8Array | null {
   const curve = tagOf(grey, 'kTRC');
-  return curve && matrixProfile('Grey as RGB', srgbPrimaries, curve);
+  if (!isCurve(curve)) return null;
+  const luminance = connectsByLab(grey) ? luminanceOfLightness(curve) : curve;
+  return matrixProfile('Grey as RGB', srgbPrimaries, luminance);
+}
+
+/** Whether a profile meets others by L*a*b* (ICC.1, 7.2.7): a grey curve then gives lightness instead of luminance. */
+export function connectsByLab(profile: Uint8Array): boolean {
+  return String.fromCharCode(...profile.subarray(20, 24)) === 'Lab ';
+}
+
+const curvePoints = 4096;
+
+function luminanceOfLightness(curve: Uint8Array): Uint8Array {
+  const values = Array.from({ length: curvePoints }, (_, i) => {
+    const lightness = 100 * curveAt(curve, i / (curvePoints - 1));
+    return lightness > 8 ? ((lightness + 16) / 116) ** 3 : (lightness * 27) / 24389;
+  });
+  return sampledCurve(values);
 }
 
 /** The profile of sRGB. */

@@ -1,26 +1,17 @@
 import type { Metadata, Sharp } from 'sharp';
-import { rgbProfileOfGrey, wideProfile } from '../../core/colour/matrixProfile.ts';
+import { wideProfile } from '../../core/colour/matrixProfile.ts';
+import { type ColourPlan, planColours } from './colourPlan.ts';
 import { whyUndecodable } from './decodeFaults.ts';
 import { withCredits } from './exifBlock.ts';
 import { FileError } from './fileError.ts';
 import { sharp } from './imageLibrary.ts';
-import { profileSpace } from './inputProfile.ts';
 import { unlessAborted } from './interruption.ts';
 import { turnUpright } from './orientation.ts';
 import { creditsOf } from './photoCredits.ts';
 import type { PhotoFile } from './photoFile.ts';
 import { openPhoto, type PhotoHeader, readHeader } from './photoHeader.ts';
+import { throughProfile } from './throughProfile.ts';
 import { readTiffExif } from './tiffExif.ts';
-
-/** What becomes of the colours while reading. */
-export interface ColourPlan {
-  /** Numbers kept as stored, or converted by the library through the embedded profile to sRGB. */
-  convert: boolean;
-  /** Profile of a CMYK photo that `readPhoto` converts itself, at 16 bits, to a space that holds all its colours. */
-  inkProfile?: Uint8Array;
-  iccProfile?: Uint8Array;
-  remarks: string[];
-}
 
 type Strictness = 'warning' | 'truncated';
 
@@ -36,17 +27,16 @@ export async function readPhoto(path: string, options: { signal?: AbortSignal } 
   const opened = await openPhoto(path, { wholeFile: true, signal });
   const header = await readHeader(path, opened, signal);
   const colours = planColours(header.metadata);
-  const decoded = colours.inkProfile
-    ? await decodeInks({ path, source: opened.source, header, colours }, colours.inkProfile, signal)
-    : await decode({ path, source: opened.source, header, colours }, signal);
-  const upright = await turnUpright(decoded, header.orientation, signal);
+  const decoded = await decode({ path, source: opened.source, header, colours }, signal);
+  const { through } = colours;
+  const converted = through ? await throughProfile(path, decoded, through, signal) : decoded;
+  const upright = await turnUpright(converted, header.orientation, signal);
   const facts = await factsOf(path, opened.source, header, colours, decoded.remarks);
   return {
     ...facts,
-    ...(colours.inkProfile && { depth: 16 as const, iccProfile: wideProfile() }),
     widthPx: upright.widthPx,
     heightPx: upright.heightPx,
-    channels: decoded.channels,
+    channels: converted.channels,
     pixels: upright.pixels,
   };
 }
@@ -64,49 +54,12 @@ export async function factsOf(
   return {
     path,
     format: header.format,
-    depth: header.depth,
-    iccProfile: colours.iccProfile,
+    depth: colours.through ? 16 : header.depth,
+    iccProfile: colours.through ? wideProfile() : colours.iccProfile,
     densityPpi: writtenDensity(metadata),
     exif: withCredits(exif && plainBytes(exif), creditsOf(metadata.xmp, metadata.iptc)),
     remarks: [...colours.remarks, ...remarks, ...pageRemarks(metadata)],
   };
-}
-
-export function planColours(metadata: Metadata): ColourPlan {
-  const embedded = metadata.icc && plainBytes(metadata.icc);
-  const space = metadata.space;
-  const described = embedded && profileSpace(embedded);
-  if (space === 'cmyk' && described === 'CMYK')
-    return {
-      convert: true,
-      inkProfile: embedded,
-      remarks: [
-        'The photo is CMYK: converted through its embedded profile to an RGB space that holds its colours.',
-      ],
-    };
-  if (space === 'cmyk') {
-    const through = 'a general printing profile, as it carries none of its own';
-    return { convert: true, remarks: [`The photo is CMYK: converted to sRGB through ${through}.`] };
-  }
-  if (space === 'lab' || space === 'labs')
-    return { convert: true, remarks: ['The photo is in Lab colours: converted to sRGB.'] };
-  if (space === 'b-w' || space === 'grey16') {
-    const remarks = ['The photo is grey: painted as RGB with equal red, green and blue.'];
-    const iccProfile = (described === 'GRAY' && embedded && rgbProfileOfGrey(embedded)) || undefined;
-    if (iccProfile) remarks.push('Its grey profile is carried on as one for RGB with the same greys.');
-    else if (embedded) remarks.push('Its profile does not fit a grey picture: left out, sRGB assumed.');
-    return { convert: false, iccProfile, remarks };
-  }
-  if (embedded && described !== 'RGB ')
-    return {
-      convert: false,
-      remarks: [
-        described
-          ? `The embedded profile is for ${described.trim()}, not for RGB: left out, sRGB assumed.`
-          : 'The embedded colour profile is damaged: left out, sRGB assumed.',
-      ],
-    };
-  return { convert: false, iccProfile: embedded || undefined, remarks: [] };
 }
 
 function pageRemarks(metadata: Metadata): string[] {
@@ -131,9 +84,11 @@ function pipeline({ source, header, colours }: PhotoToDecode, failOn: Strictness
   const image = sharp(source, {
     failOn,
     limitInputPixels: false, // The header was held against our own limit.
-    ignoreIcc: !colours.convert,
+    ignoreIcc: !colours.convert || colours.through !== undefined,
     sequentialRead: true,
   });
+  // The amounts of ink as they are in the file.
+  if (colours.through?.space === 'CMYK') return image.pipelineColourspace('cmyk').toColourspace('cmyk');
   // Asking for 16-bit output alone silently gives 8-bit values: the working space must be 16-bit too.
   return header.depth === 16 ? image.toColourspace('rgb16') : image;
 }
@@ -161,52 +116,6 @@ export async function decodeWith<T>(
       signal?.throwIfAborted();
       throw whyUndecodable(photo.path, failure);
     }
-  }
-}
-
-/** The ink amounts of a CMYK photo as they are in the file, then through its profile to wide RGB of 16 bits. */
-async function decodeInks(photo: PhotoToDecode, inkProfile: Uint8Array, signal?: AbortSignal) {
-  const { path, header } = photo;
-  const { result, remarks } = await decodeWith(
-    { ...photo, colours: { ...photo.colours, convert: false } },
-    (image) => {
-      const inks = image.pipelineColourspace('cmyk').toColourspace('cmyk');
-      const raw = header.depth === 16 ? inks.raw({ depth: 'ushort' }) : inks.raw();
-      return raw.toBuffer({ resolveWithObject: true });
-    },
-    signal,
-  );
-  const { data, info } = result;
-  if (info.channels !== 4)
-    throw new FileError(path, 'is CMYK with further channels', 'Export it without alpha or spot colours.');
-  const { finishOnThread } = await import('../colour/colourThread.ts');
-  const conversion = {
-    from: inkProfile,
-    to: wideProfile(),
-    intent: 'relative',
-    blackPointCompensation: false,
-  } as const;
-  try {
-    const { pixels } = await finishOnThread(
-      {
-        widthPx: info.width,
-        heightPx: info.height,
-        pixels: header.depth === 16 ? asSamples16(data) : plainBytes(data),
-        hasAlpha: false,
-        space: 'CMYK',
-        conversion,
-        bleedPx: 0,
-        trimMarks: null,
-        depth: 16,
-      },
-      signal,
-    );
-    return { pixels, widthPx: info.width, heightPx: info.height, channels: 3 as const, remarks };
-  } catch (failure) {
-    if (!(failure instanceof RangeError)) throw failure;
-    throw new FileError(path, `its colour profile cannot be used (${failure.message})`, 'Export it as RGB.', {
-      cause: failure,
-    });
   }
 }
 

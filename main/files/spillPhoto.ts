@@ -1,12 +1,14 @@
 import { endianness } from 'node:os';
 import type { Sharp } from 'sharp';
+import { type ColourPlan, planColours } from './colourPlan.ts';
 import { FileError } from './fileError.ts';
 import { swapsEdges, turnUpright } from './orientation.ts';
 import type { PhotoFile } from './photoFile.ts';
 import { openPhoto, readHeader } from './photoHeader.ts';
-import { decodeWith, factsOf, paintableChannels, planColours } from './readPhoto.ts';
+import { decodeWith, factsOf, paintableChannels } from './readPhoto.ts';
 import { type PixelFacts, SpilledPixels } from './spilledPixels.ts';
 import { SpillFile } from './spillFile.ts';
+import { throughProfile } from './throughProfile.ts';
 
 /** A photo whose pixels are in a temporary file; discard them in the end. */
 export interface SpilledPhoto extends Omit<PhotoFile, 'pixels'> {
@@ -42,7 +44,9 @@ export async function spillPhoto(
     const expected = header.depth === 16 ? 2 : 1;
     if (pixels.bytesPerSample !== expected)
       throw new FileError(path, 'decodes to a wrong bit depth', 'Export it again as RGB and open that.');
-    const upright = await turned(pixels, header.orientation, signal);
+    const { through } = colours;
+    const converted = through ? await convertedRows(path, pixels, through, signal) : pixels;
+    const upright = await turned(converted, header.orientation, signal);
     const { widthPx, heightPx, channels } = upright;
     const facts = await factsOf(path, opened.source, header, colours, remarks);
     return { ...facts, widthPx, heightPx, channels, pixels: upright };
@@ -72,6 +76,42 @@ async function uncompressedPixels(path: string, file: SpillFile): Promise<Spille
   if (!isSound || !isKnown || file.bytes < headerBytes + widthPx * heightPx * pixels.pixelBytes)
     throw new FileError(path, 'could not be unpacked', 'Export it again as RGB and open that.');
   return pixels;
+}
+
+/** Pixels converted together. */
+const convertedPixels = 2 ** 20;
+
+/** The pixels brought through a profile, in a file of their own; the stored ones go. */
+async function convertedRows(
+  path: string,
+  stored: SpilledPixels,
+  through: NonNullable<ColourPlan['through']>,
+  signal?: AbortSignal,
+): Promise<SpilledPixels> {
+  const { widthPx, heightPx, channels } = stored;
+  const facts: PixelFacts = {
+    widthPx,
+    heightPx,
+    channels: through.space === 'CMYK' ? 3 : channels,
+    bytesPerSample: 2,
+  };
+  const file = await SpillFile.create();
+  try {
+    const converted = new SpilledPixels(file, facts, 0);
+    const bandRows = Math.max(1, Math.floor(convertedPixels / widthPx));
+    for (let top = 0; top < heightPx; top += bandRows) {
+      const rows = Math.min(bandRows, heightPx - top);
+      const band = { pixels: await stored.samples(top, rows, signal), widthPx, heightPx: rows, channels };
+      const { pixels } = await throughProfile(path, band, through, signal);
+      const piece = new Uint8Array(pixels.buffer, pixels.byteOffset, pixels.byteLength);
+      await file.write(piece, top * widthPx * converted.pixelBytes, signal);
+    }
+    stored.discard();
+    return converted;
+  } catch (failure) {
+    file.discard();
+    throw failure;
+  }
 }
 
 /**

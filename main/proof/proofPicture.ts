@@ -1,11 +1,12 @@
 import type { Sharp } from 'sharp';
+import { planColours } from '../files/colourPlan.ts';
 import { whyUndecodable } from '../files/decodeFaults.ts';
 import { sharp } from '../files/imageLibrary.ts';
 import { unlessAborted } from '../files/interruption.ts';
 import { swapsEdges } from '../files/orientation.ts';
 import { openPhoto, readHeader } from '../files/photoHeader.ts';
 import { pngWithParts } from '../files/pngParts.ts';
-import { decodeWith, planColours } from '../files/readPhoto.ts';
+import { decodeWith } from '../files/readPhoto.ts';
 import type { ProofPicture, ProofPixels } from './proofSource.ts';
 
 /** What a file's header says of a picture. */
@@ -94,8 +95,9 @@ async function reduced(
   const header = await readHeader(path, opened, signal);
   const colours = planColours(header.metadata);
   // Numbers are kept when a photo is painted; a sheet is for looking, so here its profile is always followed.
-  const convert = colours.convert || colours.iccProfile !== undefined;
-  const source = { path, source: opened.source, header, colours: { ...colours, convert } };
+  const { iccProfile, through, remarks } = colours;
+  const convert = colours.convert || iccProfile !== undefined || through !== undefined;
+  const source = { path, source: opened.source, header, colours: { convert, remarks } };
   try {
     return (await decodeWith(source, print, signal)).result;
   } catch (failure) {
