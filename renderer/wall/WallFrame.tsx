@@ -151,7 +151,13 @@ function runWords(run: RunFrame | null) {
     kept: 'painted before',
     failed: 'not painted',
   }[run.state];
-  return words && <span className={`wall-run-word is-${run.state}`}>{words}</span>;
+  return (
+    words && (
+      <span className={`wall-run-word is-${run.state}`} title={run.message || undefined}>
+        {words}
+      </span>
+    )
+  );
 }
 
 function nameInWords({ frame, isLead, isLeftOut, override, ownLook }: WallFrameProps): string {

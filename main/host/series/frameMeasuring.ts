@@ -66,15 +66,6 @@ export class FrameMeasuring {
     return this.#results.get(keyOf(order, plan)) ?? null;
   }
 
-  /** Measures one frame at once, for somebody who waits. */
-  async measureNow(order: MeasuringOrder, plan: MeasuringPlan, signal: AbortSignal): Promise<MeasuredFrame> {
-    const known = this.known(order, plan);
-    if (known) return known;
-    const found = await this.#measure(order, plan, signal);
-    this.#keep(keyOf(order, plan), found);
-    return found;
-  }
-
   start(plan: MeasuringPlan): void {
     this.#work?.abort();
     const work = new AbortController();

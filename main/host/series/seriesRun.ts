@@ -1,75 +1,74 @@
-import { mkdir } from 'node:fs/promises';
-import { extname, join } from 'node:path';
-import { noMatch, parametersWithMatch } from '../../../core/series/frameMatch.ts';
-import { deliverPainting } from '../../painting/deliverPainting.ts';
+import { EnginePainter } from '../../series/framePainter.ts';
+import { type FrameResult, type RunOrder, runSeries } from '../../series/runSeries.ts';
+import type { PlannedFrame } from '../../series/seriesPlan.ts';
 import type { RunFrame, RunView } from '../api/runCommands.ts';
 import type { EventHub } from '../eventHub.ts';
 import type { HostParts } from '../hostParts.ts';
-import { placeNew } from '../placeFile.ts';
 import { cancelled, describeError } from '../refusal.ts';
-import type { WallSeries } from './wallSeries.ts';
 
 const tellEveryMs = 200;
-const endings = { jpeg: '.jpg', png: '.png', tiff: '.tif', webp: '.webp' } as const;
 
-/**
- * Paints the frames of a series to files, one after another on all workers. A frame that fails is noted and the rest go
- * on; a photo is never painted over, and a name that is taken gets a number.
- */
+/** A run as the window sees and steers it; `runSeries` does the painting. */
 export class SeriesRun {
   readonly #frames = new Map<string, RunFrame>();
-  /** What is still to be painted, in order. */
-  #queue: string[];
+  /** Frames that were asked for first, in order; also those that are painted by now. */
+  #first: readonly string[] = [];
   #state: RunView['state'] = 'running';
   #message = '';
   readonly #stop = new AbortController();
   #goOn: () => void = () => undefined;
   #paused: Promise<void> | null = null;
   #toldMs = 0;
-  #spentMs = 0;
-  #finished = 0;
+  /** Of painted frames, each by itself. */
+  #paintedMs = 0;
+  #framesAtOnce = 1;
   readonly #running: Promise<void>;
 
   constructor(
-    private readonly series: WallSeries,
-    private readonly outFolder: string,
-    private readonly parts: Pick<HostParts, 'loadEngine' | 'loadFiles'>,
+    private readonly seriesId: string,
+    private readonly order: RunOrder,
+    private readonly parts: Pick<HostParts, 'loadEngine'>,
     private readonly events: EventHub,
   ) {
-    const out = new Set(series.settings.leftOut);
-    this.#queue = series.frameIds.filter((frameId) => !out.has(frameId));
-    for (const frameId of this.#queue)
-      this.#frames.set(frameId, { state: 'waiting', fraction01: 0, message: '', path: null });
+    for (const { name } of order.frames)
+      this.#frames.set(name, { state: 'waiting', fraction01: 0, message: '', path: null });
     this.#running = this.#run();
   }
 
+  /** It is under way or paused. */
   get isOn(): boolean {
     return this.#state === 'running' || this.#state === 'paused';
+  }
+
+  get isPainting(): boolean {
+    return this.#state === 'running';
   }
 
   view(): RunView {
     const frames = [...this.#frames.values()];
     const count = (state: RunFrame['state']) => frames.filter((frame) => frame.state === state).length;
     const total = frames.length;
-    const [done, failed] = [count('painted') + count('kept'), count('failed')];
+    const [painted, kept, failed] = [count('painted'), count('kept'), count('failed')];
+    const done = painted + kept;
     const under = frames.reduce(
       (sum, { state, fraction01 }) => sum + (state === 'painting' ? fraction01 : 0),
       0,
     );
     const ahead = total - done - failed - under;
     return {
-      outFolder: this.outFolder,
+      outFolder: this.order.outFolder,
       state: this.#state,
       message: this.#message,
       total,
       done,
       failed,
       fraction01: total > 0 ? (done + failed + under) / total : 1,
-      leftMs: this.#finished > 0 ? (this.#spentMs / this.#finished) * ahead : null,
+      leftMs: painted > 0 ? ((this.#paintedMs / painted) * ahead) / this.#framesAtOnce : null,
       frames: Object.fromEntries(this.#frames),
     };
   }
 
+  /** Frames under way are finished; no other is begun. */
   pause(): void {
     if (this.#state !== 'running') return;
     this.#state = 'paused';
@@ -82,15 +81,13 @@ export class SeriesRun {
   resume(): void {
     if (this.#state !== 'paused') return;
     this.#state = 'running';
-    this.#paused = null;
-    this.#goOn();
+    this.#endPause();
     this.#tell();
   }
 
-  /** Frames that wait come next, in the order given. */
+  /** Frames that wait come next, in the order given; frames asked for before come after them. */
   prioritise(frameIds: readonly string[]): void {
-    const first = frameIds.filter((frameId) => this.#queue.includes(frameId));
-    this.#queue = [...first, ...this.#queue.filter((frameId) => !first.includes(frameId))];
+    this.#first = [...new Set([...frameIds, ...this.#first])];
     this.#tell();
   }
 
@@ -98,84 +95,74 @@ export class SeriesRun {
   async cancel(): Promise<void> {
     if (this.isOn) this.#state = 'cancelled';
     this.#stop.abort(cancelled());
-    this.#goOn();
+    this.#endPause();
     await this.#running;
   }
 
+  #endPause(): void {
+    this.#paused = null;
+    this.#goOn();
+  }
+
   async #run(): Promise<void> {
-    const { signal } = this.#stop;
     try {
-      await mkdir(this.outFolder, { recursive: true });
-      for (;;) {
-        if (this.#paused) await this.#paused;
-        const frameId = this.#queue.shift();
-        if (frameId === undefined || signal.aborted) break;
-        const startMs = performance.now();
-        await this.#paintNoting(frameId, signal);
-        this.#spentMs += performance.now() - startMs;
-        this.#finished += 1;
-      }
-      if (this.#state === 'running') this.#state = 'done';
-    } catch (failure) {
-      this.#state = 'failed';
-      this.#message = describeError(failure, '').body.error.message;
-    }
-    this.#tell();
-  }
-
-  async #paintNoting(frameId: string, signal: AbortSignal): Promise<void> {
-    this.#note(frameId, { state: 'painting' });
-    this.#tell();
-    try {
-      const path = await this.#paint(frameId, signal);
-      this.#note(frameId, { state: 'painted', fraction01: 1, path });
-    } catch (failure) {
-      if (signal.aborted) this.#note(frameId, { state: 'waiting', fraction01: 0 });
-      else this.#note(frameId, { state: 'failed', message: describeError(failure, '').body.error.message });
-    }
-    this.#tell();
-  }
-
-  async #paint(frameId: string, signal: AbortSignal): Promise<string> {
-    const { format, depth, quality } = this.series.settings.output;
-    const { parameters, printLongEdgeMm } = this.series.lookOf(frameId);
-    const found = await this.series.measureNow(frameId, signal);
-    const match = found?.match ?? noMatch;
-    const [engine, files] = await Promise.all([this.parts.loadEngine(), this.parts.loadFiles()]);
-    const photo = await files.readPhoto(this.series.pathOf(frameId), { signal });
-    const enginePhoto = await files.holdPhoto(engine, photo, { signal, toneMap: match.toneMap });
-    try {
-      const { pixels: _, ...file } = photo;
-      const base = frameId.slice(0, frameId.length - extname(frameId).length);
-      const isExact = format === 'png' || format === 'tiff';
-      const order = {
-        parameters: parametersWithMatch(parameters, match),
-        out: join(this.outFolder, `${base}${endings[format]}`),
-        format,
-        printLongEdgeMm,
-        ...(isExact ? { depth } : { quality }),
-      };
-      const delivered = await deliverPainting(engine, { enginePhoto, file }, order, {
-        signal,
-        onProgress: (fraction01) => {
-          this.#note(frameId, { fraction01 });
-          if (performance.now() - this.#toldMs > tellEveryMs) this.#tell();
+      const painter = new EnginePainter(await this.parts.loadEngine());
+      this.#framesAtOnce = Math.max(1, Math.min(painter.framesAtOnce, this.#frames.size));
+      await runSeries(painter, this.order, {
+        signal: this.#stop.signal,
+        mayGoOn: async () => {
+          // Paused anew before it woke up, it waits on.
+          while (this.#paused) await this.#paused;
         },
-        writePicture: files.writePicture,
-        place: placeNew,
+        chooseNext: (waiting) => this.#chooseNext(waiting),
+        onFrame: (name, change) => {
+          if ('result' in change) this.#noteResult(change.result);
+          else this.#noteProgress(name, change.fraction01);
+        },
       });
-      return delivered.path;
-    } finally {
-      enginePhoto.close();
+      if (this.isOn) this.#state = 'done';
+    } catch (failure) {
+      // A run that was stopped before it could begin was stopped all the same.
+      if (this.isOn) {
+        this.#state = 'failed';
+        this.#message = describeError(failure, '').body.error.message;
+      }
     }
+    this.#endPause();
+    // What was under way when the run ended is not painted.
+    for (const [name, { state }] of this.#frames)
+      if (state === 'painting') this.#note(name, { state: 'waiting', fraction01: 0 });
+    this.#tell();
   }
 
-  #note(frameId: string, change: Partial<RunFrame>): void {
-    this.#frames.set(frameId, { ...this.#frames.get(frameId)!, ...change });
+  #chooseNext(waiting: readonly PlannedFrame[]): PlannedFrame {
+    const byName = new Map(waiting.map((frame) => [frame.name, frame]));
+    const asked = this.#first.find((name) => byName.has(name));
+    const next = asked === undefined ? waiting[0] : byName.get(asked)!;
+    this.#note(next.name, { state: 'painting' });
+    this.#tell();
+    return next;
+  }
+
+  #noteProgress(name: string, fraction01: number): void {
+    this.#note(name, { fraction01 });
+    if (performance.now() - this.#toldMs > tellEveryMs) this.#tell();
+  }
+
+  #noteResult({ name, state, reason, output, remarks, milliseconds }: FrameResult): void {
+    if (state === 'painted') this.#paintedMs += milliseconds;
+    // Why a frame was painted is no news; what is to be said of its painting is.
+    const message = state === 'painted' ? remarks.join(' ') : reason;
+    this.#note(name, { state, message, path: output, fraction01: state === 'waiting' ? 0 : 1 });
+    this.#tell();
+  }
+
+  #note(name: string, change: Partial<RunFrame>): void {
+    this.#frames.set(name, { ...this.#frames.get(name)!, ...change });
   }
 
   #tell(): void {
     this.#toldMs = performance.now();
-    this.events.send('runProgress', { seriesId: this.series.seriesId, run: this.view() });
+    this.events.send('runProgress', { seriesId: this.seriesId, run: this.view() });
   }
 }

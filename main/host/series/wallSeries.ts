@@ -212,21 +212,6 @@ export class WallSeries {
     return this.#find(frameId).path;
   }
 
-  /** How a frame is matched, measured now where it was not; null where it is too large for that. */
-  async measureNow(frameId: string, signal: AbortSignal): Promise<MeasuredFrame | null> {
-    this.#lastPictureMs = Number.POSITIVE_INFINITY;
-    try {
-      const plan = this.#plan();
-      const order = plan.frames.find((candidate) => candidate.frameId === frameId);
-      return order ? await this.#measuring.measureNow(order, plan, signal) : null;
-    } catch (failure) {
-      if (failure instanceof TooLargeToMeasure) return null;
-      throw failure;
-    } finally {
-      this.#lastPictureMs = performance.now();
-    }
-  }
-
   /** Tells the window, before long, that there is something new. */
   tell(): void {
     if (this.#closing.signal.aborted) return;

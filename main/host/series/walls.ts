@@ -38,7 +38,7 @@ export class Walls {
       loadStores: () => this.parts.loadStores(),
       pictures: this.pictures,
       events: this.events,
-      isBusy: () => this.calls.count > 0,
+      isBusy: () => this.calls.count > 0 || [...this.#runs.values()].some((run) => run.isPainting),
       coming: (path) => this.parts.demo?.coming(path) ?? 0,
     });
     this.#byId.set(series.seriesId, series);
@@ -60,13 +60,19 @@ export class Walls {
     return this.#runs.get(seriesId) ?? null;
   }
 
-  /** @throws Refusal where one is under way already */
+  /** @throws Refusal where one is under way already, or the paintings would lie among the photos */
   async startRun(seriesId: string, outFolder: string): Promise<SeriesRun> {
     const series = this.find(seriesId);
+    const [{ SeriesRun: Run }, { runOrderOf }] = await Promise.all([
+      import('./seriesRun.ts'),
+      import('./runOrder.ts'),
+    ]);
+    const order = await runOrderOf(series, outFolder);
+    // Looked at last: another call may have begun one, or closed the series, meanwhile.
+    this.find(seriesId);
     if (this.#runs.get(seriesId)?.isOn)
       throw new Refusal('BadRequest', 'This series is being painted already.', 'Stop that run first.');
-    const { SeriesRun: Run } = await import('./seriesRun.ts');
-    const run = new Run(series, outFolder, this.parts, this.events);
+    const run = new Run(seriesId, order, this.parts, this.events);
     this.#runs.set(seriesId, run);
     return run;
   }
