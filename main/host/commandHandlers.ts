@@ -12,6 +12,7 @@ import { PaintCommands } from './paintCommands.ts';
 import { Refusal } from './refusal.ts';
 import type { RunningCall } from './runningCalls.ts';
 import { savePainting } from './savePainting.ts';
+import { ScreenTables } from './screenTables.ts';
 import { createRunHandlers } from './series/runHandlers.ts';
 import { createSeriesHandlers } from './series/seriesHandlers.ts';
 
@@ -28,13 +29,14 @@ export type CommandHandlers = {
 /** Binds the commands to what they share; each is described where the contract lists it. */
 export function createCommandHandlers(state: HostState): CommandHandlers {
   const { photos, memories, recents, grants, parts, calls } = state;
-  const paint = new PaintCommands(parts, calls);
+  const screenTables = new ScreenTables(() => parts.loadFiles());
+  const paint = new PaintCommands(parts, calls, screenTables);
   return {
     ...createMemoryHandlers(state),
     ...createSeriesHandlers(state),
     ...createRunHandlers(state),
     startSession: () => startSession(state),
-    openPhoto: ({ path }, call) => openPhoto(state, path, call),
+    openPhoto: ({ path }, call) => openPhoto(state, path, call, screenTables),
     awaitPhoto: async ({ photoId }, call) => {
       const photo = photos.find(photoId);
       await photo.whole(AbortSignal.any([call.signal, photo.closingSignal]));
@@ -46,6 +48,7 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
     },
     paintStrata: (input, call) => paint.paintStrata(photos.find(input.photoId), input, call),
     paintSmallPicture: (input, call) => paint.paintSmallPicture(photos.find(input.photoId), input, call),
+    readScreenTable: ({ photoId }) => paint.readScreenTable(photos.find(photoId)),
     savePainting: (input, call) =>
       savePainting(photos.find(input.photoId), input, call, {
         loadEngine: () => parts.loadEngine(),
@@ -121,8 +124,14 @@ async function startSession(state: HostState): Promise<Session> {
   };
 }
 
-async function openPhoto(state: HostState, given: string, call: RunningCall): Promise<OpenedPhoto> {
+async function openPhoto(
+  state: HostState,
+  given: string,
+  call: RunningCall,
+  screenTables: ScreenTables,
+): Promise<OpenedPhoto> {
   const path = state.grants.checkPhoto(given);
+  screenTables.begin(path);
   // Reading the bytes to know the photo by goes on beside the decoding: neither waits for the other.
   const fingerprint = fingerprintPhoto(path);
   fingerprint.catch(() => undefined);

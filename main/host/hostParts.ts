@@ -22,6 +22,8 @@ export interface HostFiles {
   readFacts(path: string): Promise<PhotoFacts | null>;
   /** A quick decode at 1/2^`level` of the size; null where the format has no short cut. */
   readQuick(path: string, facts: PhotoFacts, level: number): Promise<DecodedPhoto | null>;
+  /** The way of the photo's colours to the screen, for `throughTable`; null where there is nothing to convert. */
+  readScreenTable(path: string): Promise<Uint8Array | null>;
 }
 
 /** What a photo's header says; width and height upright. */

@@ -26,16 +26,22 @@ export function installedParts(options: {
     demo: findDemo(dataFolder()),
     loadEngine,
     loadFiles: once<HostFiles>(async () => {
-      const [{ readAnyPhoto, holdPhoto }, { writePicture }, quick, { removeAbandonedSpills }] =
-        await Promise.all([
-          import('../painting/holdPhoto.ts'),
-          import('../files/writePicture.ts'),
-          import('./quickPicture.ts'),
-          import('../files/spillFile.ts'),
-        ]);
+      const [
+        { readAnyPhoto, holdPhoto },
+        { writePicture },
+        quick,
+        { removeAbandonedSpills },
+        { readScreenTable },
+      ] = await Promise.all([
+        import('../painting/holdPhoto.ts'),
+        import('../files/writePicture.ts'),
+        import('./quickPicture.ts'),
+        import('../files/spillFile.ts'),
+        import('./readScreenTable.ts'),
+      ]);
       await removeAbandonedSpills();
       const { readFacts, readQuick } = quick;
-      return { readPhoto: readAnyPhoto, holdPhoto, writePicture, readFacts, readQuick };
+      return { readPhoto: readAnyPhoto, holdPhoto, writePicture, readFacts, readQuick, readScreenTable };
     }),
     loadStores: once<Stores>(async () => {
       const { openStores } = await import('../store/openStores.ts');

@@ -1,14 +1,16 @@
+import { throughTable } from '../../core/colour/colourTable.ts';
 import { encodeFrame } from '../../core/hostProtocol/frame.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import type { Rect, Strata } from '../../core/pixels/photo.ts';
 import type { Engine } from '../engine/engineApi.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
-import type { SmallPictureHeader, StrataHeader } from './api/hostCommands.ts';
+import type { ScreenTableHeader, SmallPictureHeader, StrataHeader } from './api/hostCommands.ts';
 import type { ComposeSmall } from './hostParts.ts';
 import { clipRegion, coarserRegion, parametersForReduced } from './levels.ts';
 import type { OpenPhoto } from './openPhoto.ts';
 import { Refusal } from './refusal.ts';
 import type { RunningCall, RunningCalls } from './runningCalls.ts';
+import type { ScreenTables } from './screenTables.ts';
 import { SmallPictureTurns } from './smallPictureTurns.ts';
 
 /** A rough picture has no more pixels than this: it must be there within a blink on two cores. */
@@ -21,7 +23,15 @@ export class PaintCommands {
   constructor(
     private readonly parts: { loadEngine(): Promise<Engine>; loadComposeSmall(): Promise<ComposeSmall> },
     private readonly calls: RunningCalls,
+    private readonly screenTables: ScreenTables,
   ) {}
+
+  /** See `HostCommands.readScreenTable`. */
+  async readScreenTable(photo: OpenPhoto): Promise<Uint8Array<ArrayBuffer>> {
+    const table = await this.screenTables.of(photo.path);
+    const header: ScreenTableHeader = { photoId: photo.photoId };
+    return encodeFrame(header, table ? { table } : {});
+  }
 
   /**
    * Paints a level, or a region of it, as a frame of strata.
@@ -89,7 +99,10 @@ export class PaintCommands {
           heightPx: strata.heightPx,
           source: source.kind,
         };
-        return encodeFrame(header, { rgba: await compose(strata, parameters) });
+        const rgba = await compose(strata, parameters);
+        const table = await this.screenTables.of(photo.path);
+        if (table) throughTable(rgba, table);
+        return encodeFrame(header, { rgba });
       }),
     );
   }

@@ -1,4 +1,5 @@
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
+import { compositor } from '../compositing/compositor.ts';
 import { host, isUnwanted, troubleOf } from '../host/host.ts';
 import { changeLook, endLook, startLook } from '../state/lookStore.ts';
 import { addNotice } from '../state/noticeStore.ts';
@@ -19,6 +20,10 @@ export async function openPhoto(path: string): Promise<void> {
     await tellWork();
     const photo = await host.call('openPhoto', { path }, { signal: abort.signal });
     if (abort.signal.aborted) return;
+    // Fetched before the first picture, which else would turn colour before one's eyes.
+    const screenTable = await screenTableOf(photo.photoId, abort.signal);
+    if (abort.signal.aborted) return;
+    compositor.setScreenTable(screenTable);
     openingStore.set({ path: null, trouble: null });
     setOnEasel(photo);
     roomStore.set('easel');
@@ -27,6 +32,13 @@ export async function openPhoto(path: string): Promise<void> {
     if (abort.signal.aborted || isUnwanted(error)) openingStore.set({ path: null, trouble: null });
     else openingStore.set({ path: null, trouble: troubleOf(error) });
   }
+}
+
+/** Photos whose way to the screen cannot be found are shown by their numbers. */
+async function screenTableOf(photoId: string, signal: AbortSignal): Promise<Uint8Array | null> {
+  const frame = await host.callForFrame('readScreenTable', { photoId }, { signal }).catch(() => null);
+  const table = frame?.planes.table;
+  return table instanceof Uint8Array ? table.slice() : null;
 }
 
 export function cancelOpening(): void {

@@ -1,3 +1,4 @@
+import { throughTable } from '../../core/colour/colourTable.ts';
 import {
   type ComposedPointer,
   compose,
@@ -15,13 +16,17 @@ import { ComposeHands } from './composeHands.ts';
 export interface Composer {
   /** Copies the strata into the kernels' memory. */
   hold(strata: Strata): HeldStrata;
+  /** Takes effect with the next composition. */
+  setScreenTable(table: Uint8Array | null): void;
 }
 
 export interface HeldStrata {
   /** Views of the kernels' memory, until `release`. */
   readonly strata: Strata;
-  /** Interleaved R, G, B, A, straight alpha; written into `target`. */
+  /** Interleaved R, G, B, A, straight alpha, in the canvas's colours; written into `target`. */
   compose(parameters: Parameters, target: Uint8ClampedArray): void;
+  /** Brings pixels in the photo's colours to the canvas's. */
+  toScreen(rgba: Uint8ClampedArray): void;
   release(): void;
 }
 
@@ -37,7 +42,16 @@ export async function createComposer(): Promise<Composer> {
   const hands = new ComposeHands((part) => composeHere(...part), { module, memory }, helperCount());
   // The kernel as composition knows it, done by all hands.
   const shared: Kernels = { ...kernels, compose: (...whole) => hands.compose(whole) };
-  return { hold: (strata) => holdStrata(shared, heap, strata) };
+  let screenTable: Uint8Array | null = null;
+  const toScreen = (rgba: Uint8ClampedArray) => {
+    if (screenTable) throughTable(rgba, screenTable);
+  };
+  return {
+    hold: (strata) => holdStrata(shared, heap, strata, toScreen),
+    setScreenTable(table) {
+      screenTable = table;
+    },
+  };
 }
 
 /** The window's own thread and the host want their share of the machine. */
@@ -45,7 +59,12 @@ function helperCount(): number {
   return Math.min(3, Math.max(0, navigator.hardwareConcurrency - 1));
 }
 
-function holdStrata(kernels: Kernels, heap: BlockHeap, strata: Strata): HeldStrata {
+function holdStrata(
+  kernels: Kernels,
+  heap: BlockHeap,
+  strata: Strata,
+  toScreen: (rgba: Uint8ClampedArray) => void,
+): HeldStrata {
   const count = strata.widthPx * strata.heightPx;
   const bytesPerSample = strata.ground.BYTES_PER_ELEMENT as 1 | 2;
   const groundPointer = heap.allocate(strata.ground.byteLength);
@@ -84,7 +103,9 @@ function holdStrata(kernels: Kernels, heap: BlockHeap, strata: Strata): HeldStra
       writeCompositionSettings(settings, parameters);
       compose(kernels, pointers, parameters, settingsPointer, count, composed);
       target.set(out);
+      toScreen(target);
     },
+    toScreen,
     release() {
       for (const pointer of [groundPointer, bodyPointer, linePointer, outPointer, settingsPointer])
         heap.free(pointer);

@@ -90,6 +90,11 @@ function take(message: ToCompositor, composer: Composer): void {
       dropSheet(message.side, message.slot);
       drawSoon();
       return;
+    case 'screen':
+      composer.setScreenTable(message.table);
+      for (const side of Object.values(sheets)) for (const sheet of Object.values(side)) sheet.colourAgain();
+      drawSoon();
+      return;
     case 'scene':
       scene = message.scene;
       drawSoon();

@@ -39,6 +39,11 @@ export class CompositorClient {
     this.send({ kind: 'dropPiece', side, slot });
   }
 
+  /** For all pieces of the photo on the easel, those that are held and those that come. */
+  setScreenTable(table: Uint8Array | null): void {
+    this.send({ kind: 'screen', table });
+  }
+
   show(scene: Omit<Scene, 'id'>): number {
     const id = this.nextSceneId++;
     this.sentAtMs.set(id, performance.now());

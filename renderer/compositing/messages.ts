@@ -43,6 +43,8 @@ export type ToCompositor =
   | { kind: 'start'; picture: OffscreenCanvas; section: OffscreenCanvas }
   | { kind: 'piece'; side: SceneSide; slot: PieceSlot; piece: PaintedPiece }
   | { kind: 'dropPiece'; side: SceneSide; slot: PieceSlot }
+  /** How the photo's colours come to the canvas; null for numbers as they are. */
+  | { kind: 'screen'; table: Uint8Array | null }
   | { kind: 'scene'; scene: Scene };
 
 export type FromCompositor =

@@ -65,10 +65,18 @@ export class PictureSheet {
     }
     if (strip.key !== key) {
       writeStrip(this.held.strata, stratum, place, inkColour, strip.pixels.data);
+      if (isInPhotoColours(stratum)) this.held.toScreen(strip.pixels.data);
       strip.context.putImageData(strip.pixels, 0, 0);
       strip.key = key;
     }
     return strip.canvas;
+  }
+
+  /** The way of colours to the screen has changed: everything is made again when it is next shown. */
+  colourAgain(): void {
+    this.painted.forget();
+    this.bare?.forget();
+    for (const strip of this.strips.values()) strip.key = '';
   }
 
   /** Gives its strips away as so much paper to write on. */
@@ -97,6 +105,11 @@ export class PictureSheet {
     for (const strip of this.strips.values()) strip.giveBack();
     this.held.release();
   }
+}
+
+/** Ink is shown on a paper of the band's own, relief as grey light. */
+function isInPhotoColours(stratum: Stratum): boolean {
+  return stratum === 'ground' || stratum === 'body';
 }
 
 /** A band's pixels, with the key of what is written on it. */
@@ -159,6 +172,11 @@ class ComposedPicture {
     this.surface.canvas.width = 0;
     this.surface.canvas.height = 0;
     this.surface = null;
+  }
+
+  /** Composes again even where no value has changed. */
+  forget(): void {
+    this.composedFor = '';
   }
 
   compose(parameters: Parameters): boolean {

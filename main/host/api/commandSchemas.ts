@@ -57,6 +57,7 @@ export const commandSchemas = {
     view: z.string().min(1).max(40).optional(),
     printLongEdgeMm,
   }),
+  readScreenTable: z.strictObject({ photoId }),
   savePainting: z.strictObject({
     photoId,
     parameters,

@@ -24,6 +24,11 @@ export interface HostCommands extends MemoryCommands, SeriesCommands, RunCommand
   paintStrata: { input: PaintStrataInput; frame: StrataHeader };
   /** Paints and composes a small picture: plane `rgba`, 8 bits. For presets, states and recents. */
   paintSmallPicture: { input: PaintSmallPictureInput; frame: SmallPictureHeader };
+  /**
+   * The way of a photo's colours to the canvas: plane `table` for `throughTable`, absent where numbers are shown as they
+   * are. Small pictures are converted already.
+   */
+  readScreenTable: { input: { photoId: string }; frame: ScreenTableHeader };
   /** Paints at full resolution and writes a file; progress comes as events under the call's id. */
   savePainting: { input: SavePaintingInput; output: SavedPainting };
   /** Folders and photos in a folder; the home folder unless one is named that an earlier answer showed. */
@@ -165,6 +170,10 @@ export interface SmallPictureHeader {
   widthPx: number;
   heightPx: number;
   source: 'quick' | 'full';
+}
+
+export interface ScreenTableHeader {
+  photoId: string;
 }
 
 export type OutputFormatName = 'jpeg' | 'png' | 'tiff' | 'webp';

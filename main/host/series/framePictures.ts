@@ -1,3 +1,4 @@
+import { throughTable } from '../../../core/colour/colourTable.ts';
 import { encodeFrame } from '../../../core/hostProtocol/frame.ts';
 import type { Parameters } from '../../../core/parameters/table.ts';
 import type { DecodedPhoto } from '../../../core/pixels/photo.ts';
@@ -8,6 +9,7 @@ import type { SpilledPhoto } from '../../files/spillPhoto.ts';
 import type { FramePictureHeader } from '../api/seriesCommands.ts';
 import type { HostParts, PhotoFacts } from '../hostParts.ts';
 import { parametersForReduced } from '../levels.ts';
+import { ScreenTables } from '../screenTables.ts';
 import { SmallPictureTurns } from '../smallPictureTurns.ts';
 import { PictureCache } from './pictureCache.ts';
 
@@ -42,7 +44,11 @@ export class FramePictures {
   readonly #turns = new SmallPictureTurns(2);
   readonly #palettes = new Map<string, Promise<Palette>>();
 
-  constructor(private readonly parts: Pick<HostParts, 'loadEngine' | 'loadFiles' | 'loadComposeSmall'>) {}
+  readonly #screenTables: ScreenTables;
+
+  constructor(private readonly parts: Pick<HostParts, 'loadEngine' | 'loadFiles' | 'loadComposeSmall'>) {
+    this.#screenTables = new ScreenTables(() => parts.loadFiles());
+  }
 
   /** Nothing is being painted or waits for it. */
   get isIdle(): boolean {
@@ -106,7 +112,10 @@ export class FramePictures {
       const { widthPx, heightPx } = strata;
       const { frameId, pictureKey } = order;
       const header: FramePictureHeader = { frameId, widthPx, heightPx, rough, pictureKey };
-      return encodeFrame(header, { rgba: await compose(strata, parameters) });
+      const rgba = await compose(strata, parameters);
+      const table = await this.#screenTables.of(order.path);
+      if (table) throughTable(rgba, table);
+      return encodeFrame(header, { rgba });
     } finally {
       photo.close();
     }

@@ -1,0 +1,31 @@
+import { createHash } from 'node:crypto';
+import { wideProfile } from '../../core/colour/matrixProfile.ts';
+import { tableForScreen } from '../colour/colourThread.ts';
+import { planColours } from '../files/colourPlan.ts';
+import { openPhoto, readHeader } from '../files/photoHeader.ts';
+
+/** Photos of one camera have one profile: its table is made once. */
+const tables = new Map<string, Promise<Uint8Array | null>>();
+const mostTables = 8;
+
+/**
+ * The way of a photo's colours to the screen's sRGB, found from its header before it is decoded.
+ * @returns a table for `throughTable`; null where there is nothing to convert, or the profile cannot be used
+ */
+export async function readScreenTable(path: string): Promise<Uint8Array | null> {
+  const { format } = await openPhoto(path, { wholeFile: false });
+  const header = await readHeader(path, { format, source: path });
+  const { through, iccProfile } = planColours(header.metadata);
+  const shown = through ? wideProfile() : iccProfile;
+  if (!shown) return null;
+  const key = createHash('sha256').update(shown).digest('base64');
+  let table = tables.get(key);
+  if (!table) {
+    // A profile that the colour engine refuses: the numbers are shown as they are.
+    table = tableForScreen(shown).catch(() => null);
+    tables.set(key, table);
+    const [oldest] = tables.keys();
+    if (tables.size > mostTables) tables.delete(oldest);
+  }
+  return table;
+}
