@@ -1,5 +1,5 @@
 import { readFile } from 'node:fs/promises';
-import { presetWords } from '../../core/proof/captionWords.ts';
+import { figureWords, presetWords } from '../../core/proof/captionWords.ts';
 import type { ProofCaption } from '../../core/proof/proofPage.ts';
 import { recipeFormat } from '../../core/recipes/documentFormats.ts';
 import { openDocument } from '../../core/recipes/openDocument.ts';
@@ -10,9 +10,12 @@ import {
   currentState,
   hasUnkeptChanges,
 } from '../../core/recipes/recipeHistory.ts';
+import { type FrameFigures, figureTable } from '../../core/series/frameFigures.ts';
 import { FileError } from '../files/fileError.ts';
 import { readPhotoSize } from '../files/photoHeader.ts';
 import { listFolder } from '../host/listFolder.ts';
+import { readRunLogs } from '../series/runLog.ts';
+import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import { recipeBeside } from '../store/recipePlaces.ts';
 import type { ProofPainter } from './proofPainter.ts';
 import type { ProofSource } from './proofSource.ts';
@@ -29,17 +32,18 @@ const earlierSheet = /\.proof(-\d+)*\.png$/i;
 
 /**
  * The pictures of a folder in natural order of their names. A photo with a recipe beside it is shown as the recipe
- * paints it; every other picture as it is.
+ * paints it; every other picture as it is, with what the log of a run says of it.
  * @throws FileError where the folder cannot be read or holds no picture
  */
 export async function folderSources(folder: string, painter: ProofPainter): Promise<FolderSources> {
-  const listing = await listFolder(folder);
+  const [listing, logged] = await Promise.all([listFolder(folder), loggedPaintings(folder)]);
   const remarks: string[] = [];
   const sources: ProofSource[] = [];
   for (const { name, path } of listing.photos) {
     if (earlierSheet.test(name)) continue;
     const recipe = await recipeOf(path, remarks);
-    sources.push(recipe ? await paintedSource(path, name, recipe, painter) : plainSource(path, name));
+    if (recipe) sources.push(await paintedSource(path, name, recipe, painter));
+    else sources.push({ picture: { path }, caption: await loggedCaption(path, name, logged.get(name)) });
   }
   if (sources.length === 0)
     throw new FileError(
@@ -51,8 +55,32 @@ export async function folderSources(folder: string, painter: ProofPainter): Prom
   return { sources, remarks };
 }
 
-function plainSource(path: string, name: string): ProofSource {
-  return { picture: { path }, caption: { name, preset: '', figures: [], note: '' } };
+type LoggedPainting = Extract<Awaited<ReturnType<typeof readRunLogs>>[number], { kind: 'painted' }>;
+
+/** What runs into this folder painted last, by file name. */
+async function loggedPaintings(folder: string): Promise<Map<string, LoggedPainting>> {
+  const entries = await readRunLogs(folder);
+  return new Map(entries.flatMap((entry) => (entry.kind === 'painted' ? [[entry.output, entry]] : [])));
+}
+
+/** The log speaks of the file it saw: one that has changed since gets its name alone. */
+async function loggedCaption(path: string, name: string, logged?: LoggedPainting): Promise<ProofCaption> {
+  const plain: ProofCaption = { name, preset: '', figures: [], note: '' };
+  const file = logged && (await fingerprintPhoto(path).catch(() => null));
+  if (!logged || file?.sha256 !== logged.sha256) return plain;
+  const { preset, remarks } = logged;
+  const after = (logged.figures as { after?: unknown } | null | undefined)?.after;
+  return {
+    name,
+    preset: typeof preset === 'string' ? preset : '',
+    figures: areFigures(after) ? [figureWords(after)] : [],
+    note: Array.isArray(remarks) ? remarks.filter((remark) => typeof remark === 'string').join(' ') : '',
+  };
+}
+
+function areFigures(found: unknown): found is FrameFigures {
+  const figures = found as Record<string, unknown> | null | undefined;
+  return Object.keys(figureTable).every((key) => Number.isFinite(figures?.[key]));
 }
 
 async function paintedSource(
