@@ -75,8 +75,11 @@ async function withPart(
   }
 }
 
-/** A hard link fails where the name is taken, which a rename does not. */
-async function placeUnlessTaken(part: string, path: string): Promise<boolean> {
+/**
+ * Gives a finished file its name, but takes nobody's: a hard link fails where the name is taken, which a rename does
+ * not. The part may still be there afterwards.
+ */
+export async function placeUnlessTaken(part: string, path: string): Promise<boolean> {
   try {
     await link(part, path);
     return true;

@@ -8,6 +8,7 @@ import {
   parametersWithMatch,
 } from '../../core/series/frameMatch.ts';
 import type { Engine } from '../engine/engineApi.ts';
+import { assertFormatHolds } from '../files/outputFormat.ts';
 import { SpilledPixels } from '../files/spilledPixels.ts';
 import { writePicture } from '../files/writePicture.ts';
 import { type DeliveredPainting, deliverPainting } from '../painting/deliverPainting.ts';
@@ -19,7 +20,8 @@ import { type LeadMeasures, matchPhoto, measureLead } from './matchPhoto.ts';
 /** What one frame is painted by. */
 export interface FrameOrder {
   photoPath: string;
-  out: string;
+  /** Where the painting is written, whatever its name will be. */
+  part: string;
   parameters: Parameters;
   output: OutputSettings;
   match: { lead: LeadMeasures; amount01: number; parts: MatchParts } | null;
@@ -36,23 +38,24 @@ export interface FrameOptions {
   onProgress?: (fraction01: number) => void;
 }
 
-/** Reads, matches, paints and writes one frame. @throws FileError naming the photo or the output */
+/**
+ * Reads, matches, paints and writes one frame.
+ * @throws FileError naming the photo or the part
+ */
 export async function paintFrame(
   engine: Engine,
-  { photoPath, out, parameters, output, match: asked }: FrameOrder,
+  { photoPath, part, parameters, output, match: asked }: FrameOrder,
   { signal, onProgress }: FrameOptions = {},
 ): Promise<PaintedFrame> {
   const { printLongEdgeMm, format, depth, quality, layers, metadata } = output;
   const print = printOrderOf(output);
-  const photo = await prepareForPrint(
-    await readAnyPhoto(photoPath, { signal }),
-    { printLongEdgeMm, ...print },
-    signal,
-  );
+  const photo = await readForPrint(photoPath, output, signal);
   const { pixels } = photo;
   let matched: Awaited<ReturnType<typeof matchPhoto>> | null = null;
   const remarks: string[] = [];
   try {
+    // The painting will be as transparent as the photo: better said now than when it is painted.
+    if (format === 'jpeg') await assertFormatHolds(part, photo, signal, 'jpeg');
     if (asked && pixels instanceof SpilledPixels) remarks.push('Too large to be matched: painted as it is.');
     else if (asked) {
       const { lead, amount01, parts } = asked;
@@ -69,7 +72,7 @@ export async function paintFrame(
     const { pixels: _, ...file } = photo;
     const order = {
       parameters: parametersWithMatch(parameters, match),
-      out,
+      out: part,
       format,
       depth,
       quality,
@@ -82,6 +85,12 @@ export async function paintFrame(
       signal,
       onProgress,
       writePicture,
+      // The picture comes first, its strata after it.
+      place: async (out, write) => {
+        const at = out === part ? part : `${part}.strata`;
+        await write(at);
+        return at;
+      },
     });
     const figures = matched && { before: matched.before, after: matched.after };
     return { ...delivered, match, figures, remarks: [...remarks, ...delivered.remarks] };
@@ -99,8 +108,7 @@ export async function measureLeadPhoto(
   signal?: AbortSignal,
 ): Promise<LeadMeasures | null> {
   const { printLongEdgeMm } = output;
-  const size = { printLongEdgeMm, ...printOrderOf(output) };
-  const photo = await prepareForPrint(await readAnyPhoto(photoPath, { signal }), size, signal);
+  const photo = await readForPrint(photoPath, output, signal);
   const { pixels } = photo;
   if (pixels instanceof SpilledPixels) {
     letGo(photo);
@@ -112,5 +120,17 @@ export async function measureLeadPhoto(
     return await measureLead(engine, decoded, held.noiseFloor, parameters, { printLongEdgeMm, signal });
   } finally {
     held.close();
+  }
+}
+
+/** Reads a photo and brings it to the print's own pixels where that is asked for. */
+async function readForPrint(photoPath: string, output: OutputSettings, signal?: AbortSignal) {
+  const photo = await readAnyPhoto(photoPath, { signal });
+  try {
+    const { printLongEdgeMm } = output;
+    return await prepareForPrint(photo, { printLongEdgeMm, ...printOrderOf(output) }, signal);
+  } catch (failure) {
+    letGo(photo);
+    throw failure;
   }
 }

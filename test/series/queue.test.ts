@@ -6,7 +6,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { setTimeout as pause } from 'node:timers/promises';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { readQueueAddress } from '../../main/series/seriesQueue.ts';
+import { readQueueAddress } from '../../main/series/queueAddress.ts';
 import { photographs } from '../fixtures/photographs.ts';
 import { hashesOf, startProgram, writeFrames } from './runProgram.ts';
 

@@ -3,8 +3,9 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import sharp from 'sharp';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { framesOfShard } from '../../core/series/shards.ts';
 import { RunLog, readRunLogs, runLogName } from '../../main/series/runLog.ts';
-import { framesOfShard, planSeries } from '../../main/series/seriesPlan.ts';
+import { planSeries } from '../../main/series/seriesPlan.ts';
 import { photographs } from '../fixtures/photographs.ts';
 import { holdToUnbroken } from './killedRun.ts';
 import { hashesOf, startProgram, writeFrames } from './runProgram.ts';
@@ -34,7 +35,8 @@ describe('oxgall series', () => {
     const hashes = await hashesOf(join(folder, 'out'));
     for (const frame of told.frames) {
       expect(frame.sha256).toBe(hashes[frame.output.split('/').at(-1)]);
-      expect(frame.figures === null).toBe(frame.name === told.lead);
+      expect(frame.figures.after.lineCoverage01).toBeGreaterThan(0);
+      if (frame.name === told.lead) expect(frame.figures.after).toEqual(frame.figures.before);
     }
     // The lead is painted as it would be alone, to the bit.
     const alone = await runJson(
@@ -61,16 +63,22 @@ describe('oxgall series', () => {
     const other = (await again('--set', 'body.hold=0.5')).told;
     expect(other).toMatchObject({ painted: 6, kept: 0 });
     expect(other.frames[0].reason).toMatch(/look/);
-    expect((await readdir(join(folder, 'out'))).length).toBe(7);
+    expect((await readFile(join(folder, 'out', 'plate 3.changed.png'), 'utf8')).toString()).toBe(
+      'by another hand',
+    );
+    expect((await readdir(join(folder, 'out'))).length).toBe(8);
   });
 
   it('is the same by shards as in one run', async () => {
     const photos = join(folder, 'photos');
     await runJson('series', photos, '--out', join(folder, 'one'));
+    const painted: string[] = [];
     for (const shard of ['1/3', '2/3', '3/3']) {
       const part = await runJson('series', photos, '--out', join(folder, 'parts'), '--shard', shard);
-      expect(part.told.painted).toBe(2);
+      painted.push(...part.told.frames.map(({ name }: { name: string }) => name));
+      expect(part.told.painted).toBe(part.told.frames.length);
     }
+    expect(painted.sort()).toEqual([...names].sort());
     expect(await hashesOf(join(folder, 'parts'))).toEqual(await hashesOf(join(folder, 'one')));
   });
 

@@ -1,5 +1,6 @@
-import { EnginePainter } from '../../series/framePainter.ts';
-import { type FrameResult, type RunOrder, runSeries } from '../../series/runSeries.ts';
+import { EnginePainter } from '../../series/enginePainter.ts';
+import type { FrameResult } from '../../series/frameResult.ts';
+import { type RunOrder, runSeries } from '../../series/runSeries.ts';
 import type { PlannedFrame } from '../../series/seriesPlan.ts';
 import type { RunFrame, RunView } from '../api/runCommands.ts';
 import type { EventHub } from '../eventHub.ts';
@@ -108,7 +109,7 @@ export class SeriesRun {
     try {
       const painter = new EnginePainter(await this.parts.loadEngine());
       this.#framesAtOnce = Math.max(1, Math.min(painter.framesAtOnce, this.#frames.size));
-      await runSeries(painter, this.order, {
+      const { stoppedBy } = await runSeries(painter, this.order, {
         signal: this.#stop.signal,
         mayGoOn: async () => {
           // Paused anew before it woke up, it waits on.
@@ -120,6 +121,7 @@ export class SeriesRun {
           else this.#noteProgress(name, change.fraction01);
         },
       });
+      if (stoppedBy) throw stoppedBy;
       if (this.isOn) this.#state = 'done';
     } catch (failure) {
       // A run that was stopped before it could begin was stopped all the same.
