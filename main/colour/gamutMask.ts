@@ -18,9 +18,10 @@ export function gamutMask(
   const count = rgb.length / 3;
   const asked = new Uint16Array(rgb.length);
   const shown = new Uint16Array(rgb.length);
-  const toLab = engine.transform(from, 'Lab', 'relative', false);
-  const toPrint = engine.transform(from, print, 'relative', false);
-  const fromPrint = engine.transform(print, 'Lab', 'relative', false);
+  // With black-point compensation, as pictures are delivered: the black of paper and ink counts as black.
+  const toLab = engine.transform(from, 'Lab', 'relative', true);
+  const toPrint = engine.transform(from, print, 'relative', true);
+  const fromPrint = engine.transform(print, 'Lab', 'relative', true);
   try {
     toLab.run(rgb, asked);
     const channels = toPrint.to === 'CMYK' ? 4 : toPrint.to === 'GRAY' ? 1 : 3;

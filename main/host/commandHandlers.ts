@@ -48,6 +48,11 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
     },
     paintStrata: (input, call) => paint.paintStrata(photos.find(input.photoId), input, call),
     paintSmallPicture: (input, call) => paint.paintSmallPicture(photos.find(input.photoId), input, call),
+    markOutOfGamut: (input, call) => {
+      // A profile is chosen as photos are: by dialog, or from a folder that was shown.
+      if (typeof input.profile === 'object') grants.checkPhoto(input.profile.file);
+      return paint.markOutOfGamut(photos.find(input.photoId), input, call);
+    },
     readScreenTable: ({ photoId }) => paint.readScreenTable(photos.find(photoId)),
     savePainting: (input, call) =>
       savePainting(photos.find(input.photoId), input, call, {

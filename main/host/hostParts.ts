@@ -24,7 +24,12 @@ export interface HostFiles {
   readQuick(path: string, facts: PhotoFacts, level: number): Promise<DecodedPhoto | null>;
   /** The way of the photo's colours to the screen, for `throughTable`; null where there is nothing to convert. */
   readScreenTable(path: string): Promise<Uint8Array | null>;
+  /** Marks the pixels of a small painted picture that a printing condition cannot show: one byte each. */
+  markOutOfGamut(path: string, rgba: Uint8Array, profile: PrintProfile): Promise<Uint8Array>;
 }
+
+/** A profile to print for. */
+export type PrintProfile = 'keep' | 'srgb' | 'p3' | { file: string };
 
 /** What a photo's header says; width and height upright. */
 export interface PhotoFacts {

@@ -32,16 +32,26 @@ export function installedParts(options: {
         quick,
         { removeAbandonedSpills },
         { readScreenTable },
+        { markOutOfGamut },
       ] = await Promise.all([
         import('../painting/holdPhoto.ts'),
         import('../files/writePicture.ts'),
         import('./quickPicture.ts'),
         import('../files/spillFile.ts'),
         import('./readScreenTable.ts'),
+        import('./markOutOfGamut.ts'),
       ]);
       await removeAbandonedSpills();
       const { readFacts, readQuick } = quick;
-      return { readPhoto: readAnyPhoto, holdPhoto, writePicture, readFacts, readQuick, readScreenTable };
+      return {
+        readPhoto: readAnyPhoto,
+        holdPhoto,
+        writePicture,
+        readFacts,
+        readQuick,
+        readScreenTable,
+        markOutOfGamut,
+      };
     }),
     loadStores: once<Stores>(async () => {
       const { openStores } = await import('../store/openStores.ts');

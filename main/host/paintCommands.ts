@@ -2,10 +2,9 @@ import { throughTable } from '../../core/colour/colourTable.ts';
 import { encodeFrame } from '../../core/hostProtocol/frame.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import type { Rect, Strata } from '../../core/pixels/photo.ts';
-import type { Engine } from '../engine/engineApi.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
 import type { ScreenTableHeader, SmallPictureHeader, StrataHeader } from './api/hostCommands.ts';
-import type { ComposeSmall } from './hostParts.ts';
+import type { HostParts } from './hostParts.ts';
 import { clipRegion, coarserRegion, parametersForReduced } from './levels.ts';
 import type { OpenPhoto } from './openPhoto.ts';
 import { Refusal } from './refusal.ts';
@@ -21,7 +20,7 @@ export class PaintCommands {
   readonly #turns = new SmallPictureTurns();
 
   constructor(
-    private readonly parts: { loadEngine(): Promise<Engine>; loadComposeSmall(): Promise<ComposeSmall> },
+    private readonly parts: Pick<HostParts, 'loadEngine' | 'loadFiles' | 'loadComposeSmall'>,
     private readonly calls: RunningCalls,
     private readonly screenTables: ScreenTables,
   ) {}
@@ -75,13 +74,40 @@ export class PaintCommands {
   }
 
   /** Paints and composes a picture of a few hundred pixels; such pictures wait while a view is painted. */
-  async paintSmallPicture(
+  paintSmallPicture(
     photo: OpenPhoto,
     input: CheckedInput<'paintSmallPicture'>,
     call: RunningCall,
   ): Promise<Uint8Array<ArrayBuffer>> {
-    const parameters = parseParameters(input.parameters);
     if (input.view) this.calls.takePlace(`small ${photo.photoId} ${input.view}`, call);
+    return this.#paintSmall(photo, input, call, async (header, rgba) => {
+      const table = await this.screenTables.of(photo.path);
+      if (table) throughTable(rgba, table);
+      return encodeFrame(header, { rgba });
+    });
+  }
+
+  /** See `HostCommands.markOutOfGamut`. @param profile a file's path was checked */
+  markOutOfGamut(
+    photo: OpenPhoto,
+    input: CheckedInput<'markOutOfGamut'>,
+    call: RunningCall,
+  ): Promise<Uint8Array<ArrayBuffer>> {
+    this.calls.takePlace(`gamut ${photo.photoId}`, call);
+    return this.#paintSmall(photo, input, call, async (header, rgba) => {
+      const files = await this.parts.loadFiles();
+      return encodeFrame(header, { outside: await files.markOutOfGamut(photo.path, rgba, input.profile) });
+    });
+  }
+
+  /** @param use takes the composed picture in the photo's own colours */
+  async #paintSmall(
+    photo: OpenPhoto,
+    input: Omit<CheckedInput<'paintSmallPicture'>, 'view'>,
+    call: RunningCall,
+    use: (header: SmallPictureHeader, rgba: Uint8Array) => Promise<Uint8Array<ArrayBuffer>>,
+  ): Promise<Uint8Array<ArrayBuffer>> {
+    const parameters = parseParameters(input.parameters);
     const [engine, compose] = await Promise.all([this.parts.loadEngine(), this.parts.loadComposeSmall()]);
     const level = levelForLongEdge(photo, input.longEdgePx);
     return this.#turns.paintSmall(call.signal, () =>
@@ -93,16 +119,9 @@ export class PaintCommands {
           { signal, printLongEdgeMm: input.printLongEdgeMm },
         );
         signal.throwIfAborted();
-        const header: SmallPictureHeader = {
-          photoId: photo.photoId,
-          widthPx: strata.widthPx,
-          heightPx: strata.heightPx,
-          source: source.kind,
-        };
-        const rgba = await compose(strata, parameters);
-        const table = await this.screenTables.of(photo.path);
-        if (table) throughTable(rgba, table);
-        return encodeFrame(header, { rgba });
+        const { widthPx, heightPx } = strata;
+        const header = { photoId: photo.photoId, widthPx, heightPx, source: source.kind };
+        return use(header, await compose(strata, parameters));
       }),
     );
   }

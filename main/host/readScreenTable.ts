@@ -13,10 +13,7 @@ const mostTables = 8;
  * @returns a table for `throughTable`; null where there is nothing to convert, or the profile cannot be used
  */
 export async function readScreenTable(path: string): Promise<Uint8Array | null> {
-  const { format } = await openPhoto(path, { wholeFile: false });
-  const header = await readHeader(path, { format, source: path });
-  const { through, iccProfile } = planColours(header.metadata);
-  const shown = through ? wideProfile() : iccProfile;
+  const shown = await profileOfPainting(path);
   if (!shown) return null;
   const key = createHash('sha256').update(shown).digest('base64');
   let table = tables.get(key);
@@ -28,4 +25,12 @@ export async function readScreenTable(path: string): Promise<Uint8Array | null> 
     if (tables.size > mostTables) tables.delete(oldest);
   }
   return table;
+}
+
+/** What the numbers of a painted photo mean; undefined where it carries no profile of its own. */
+export async function profileOfPainting(path: string): Promise<Uint8Array | undefined> {
+  const { format } = await openPhoto(path, { wholeFile: false });
+  const header = await readHeader(path, { format, source: path });
+  const { through, iccProfile } = planColours(header.metadata);
+  return through ? wideProfile() : iccProfile;
 }

@@ -73,7 +73,7 @@ export async function planFinish(
 ): Promise<FinishPlan> {
   const { print = {} } = order;
   const own = photo.iccProfile ?? srgbProfile();
-  const target = await readTarget(print.profile ?? 'keep', own);
+  const target = await readPrintProfile(print.profile ?? 'keep', own);
   const space = target.space;
   if (space === 'CMYK' && order.format !== 'tiff' && order.format !== 'jpeg')
     throw new FileError(out, 'cannot hold the inks of a CMYK profile', 'Choose TIFF or JPEG.');
@@ -111,7 +111,12 @@ export async function planFinish(
   };
 }
 
-async function readTarget(
+/**
+ * The profile that a file is made for.
+ * @param own what the photo's numbers mean
+ * @throws FileError where a file is no profile for RGB or CMYK
+ */
+export async function readPrintProfile(
   profile: NonNullable<PrintOrder['profile']>,
   own: Uint8Array,
 ): Promise<{ profile: Uint8Array; space: 'RGB' | 'CMYK' }> {

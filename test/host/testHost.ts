@@ -8,6 +8,7 @@ import { writePicture } from '../../main/files/writePicture.ts';
 import type { HostCommands } from '../../main/host/api/hostCommands.ts';
 import { createHost, type Host } from '../../main/host/host.ts';
 import type { HostParts } from '../../main/host/hostParts.ts';
+import { markOutOfGamut } from '../../main/host/markOutOfGamut.ts';
 import { readFacts, readQuick } from '../../main/host/quickPicture.ts';
 import { readScreenTable } from '../../main/host/readScreenTable.ts';
 import { holdPhoto } from '../../main/painting/holdPhoto.ts';
@@ -40,7 +41,15 @@ export async function makeTestHost(changes: Partial<HostParts> = {}): Promise<Te
     appVersion: '0.0.0-test',
     workers: 1,
     loadEngine: async () => engine,
-    loadFiles: async () => ({ readPhoto, holdPhoto, writePicture, readFacts, readQuick, readScreenTable }),
+    loadFiles: async () => ({
+      readPhoto,
+      holdPhoto,
+      writePicture,
+      readFacts,
+      readQuick,
+      readScreenTable,
+      markOutOfGamut,
+    }),
     loadStores: async () => openStores(join(folder, 'data')),
     loadComposeSmall: async () => async (strata) => {
       const rgba = new Uint8Array(strata.widthPx * strata.heightPx * 4).fill(255);

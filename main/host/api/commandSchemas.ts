@@ -57,6 +57,13 @@ export const commandSchemas = {
     view: z.string().min(1).max(40).optional(),
     printLongEdgeMm,
   }),
+  markOutOfGamut: z.strictObject({
+    photoId,
+    parameters,
+    longEdgePx: z.int().min(16).max(512),
+    profile: z.union([z.enum(['keep', 'srgb', 'p3']), z.strictObject({ file: path })]),
+    printLongEdgeMm,
+  }),
   readScreenTable: z.strictObject({ photoId }),
   savePainting: z.strictObject({
     photoId,

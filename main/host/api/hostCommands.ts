@@ -25,6 +25,11 @@ export interface HostCommands extends MemoryCommands, SeriesCommands, RunCommand
   /** Paints and composes a small picture: plane `rgba`, 8 bits. For presets, states and recents. */
   paintSmallPicture: { input: PaintSmallPictureInput; frame: SmallPictureHeader };
   /**
+   * Paints a small picture and marks what a file for that profile cannot show: plane `outside`, one byte a pixel, 1 where
+   * printing moves the colour by more than a CIE 1976 difference of 4.
+   */
+  markOutOfGamut: { input: MarkOutOfGamutInput; frame: SmallPictureHeader };
+  /**
    * The way of a photo's colours to the canvas: plane `table` for `throughTable`, absent where numbers are shown as they
    * are. Small pictures are converted already.
    */
@@ -170,6 +175,14 @@ export interface SmallPictureHeader {
   widthPx: number;
   heightPx: number;
   source: 'quick' | 'full';
+}
+
+export interface MarkOutOfGamutInput {
+  photoId: string;
+  parameters: Partial<Parameters>;
+  longEdgePx: number;
+  profile: 'keep' | 'srgb' | 'p3' | { file: string };
+  printLongEdgeMm?: number;
 }
 
 export interface ScreenTableHeader {
