@@ -1,9 +1,11 @@
 import { basename, dirname, extname, join } from 'node:path';
 import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
+import { currentHistory, currentState } from '../../core/recipes/recipeHistory.ts';
 import type { Engine } from '../engine/engineApi.ts';
 import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
 import { deliverPainting } from '../painting/deliverPainting.ts';
+import { describePainting } from '../painting/describePainting.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
 import type { OutputFormatName, SavedPainting } from './api/hostCommands.ts';
@@ -60,6 +62,7 @@ export async function savePainting(
   report(0, 'opening');
   const [engine, files] = await Promise.all([parts.loadEngine(), parts.loadFiles()]);
   const { file } = await photo.whole(call.signal);
+  const { recipe } = await parts.memories.view(photo.photoId);
   const order = {
     parameters,
     out: target,
@@ -67,6 +70,8 @@ export async function savePainting(
     depth: input.depth,
     quality: input.quality,
     printLongEdgeMm: input.printLongEdgeMm ?? defaultPrintLongEdgeMm,
+    metadata: recipe.work.output.metadata,
+    ...describePainting(currentHistory(recipe).title, currentState(recipe).number),
   };
   const delivered = await photo.paint(0, call.signal, ({ enginePhoto }, signal) =>
     deliverPainting(engine, { enginePhoto, file }, order, {

@@ -5,6 +5,7 @@ import type { Engine, EnginePhoto, StageTimes } from '../engine/engineApi.ts';
 import { type LayersKind, layersBeside, layersDepth, writeLayers } from '../files/layers/writeLayers.ts';
 import { assertSizeFits, outputDepth } from '../files/outputFormat.ts';
 import type { AnyPictureFile, OutputFormat, PhotoFile } from '../files/photoFile.ts';
+import { paintedWith } from './describePainting.ts';
 import { finishPainting } from './finishPainting.ts';
 import { type LayeredPixels, paintLayered } from './paintLayered.ts';
 import { type PaintedPixels, paintPixels } from './paintPixels.ts';
@@ -30,8 +31,9 @@ export interface PaintingOrder {
   printLongEdgeMm: number;
   /** How much of the photo's EXIF goes along; `essential` unless given. */
   metadata?: 'all' | 'essential' | 'none';
-  /** What it is painted by, in words, and with what. */
+  /** What it is painted by, in words. */
   description?: string;
+  /** What it is painted with; this program unless given. */
   software?: string;
   /** Colours and place on paper; the photo's own unless given. */
   print?: PrintOrder;
@@ -114,7 +116,7 @@ export async function deliverPainting(
     const startMs = performance.now();
     const { pixels, pixelsSha256 } = painted;
     const { iccProfile, densityPpi } = finish;
-    const { format, quality, metadata, description, software } = order;
+    const { format, quality, metadata, description, software = paintedWith } = order;
     const parts = { iccProfile, densityPpi, exif, format, quality, metadata, description, software };
     const finished = await finishPainting(order.out, { widthPx, heightPx, channels, pixels }, finish, signal);
     const picture: AnyPictureFile = { ...finished, ...parts };

@@ -1,6 +1,9 @@
 import { engineVersion } from '../../core/engineVersion.ts';
 import { toRoman } from '../../core/presets/roman.ts';
 
+/** What a file says it was painted with, whatever it was painted by. */
+export const paintedWith = `Oxgall, engine ${engineVersion}`;
+
 /** What a file says it was painted by, in the fields that EXIF has for it. */
 export function describePainting(
   presetTitle: string,
@@ -8,6 +11,6 @@ export function describePainting(
 ): { description: string; software: string } {
   return {
     description: `Painted by Oxgall: ${presetTitle}, State ${toRoman(stateNumber)}`,
-    software: `Oxgall, engine ${engineVersion}`,
+    software: paintedWith,
   };
 }

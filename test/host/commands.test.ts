@@ -257,6 +257,15 @@ describe('saving', () => {
     expect(await readdir(t.photos)).toEqual(['heron.png']);
   });
 
+  it('says in the file what painted it', async () => {
+    const { photoId } = await openFresh();
+    const ask = { photoId, parameters: {}, folder: t.photos, name: 'told', format: 'jpeg' as const };
+    const { path } = await t.caller.call('savePainting', ask);
+    const exif = (await sharp(path).metadata()).exif!.toString('utf8');
+    expect(exif).toMatch(/Painted by Oxgall: Low Water, State I\0/);
+    expect(exif).toMatch(/Oxgall, engine \d+/);
+  });
+
   it('leaves nothing behind when it is cancelled', async () => {
     const photo = await openFresh();
     t.engine.pauseMs = 5;
