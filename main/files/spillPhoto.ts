@@ -1,14 +1,14 @@
-import { endianness } from 'node:os';
 import type { Sharp } from 'sharp';
 import { type ColourPlan, planColours } from './colourPlan.ts';
 import { FileError } from './fileError.ts';
 import { swapsEdges, turnUpright } from './orientation.ts';
 import type { PhotoFile } from './photoFile.ts';
 import { openPhoto, readHeader } from './photoHeader.ts';
-import { decodeWith, factsOf, paintableChannels } from './readPhoto.ts';
+import { decodeWith, factsOf } from './readPhoto.ts';
 import { type PixelFacts, SpilledPixels } from './spilledPixels.ts';
 import { SpillFile } from './spillFile.ts';
 import { throughProfile } from './throughProfile.ts';
+import { uncompressedPixels } from './uncompressedPixels.ts';
 
 /** A photo whose pixels are in a temporary file; discard them in the end. */
 export interface SpilledPhoto extends Omit<PhotoFile, 'pixels'> {
@@ -54,28 +54,6 @@ export async function spillPhoto(
     stored.discardBehind(decoding);
     throw failure;
   }
-}
-
-/** Header of the image library's uncompressed format, in the machine's byte order. */
-const headerBytes = 64;
-const magic = 0x08f2a6b6;
-const formatOfBytes = { 1: 0, 2: 2 } as const;
-
-async function uncompressedPixels(path: string, file: SpillFile): Promise<SpilledPixels> {
-  const bytes = new Uint8Array(headerBytes);
-  await file.read(bytes, 0);
-  const view = new DataView(bytes.buffer);
-  const isLittle = endianness() === 'LE';
-  const int = (at: number) => view.getInt32(at, isLittle);
-  const [widthPx, heightPx, format] = [int(4), int(8), int(20)];
-  const channels = paintableChannels(path, int(12));
-  const bytesPerSample = format === formatOfBytes[2] ? 2 : 1;
-  const isSound = view.getUint32(0, false) === magic || view.getUint32(0, true) === magic;
-  const isKnown = format === formatOfBytes[bytesPerSample];
-  const pixels = new SpilledPixels(file, { widthPx, heightPx, channels, bytesPerSample }, headerBytes);
-  if (!isSound || !isKnown || file.bytes < headerBytes + widthPx * heightPx * pixels.pixelBytes)
-    throw new FileError(path, 'could not be unpacked', 'Export it again as RGB and open that.');
-  return pixels;
 }
 
 /** Pixels converted together. */

@@ -76,7 +76,7 @@ async function readForPrint(
 ) {
   const photo = await readAnyPhoto(photoPath, { signal, inMemoryPixels });
   try {
-    return await prepareForPrint(photo, { printLongEdgeMm, ...print }, signal);
+    return await prepareForPrint(photo, { printLongEdgeMm, ...print }, signal, inMemoryPixels);
   } catch (failure) {
     letGo(photo);
     throw failure;

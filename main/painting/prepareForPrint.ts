@@ -1,35 +1,58 @@
 import type { Sharp } from 'sharp';
-import { type CropFrame, planPrint } from '../../core/print/printPlan.ts';
+import { type CropFrame, type PrintPlan, planPrint } from '../../core/print/printPlan.ts';
 import { FileError } from '../files/fileError.ts';
 import { sharp } from '../files/imageLibrary.ts';
 import { unlessAborted } from '../files/interruption.ts';
 import type { PhotoFile } from '../files/photoFile.ts';
+import { pixelLimit } from '../files/photoHeader.ts';
 import { SpilledPixels } from '../files/spilledPixels.ts';
 import type { SpilledPhoto } from '../files/spillPhoto.ts';
+import { heldInMemoryPixels, letGo } from './holdPhoto.ts';
+import { prepareSpilled } from './prepareSpilled.ts';
+import { assertRoomToUnpack } from './room.ts';
+import { narrowed, widened } from './sampleWidths.ts';
 
 /**
  * Crops a photo and brings it to the print's own pixels, before it is painted.
  * @param order `ppi` null leaves its pixels as they are
  * @returns the photo itself where there is nothing to do
- * @throws FileError for a very large photo, whose pixels are in a file
+ * @param inMemoryPixels prints of more pixels go to a file, whatever the photo is in; smaller ones to memory
+ * @throws FileError where there is no room for the print, or it would have too many pixels
  */
 export async function prepareForPrint(
   photo: PhotoFile | SpilledPhoto,
   order: { printLongEdgeMm: number; ppi?: number; crop?: CropFrame },
   signal?: AbortSignal,
+  inMemoryPixels = heldInMemoryPixels,
 ): Promise<PhotoFile | SpilledPhoto> {
   const { printLongEdgeMm, ppi = null, crop: frame = null } = order;
   const plan = planPrint(photo, { printLongEdgeMm, ppi, crop: frame });
   const { crop, widthPx, heightPx } = plan;
   if (widthPx === photo.widthPx && heightPx === photo.heightPx && crop.widthPx === photo.widthPx)
     return photo;
-  const { pixels, channels } = photo;
-  if (pixels instanceof SpilledPixels)
+  if (widthPx * heightPx > pixelLimit)
     throw new FileError(
       photo.path,
-      'is too large to be cropped or resampled on the way',
-      'Leave out the crop and the pixels per inch, or resample it beforehand.',
+      `would have ${Math.round((widthPx * heightPx) / 1e6)} megapixels on paper, more than the ${pixelLimit / 1e6} that can be painted`,
+      'Choose a smaller print or fewer pixels per inch.',
     );
+  const { pixels } = photo;
+  const isHeld = widthPx * heightPx <= inMemoryPixels;
+  if (isHeld && !(pixels instanceof SpilledPixels)) return prepareHeld({ ...photo, pixels }, plan, signal);
+  const hasAlpha = photo.channels === 4;
+  if (!isHeld)
+    await assertRoomToUnpack(photo.path, { ...photo, widthPx, heightPx, hasAlpha, isTurned: false });
+  const prepared = await prepareSpilled(photo, plan, signal);
+  letGo(photo);
+  return isHeld ? heldAgain(photo, prepared, signal) : { ...photo, widthPx, heightPx, pixels: prepared };
+}
+
+async function prepareHeld(
+  photo: PhotoFile,
+  { crop, widthPx, heightPx }: PrintPlan,
+  signal?: AbortSignal,
+): Promise<PhotoFile> {
+  const { pixels, channels } = photo;
   const cut = sharp(pixels, {
     raw: { width: photo.widthPx, height: photo.heightPx, channels },
     limitInputPixels: false,
@@ -38,7 +61,7 @@ export async function prepareForPrint(
   // Alpha is multiplied in while resampling and taken out again by the library: no fringes at edges. In 8 bits that
   // darkens faint colours by up to a tenth, so it is done in 16.
   const isWidened = isResampled && channels === 4 && pixels instanceof Uint8Array;
-  const source = isWidened ? await widened(cut, crop, signal) : cut;
+  const source = isWidened ? await widenedCut(cut, crop, signal) : cut;
   const is16Bit = isWidened || pixels instanceof Uint16Array;
   const sized = isResampled ? source.resize(widthPx, heightPx, { fit: 'fill', kernel: 'lanczos3' }) : source;
   const image = is16Bit ? sized.toColourspace('rgb16') : sized;
@@ -52,20 +75,29 @@ export async function prepareForPrint(
   return { ...photo, widthPx, heightPx, pixels: isWidened ? narrowed(made) : made };
 }
 
+/** A print that is small enough, read back from its file. */
+async function heldAgain(
+  photo: PhotoFile | SpilledPhoto,
+  prepared: SpilledPixels,
+  signal?: AbortSignal,
+): Promise<PhotoFile> {
+  const { widthPx, heightPx } = prepared;
+  try {
+    return { ...photo, widthPx, heightPx, pixels: await prepared.samples(0, heightPx, signal) };
+  } finally {
+    prepared.discard();
+  }
+}
+
 /** The same picture with 16 bits a sample. */
-async function widened(
+async function widenedCut(
   cut: Sharp,
   { widthPx, heightPx }: { widthPx: number; heightPx: number },
   signal?: AbortSignal,
 ): Promise<Sharp> {
   const data = await unlessAborted(cut.raw().toBuffer(), signal);
-  const wide = new Uint16Array(data.length);
-  for (let i = 0; i < data.length; i++) wide[i] = data[i] * 257;
-  return sharp(wide, { raw: { width: widthPx, height: heightPx, channels: 4 }, limitInputPixels: false });
-}
-
-function narrowed(wide: Uint8Array | Uint16Array): Uint8Array {
-  const narrow = new Uint8Array(wide.length);
-  for (let i = 0; i < wide.length; i++) narrow[i] = Math.round(wide[i] / 257);
-  return narrow;
+  return sharp(widened(data), {
+    raw: { width: widthPx, height: heightPx, channels: 4 },
+    limitInputPixels: false,
+  });
 }

@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import type { PhotoFile } from '../../main/files/photoFile.ts';
+import { SpilledPixels } from '../../main/files/spilledPixels.ts';
 import { prepareForPrint } from '../../main/painting/prepareForPrint.ts';
 
 const inch = { printLongEdgeMm: 25.4 };
@@ -70,5 +71,35 @@ describe('a photo brought to the pixels of its print', () => {
       for (let x = 0; x < 30; x++)
         for (let c = 0; c < 4; c++)
           expect(cut.pixels[(y * 30 + x) * 4 + c]).toBe(photo.pixels[(y * 40 + x) * 4 + c]);
+  });
+
+  it.each([
+    [3, 8],
+    [4, 8],
+    [3, 16],
+    [4, 16],
+  ] as const)('has the same pixels by way of a file: %i channels, %i bits', async (channels, depth) => {
+    const photo = photoOf(211, 157, depth, (x, y) =>
+      [Math.sin(x / 9) ** 2, ((x * y) % 97) / 96, y / 156, 0.3 + 0.7 * (x / 210)].slice(0, channels),
+    );
+    const crop = { aspect: 0.9, x01: 0.4, y01: 0.5 };
+    for (const order of [{ crop }, { ppi: 301 }, { ppi: 77, crop }]) {
+      const held = await prepared(photo, { ...inch, ...order });
+      const filed = await prepareForPrint(photo, { ...inch, ...order }, undefined, 0);
+      if (!(filed.pixels instanceof SpilledPixels)) throw new Error('Expected pixels in a file');
+      try {
+        expect([filed.widthPx, filed.heightPx]).toEqual([held.widthPx, held.heightPx]);
+        expect(await filed.pixels.samples(0, filed.heightPx)).toEqual(held.pixels);
+      } finally {
+        filed.pixels.discard();
+      }
+    }
+  });
+
+  it('is refused where it would have more pixels than can be painted', async () => {
+    const photo = photoOf(40, 30, 8, () => [0, 0, 0]);
+    await expect(prepareForPrint(photo, { printLongEdgeMm: 5000, ppi: 600 })).rejects.toMatchObject({
+      remedy: 'Choose a smaller print or fewer pixels per inch.',
+    });
   });
 });
