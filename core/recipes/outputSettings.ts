@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { defaultPrintLongEdgeMm } from '../parameters/lengths.ts';
+import { canonicalJson } from './canonicalJson.ts';
 
 const fraction = z.number().min(0).max(1);
 
@@ -32,6 +33,28 @@ export const outputSettingsSchema = z
 
 /** What file to make of a painting. */
 export type OutputSettings = z.infer<typeof outputSettingsSchema>;
+
+/** Some of the settings; those that are missing stay, and a crop frame of null is taken away. */
+export const outputChangeSchema = outputSettingsSchema
+  .partial()
+  .extend({ cropFrame: outputSettingsSchema.shape.cropFrame.nullable() });
+
+/** Some of the settings, as they shall be. */
+export type OutputChange = z.infer<typeof outputChangeSchema>;
+
+/**
+ * Changes some settings.
+ * @param output not modified
+ * @param change keys that are missing or undefined stay as they are
+ * @returns the settings themselves where nothing is different
+ */
+export function changedOutput(output: OutputSettings, change: OutputChange): OutputSettings {
+  const { cropFrame = output.cropFrame, ...plain } = change;
+  const { cropFrame: _, ...before } = output;
+  const told = Object.entries(plain).filter(([, value]) => value !== undefined);
+  const changed: OutputSettings = { ...before, ...Object.fromEntries(told), ...(cropFrame && { cropFrame }) };
+  return canonicalJson(changed) === canonicalJson(output) ? output : changed;
+}
 
 /** The settings of a photo nobody has set anything for. */
 export function defaultOutputSettings(): OutputSettings {

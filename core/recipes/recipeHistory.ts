@@ -5,7 +5,12 @@ import { latestState, type Moment, type Preset, writeMargin } from '../presets/p
 import type { State } from '../presets/state.ts';
 import { appendState, type Margin, mergeThreads, stateById } from '../presets/thread.ts';
 import { contentId } from './contentId.ts';
-import { defaultOutputSettings, type OutputSettings } from './outputSettings.ts';
+import {
+  changedOutput,
+  defaultOutputSettings,
+  type OutputChange,
+  type OutputSettings,
+} from './outputSettings.ts';
 import {
   type Delivery,
   type PhotoFingerprint,
@@ -95,8 +100,8 @@ export function setTightness(recipe: Recipe, tightness: TightnessStroke[]): Reci
 }
 
 /** Changes some output settings. */
-export function changeOutput(recipe: Recipe, output: Partial<OutputSettings>): Recipe {
-  return { ...recipe, work: { ...recipe.work, output: { ...recipe.work.output, ...output } } };
+export function changeOutput(recipe: Recipe, change: OutputChange): Recipe {
+  return { ...recipe, work: { ...recipe.work, output: changedOutput(recipe.work.output, change) } };
 }
 
 /**

@@ -7,16 +7,19 @@ import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { fullParameters } from '../../core/presets/parametersSchema.ts';
 import { toRoman } from '../../core/presets/roman.ts';
 import type { State } from '../../core/presets/state.ts';
+import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import type { PhotoMemory, WorkOnEasel } from '../../main/host/api/memoryCommands.ts';
 import { host, troubleOf } from '../host/host.ts';
 import { changeLook, currentLook, type Look, lookStore } from '../state/lookStore.ts';
 import { comparisonStore, memoryStore } from '../state/memoryStore.ts';
 import { addNotice } from '../state/noticeStore.ts';
+import { outputStore } from '../state/outputStore.ts';
 
 const tellAfterMs = 300;
 
 let photoId: string | null = null;
 let told: Look | null = null;
+let toldOutput: OutputSettings | null = null;
 let timer: ReturnType<typeof setTimeout> | undefined;
 let hasComplained = false;
 
@@ -26,6 +29,8 @@ export function followMemory(memory: PhotoMemory | null): void {
   timer = undefined;
   photoId = memory?.photoId ?? null;
   told = currentLook();
+  toldOutput = memory?.recipe.work.output ?? null;
+  outputStore.set(toldOutput);
   hasComplained = false;
   comparisonStore.set(null);
   memoryStore.set(memory);
@@ -33,11 +38,13 @@ export function followMemory(memory: PhotoMemory | null): void {
 
 /** Begins to listen; called once. */
 export function startTellingWork(): void {
-  lookStore.subscribe(() => {
-    if (!photoId || currentLook() === told) return;
+  const tellSoon = () => {
+    if (!photoId || isTold()) return;
     clearTimeout(timer);
     timer = setTimeout(() => void tellWork(), tellAfterMs);
-  });
+  };
+  lookStore.subscribe(tellSoon);
+  outputStore.subscribe(tellSoon);
   document.addEventListener('visibilitychange', () => void tellWork());
   window.addEventListener('pagehide', () => void tellWork());
 }
@@ -47,16 +54,22 @@ export async function tellWork(): Promise<void> {
   clearTimeout(timer);
   timer = undefined;
   const look = currentLook();
-  if (!photoId || !look || look === told) return;
+  if (!photoId || !look || isTold()) return;
   told = look;
+  toldOutput = outputStore.get();
   try {
     take(await host.call('layWork', { photoId, work: workOf(look) }));
     hasComplained = false;
   } catch {
     told = null;
+    toldOutput = null;
     if (!hasComplained) addNotice('Your changes cannot be kept at the moment; save the painting to be safe.');
     hasComplained = true;
   }
+}
+
+function isTold(): boolean {
+  return currentLook() === told && outputStore.get() === toldOutput;
 }
 
 /** The look that a photo's memory lays on the easel. */
@@ -183,11 +196,18 @@ function complain(error: unknown): void {
   addNotice(`${message} ${remedy}`.trim());
 }
 
+/** All of it each time, so that a change that could not be told is told with the next one. */
 function workOf(look: Look): WorkOnEasel {
+  const output = outputStore.get();
   return {
     preset: look.presetId,
     stateId: look.stateId,
     parameters: look.parameters,
-    output: { printLongEdgeMm: look.printLongEdgeMm },
+    output: {
+      ...output,
+      // Absent would mean that it stays.
+      ...(output && { cropFrame: output.cropFrame ?? null }),
+      printLongEdgeMm: look.printLongEdgeMm,
+    },
   };
 }

@@ -83,6 +83,25 @@ describe('keeping and returning', () => {
   });
 });
 
+describe('output settings', () => {
+  const frame = { aspect: 0.8, x01: 0.25, y01: 0.5 };
+
+  it('change by what is named; the rest stays, fields of newer versions too', () => {
+    const own = changeOutput(sampleRecipe(), { bleedMm: 3, paperStock: 'laid' } as object);
+    const changed = changeOutput(own, { ppi: 240, quality: undefined });
+    expect(changed.work.output).toEqual({ ...own.work.output, ppi: 240 });
+    expect(changed.work.output).toMatchObject({ bleedMm: 3, paperStock: 'laid', quality: 92 });
+  });
+
+  it('keep the crop frame unless it is named, and lose it by null', () => {
+    const framed = changeOutput(sampleRecipe(), { cropFrame: frame });
+    expect(changeOutput(framed, { bleedMm: 3 }).work.output.cropFrame).toEqual(frame);
+    const bare = changeOutput(framed, { cropFrame: null });
+    expect(bare.work.output).toEqual(sampleRecipe().work.output);
+    expect(recipeSchema.safeParse(bare).success).toBe(true);
+  });
+});
+
 describe('laying another look', () => {
   it('keeps a history for each preset', () => {
     const kept = keepState(sampleRecipe(), 'mine', moment(1));

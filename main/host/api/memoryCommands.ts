@@ -1,6 +1,6 @@
 import type { Parameters } from '../../../core/parameters/table.ts';
 import type { State } from '../../../core/presets/state.ts';
-import type { OutputSettings } from '../../../core/recipes/outputSettings.ts';
+import type { OutputChange } from '../../../core/recipes/outputSettings.ts';
 import type { Recipe } from '../../../core/recipes/recipe.ts';
 
 /**
@@ -66,7 +66,8 @@ export interface WorkOnEasel {
   preset: string;
   stateId: string;
   parameters: Partial<Parameters>;
-  output?: Partial<OutputSettings>;
+  /** Settings that are missing stay as they are; a crop frame of null is taken away. */
+  output?: OutputChange;
 }
 
 export interface PhotoMemory {

@@ -1,14 +1,14 @@
 import { z } from 'zod';
 import { presetNameSchema } from '../../../core/presets/preset.ts';
 import { stateIdSchema } from '../../../core/presets/state.ts';
-import { outputSettingsSchema } from '../../../core/recipes/outputSettings.ts';
+import { outputChangeSchema } from '../../../core/recipes/outputSettings.ts';
 import { parameters, path, photoId } from './inputParts.ts';
 import type { MemoryCommands } from './memoryCommands.ts';
 
 const note = z.string().max(2000);
 const title = z.string().trim().min(1).max(120);
 const state = { preset: presetNameSchema, stateId: stateIdSchema };
-const work = z.strictObject({ ...state, parameters, output: outputSettingsSchema.partial().optional() });
+const work = z.strictObject({ ...state, parameters, output: outputChangeSchema.optional() });
 /** A recipe or a file of presets; larger ones are none of ours. */
 const documentText = z.string().max(8 * 2 ** 20);
 
