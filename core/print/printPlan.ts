@@ -61,7 +61,21 @@ export function planPrint(
   };
 }
 
-function placeFrame(photo: { widthPx: number; heightPx: number }, { aspect, x01, y01 }: CropFrame): Rect {
+/** Whether a picture goes to its print with its own pixels, all of them. */
+export function keepsPixels(photo: { widthPx: number; heightPx: number }, plan: PrintPlan): boolean {
+  const { crop, widthPx, heightPx } = plan;
+  const isWhole = crop.widthPx === photo.widthPx && crop.heightPx === photo.heightPx;
+  return isWhole && widthPx === photo.widthPx && heightPx === photo.heightPx;
+}
+
+/**
+ * Where a frame lies in a picture, in whole pixels.
+ * @param frame its middle is moved in where it would stand out
+ */
+export function placeFrame(
+  photo: { widthPx: number; heightPx: number },
+  { aspect, x01, y01 }: CropFrame,
+): Rect {
   const isWider = photo.widthPx / photo.heightPx > aspect;
   const widthPx = isWider ? Math.max(1, Math.round(photo.heightPx * aspect)) : photo.widthPx;
   const heightPx = isWider ? photo.heightPx : Math.max(1, Math.round(photo.widthPx / aspect));
@@ -73,6 +87,31 @@ function placeFrame(photo: { widthPx: number; heightPx: number }, { aspect, x01,
     widthPx,
     heightPx,
   };
+}
+
+/** What lies around a print on its sheet, in millimetres: common practice of the printing trade. */
+export const trimMarkMm = { slug: 8, length: 5, line: 0.25 };
+
+/** What lies around a print on its sheet, in pixels. */
+export interface SheetMargins {
+  bleedPx: number;
+  /** Null without trim marks. */
+  marks: { slugPx: number; lengthPx: number; linePx: number } | null;
+  /** Bleed and slug together: how far the sheet reaches beyond the print on every side. */
+  outsidePx: number;
+}
+
+/** Plans bleed and trim marks at so many pixels per inch. */
+export function planMargins(ppi: number, bleedMm: number, hasMarks: boolean): SheetMargins {
+  const bleedPx = mmToPx(bleedMm, ppi);
+  const marks = hasMarks
+    ? {
+        slugPx: mmToPx(trimMarkMm.slug, ppi),
+        lengthPx: mmToPx(trimMarkMm.length, ppi),
+        linePx: Math.max(1, mmToPx(trimMarkMm.line, ppi)),
+      }
+    : null;
+  return { bleedPx, marks, outsidePx: bleedPx + (marks?.slugPx ?? 0) };
 }
 
 /** A length on the print in pixels, to the nearest. */

@@ -34,6 +34,11 @@ export const outputSettingsSchema = z
 /** What file to make of a painting. */
 export type OutputSettings = z.infer<typeof outputSettingsSchema>;
 
+/** What a photo nobody has worked on is saved as by itself: an exact file, as deep as the photo. */
+export function outputForPhoto(depth: 8 | 16): OutputSettings {
+  return { ...defaultOutputSettings(), format: 'png', depth };
+}
+
 /** Some of the settings; those that are missing stay, and a crop frame of null is taken away. */
 export const outputChangeSchema = outputSettingsSchema
   .partial()

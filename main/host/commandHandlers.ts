@@ -49,8 +49,7 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
     paintStrata: (input, call) => paint.paintStrata(photos.find(input.photoId), input, call),
     paintSmallPicture: (input, call) => paint.paintSmallPicture(photos.find(input.photoId), input, call),
     markOutOfGamut: (input, call) => {
-      // A profile is chosen as photos are: by dialog, or from a folder that was shown.
-      if (typeof input.profile === 'object') grants.checkPhoto(input.profile.file);
+      if (typeof input.profile === 'object') grants.checkProfile(input.profile.file);
       return paint.markOutOfGamut(photos.find(input.photoId), input, call);
     },
     readScreenTable: ({ photoId }) => paint.readScreenTable(photos.find(photoId)),
@@ -141,10 +140,12 @@ async function openPhoto(
   const fingerprint = fingerprintPhoto(path);
   fingerprint.catch(() => undefined);
   const photo = await state.photos.open(path, call.signal);
-  await state.memories.open(photo.photoId, path, fingerprint);
+  await state.memories.open(photo.photoId, path, fingerprint, photo.describe().depth);
   await state.memories.keepOnly(state.photos.all.map(({ photoId }) => photoId));
   allowOpening(state, path);
   const opened = await present(state, photo);
+  const { profile } = opened.memory.recipe.work.output;
+  if (typeof profile === 'object') state.grants.allowProfile(profile.file);
   void state.recents.add(opened).then(() => state.events.send('recentsChanged', {}));
   return opened;
 }

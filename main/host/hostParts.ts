@@ -3,6 +3,13 @@ import type { DecodedPhoto, Strata } from '../../core/pixels/photo.ts';
 import type { Engine, EnginePhoto, OpenOptions } from '../engine/engineApi.ts';
 import type { AnyPictureFile, PhotoFile } from '../files/photoFile.ts';
 import type { SpilledPhoto } from '../files/spillPhoto.ts';
+import type {
+  DeliveredPainting,
+  DeliveryOptions,
+  HeldPhotoFile,
+  PaintingOrder,
+} from '../painting/deliverPainting.ts';
+import type { SizeOrder } from '../painting/printOrder.ts';
 import type { Stores } from '../store/openStores.ts';
 import type { ChooseInput, DemoSeries, DesktopCapabilities } from './api/hostCommands.ts';
 
@@ -16,6 +23,26 @@ export interface HostFiles {
     photo: PhotoFile | SpilledPhoto,
     options?: OpenOptions,
   ): Promise<EnginePhoto>;
+  /** Reads a photo and brings it to the pixels of its print. */
+  readForPrint(
+    path: string,
+    order: SizeOrder,
+    options?: { signal?: AbortSignal },
+  ): Promise<PhotoFile | SpilledPhoto>;
+  /** Paints and writes a photo that was read for its print, and gives it up. */
+  paintPrepared(
+    engine: Engine | Promise<Engine>,
+    photo: PhotoFile | SpilledPhoto,
+    order: PaintingOrder,
+    options: DeliveryOptions,
+  ): Promise<DeliveredPainting>;
+  /** Paints and writes a photo that the engine holds. */
+  deliverPainting(
+    engine: Engine,
+    photo: HeldPhotoFile,
+    order: PaintingOrder,
+    options: DeliveryOptions,
+  ): Promise<DeliveredPainting>;
   /** Writes `path`, which must not appear half-written whatever happens. */
   writePicture(path: string, picture: AnyPictureFile, options?: { signal?: AbortSignal }): Promise<unknown>;
   /** Size and kind without decoding; null where only decoding can tell. */

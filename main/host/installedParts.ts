@@ -33,6 +33,9 @@ export function installedParts(options: {
         { removeAbandonedSpills },
         { readScreenTable },
         { markOutOfGamut },
+        { readForPrint },
+        { paintPrepared },
+        { deliverPainting },
       ] = await Promise.all([
         import('../painting/holdPhoto.ts'),
         import('../files/writePicture.ts'),
@@ -40,12 +43,18 @@ export function installedParts(options: {
         import('../files/spillFile.ts'),
         import('./readScreenTable.ts'),
         import('./markOutOfGamut.ts'),
+        import('../painting/readForPrint.ts'),
+        import('../painting/paintPrepared.ts'),
+        import('../painting/deliverPainting.ts'),
       ]);
       await removeAbandonedSpills();
       const { readFacts, readQuick } = quick;
       return {
         readPhoto: readAnyPhoto,
         holdPhoto,
+        readForPrint,
+        paintPrepared,
+        deliverPainting,
         writePicture,
         readFacts,
         readQuick,

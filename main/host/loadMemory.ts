@@ -1,5 +1,6 @@
 import { dirname } from 'node:path';
 import type { Moment, Preset } from '../../core/presets/preset.ts';
+import { outputForPhoto } from '../../core/recipes/outputSettings.ts';
 import type { PhotoFingerprint, Recipe } from '../../core/recipes/recipe.ts';
 import { changeParameters, createRecipe } from '../../core/recipes/recipeHistory.ts';
 import { findMovedPhotos, recipeBin, reunite } from '../store/movedPhotos.ts';
@@ -29,12 +30,14 @@ export interface LoadedMemory {
 /**
  * Finds the recipe of a photo: beside it, in the mirror, where the photo was before it was moved, or as a draft of an
  * earlier version; else makes one that is not written before something is changed.
+ * @param depth bits a sample of the photo, which a new recipe saves with
  */
 export async function loadMemory(
   stores: Stores,
   path: string,
   fingerprint: PhotoFingerprint,
   moment: Moment,
+  depth: 8 | 16 = 8,
 ): Promise<LoadedMemory> {
   const { recipes, presets, dataFolder } = stores;
   let loaded = await recipes.load(path, fingerprint);
@@ -46,7 +49,8 @@ export async function loadMemory(
       remarks.push(remark);
     }
   }
-  const fresh = async () => createRecipe(fingerprint, await firstPreset(presets), moment);
+  const fresh = async () =>
+    createRecipe(fingerprint, await firstPreset(presets), moment, outputForPhoto(depth));
   const isBeside = dirname(loaded.path) === dirname(recipeBeside(path));
   const common = {
     recipePath: loaded.path,

@@ -99,7 +99,7 @@ export class OpenPhotos {
 }
 
 /** Changes when the file does. */
-async function stampOf(path: string): Promise<string> {
+export async function stampOf(path: string): Promise<string> {
   try {
     const { mtimeMs, size, ino } = await stat(path);
     return `${ino} ${mtimeMs} ${size}`;

@@ -10,6 +10,7 @@ export class PathGrants {
   readonly #listed = new Set<string>();
   readonly #offered = new Set<string>();
   readonly #openable = new Set<string>();
+  readonly #profiles = new Set<string>();
   readonly #writable = new Set<string>();
   readonly #replaceable = new Set<string>();
 
@@ -26,6 +27,11 @@ export class PathGrants {
   /** The user chose this photo. */
   allowPhoto(path: string): void {
     this.#openable.add(resolve(path));
+  }
+
+  /** The user chose this colour profile, now or when the recipe was made that names it. */
+  allowProfile(path: string): void {
+    this.#profiles.add(resolve(path));
   }
 
   /** A painted file may be written into this folder. */
@@ -60,6 +66,15 @@ export class PathGrants {
   checkPhoto(photo: string): string {
     const path = absolute(photo);
     return this.#openable.has(path) || this.#listed.has(dirname(path)) ? path : refuse(path);
+  }
+
+  /**
+   * @returns the profile's absolute path
+   * @throws Refusal where the user did not choose it
+   */
+  checkProfile(profile: string): string {
+    const path = absolute(profile);
+    return this.#profiles.has(path) || this.#listed.has(dirname(path)) ? path : refuse(path);
   }
 
   /**

@@ -48,11 +48,12 @@ export class PhotoMemories {
   /**
    * Loads a photo's recipe; asked twice, it is loaded once.
    * @param fingerprint of the photo, which may still be under way
+   * @param depth of the photo, in bits a sample
    */
-  open(photoId: string, path: string, fingerprint: Promise<PhotoFingerprint>): Promise<void> {
+  open(photoId: string, path: string, fingerprint: Promise<PhotoFingerprint>, depth: 8 | 16): Promise<void> {
     let entry = this.#entries.get(photoId);
     if (!entry) {
-      entry = fingerprint.then((known) => this.#load(photoId, path, known));
+      entry = fingerprint.then((known) => this.#load(photoId, path, known, depth));
       this.#entries.set(photoId, entry);
       entry.catch(() => this.#entries.delete(photoId));
     }
@@ -177,8 +178,8 @@ export class PhotoMemories {
     throw new Refusal('NotFound', 'This photo is no longer open.', 'Open it again; its changes are kept.');
   }
 
-  async #load(photoId: string, path: string, fingerprint: PhotoFingerprint): Promise<Entry> {
-    const loaded = await loadMemory(await this.parts.loadStores(), path, fingerprint, this.moment());
+  async #load(photoId: string, path: string, fingerprint: PhotoFingerprint, depth?: 8 | 16): Promise<Entry> {
+    const loaded = await loadMemory(await this.parts.loadStores(), path, fingerprint, this.moment(), depth);
     const entry: Entry = {
       ...loaded,
       photoId,

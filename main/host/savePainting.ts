@@ -1,17 +1,21 @@
 import { basename, dirname, extname, join } from 'node:path';
-import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
+import { changedOutput } from '../../core/recipes/outputSettings.ts';
 import { currentHistory, currentState } from '../../core/recipes/recipeHistory.ts';
 import type { Engine } from '../engine/engineApi.ts';
+import { FileError } from '../files/fileError.ts';
 import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
-import { deliverPainting } from '../painting/deliverPainting.ts';
+import { SpilledPixels } from '../files/spilledPixels.ts';
+import type { DeliveredPainting, DeliveryOptions, PaintingOrder } from '../painting/deliverPainting.ts';
 import { describePainting } from '../painting/describePainting.ts';
+import { fileOrderOf, paintsOwnPixels } from '../painting/printOrder.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
 import type { OutputFormatName, SavedPainting } from './api/hostCommands.ts';
 import type { EventHub } from './eventHub.ts';
 import type { HostFiles } from './hostParts.ts';
 import type { OpenPhoto } from './openPhoto.ts';
+import { stampOf } from './openPhotos.ts';
 import type { PathGrants } from './pathGrants.ts';
 import type { PhotoMemories } from './photoMemories.ts';
 import { firstFree, placeNew, placeOver } from './placeFile.ts';
@@ -41,9 +45,9 @@ export interface SaveParts {
 }
 
 /**
- * Paints a photo at full resolution and writes it; a file of that name that is there already stays.
- * @throws Refusal where the folder was not chosen or the name cannot be used
- * @throws FileError where the file cannot be written
+ * Paints a photo for print as its recipe asks and writes it; a file of that name that is there already stays.
+ * @throws Refusal where the folder or the profile was not chosen or the name cannot be used
+ * @throws FileError where the file cannot be written, or cannot hold what it is to hold
  */
 export async function savePainting(
   photo: OpenPhoto,
@@ -53,59 +57,85 @@ export async function savePainting(
 ): Promise<SavedPainting> {
   const started = performance.now();
   const parameters = parseParameters(input.parameters);
-  const target = join(parts.grants.checkWriting(input.folder), checkName(input.name, input.format));
+  const { recipe } = await parts.memories.view(photo.photoId);
+  const output = changedOutput(recipe.work.output, input.output ?? {});
+  const target = join(parts.grants.checkWriting(input.folder), checkName(input.name, output.format));
+  if (typeof output.profile === 'object') parts.grants.checkProfile(output.profile.file);
   const replace = input.whenTaken === 'replace';
   if (replace) await checkReplacing(target, parts);
   const report = progressReporter(call.id, parts.events);
   // Found out before the painting, not after it.
   await assertWritable(replace ? target : await firstFree(target));
   report(0, 'opening');
-  const [engine, files] = await Promise.all([parts.loadEngine(), parts.loadFiles()]);
-  const { file } = await photo.whole(call.signal);
-  const { recipe } = await parts.memories.view(photo.photoId);
   const order = {
+    ...fileOrderOf(output),
     parameters,
     out: target,
-    format: input.format,
-    depth: input.depth,
-    quality: input.quality,
-    printLongEdgeMm: input.printLongEdgeMm ?? defaultPrintLongEdgeMm,
-    metadata: recipe.work.output.metadata,
     ...describePainting(currentHistory(recipe).title, currentState(recipe).number),
   };
-  const delivered = await photo.paint(0, call.signal, ({ enginePhoto }, signal) =>
-    deliverPainting(engine, { enginePhoto, file }, order, {
-      signal,
-      onProgress: report,
-      writePicture: files.writePicture,
-      place: replace ? placeOver : placeNew,
-    }),
-  );
+  const delivered = await paint(photo, order, call, parts, {
+    onProgress: report,
+    // Somebody agreed to replace the picture, and nothing beside it.
+    place: (out, write, signal) =>
+      replace && out === target ? placeOver(out, write) : placeNew(out, write, signal),
+  });
   report(1, 'writing');
-  const { path, widthPx, heightPx } = delivered;
+  const { path, layersPath, widthPx, heightPx } = delivered;
   const { sizeBytes, sha256 } = await fingerprintPhoto(path);
   const memory = await parts.memories.noteDelivered(photo, {
     path,
     sha256,
     pixelsSha256: delivered.pixelsSha256,
     parameters,
-    output: {
-      format: input.format,
-      depth: delivered.depth,
-      printLongEdgeMm: order.printLongEdgeMm,
-      ...(input.quality !== undefined && { quality: input.quality }),
-    },
+    output: { ...output, depth: delivered.depth },
   });
   return {
     path,
     name: basename(path),
     folder: dirname(path),
+    layersName: layersPath && basename(layersPath),
     widthPx,
     heightPx,
     sizeBytes,
     tookMs: Math.round(performance.now() - started),
     memory,
   };
+}
+
+/** Paints what the engine holds; where the print has other pixels, the photo is read once more and brought to them. */
+async function paint(
+  photo: OpenPhoto,
+  order: PaintingOrder,
+  { signal: asked }: RunningCall,
+  parts: SaveParts,
+  options: Pick<DeliveryOptions, 'onProgress' | 'place'>,
+): Promise<DeliveredPainting> {
+  const [engine, files] = await Promise.all([parts.loadEngine(), parts.loadFiles()]);
+  const { file } = await photo.whole(asked);
+  const { writePicture } = files;
+  // Whether a photo with alpha is opaque can be told by its pixels alone, and JPEG wants to know before the painting.
+  const mayBeRefused = order.format === 'jpeg' && file.channels === 4;
+  if (paintsOwnPixels(file, order) && !mayBeRefused)
+    return photo.paint(0, asked, ({ enginePhoto }, signal) =>
+      files.deliverPainting(engine, { enginePhoto, file }, order, { ...options, signal, writePicture }),
+    );
+  return photo.use(async () => {
+    const signal = AbortSignal.any([asked, photo.closingSignal]);
+    const prepared = await files.readForPrint(photo.path, order, { signal });
+    await assertSamePhoto(photo, prepared);
+    return files.paintPrepared(engine, prepared, order, { ...options, signal, writePicture });
+  });
+}
+
+/** What is on the easel was read when it was opened; its file may be another by now. */
+async function assertSamePhoto({ path, stamp }: OpenPhoto, { pixels }: { pixels: object }): Promise<void> {
+  if ((await stampOf(path).catch(() => '')) === stamp) return;
+  if (pixels instanceof SpilledPixels) pixels.discard();
+  throw new FileError(
+    path,
+    'is not the file any more that was opened',
+    'Open the photograph again, then save.',
+  );
 }
 
 const reportEveryMs = 100;

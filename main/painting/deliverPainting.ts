@@ -1,15 +1,15 @@
 import { srgbProfile } from '../../core/colour/matrixProfile.ts';
 import { layerStack } from '../../core/composition/layerStack.ts';
 import type { Parameters } from '../../core/parameters/table.ts';
-import type { Engine, EnginePhoto, StageTimes } from '../engine/engineApi.ts';
-import { type LayersKind, layersBeside, layersDepth, writeLayers } from '../files/layers/writeLayers.ts';
+import type { Engine, EnginePhoto, PaintReview, PaintStage, StageTimes } from '../engine/engineApi.ts';
+import { layersBeside, layersDepth, writeLayers } from '../files/layers/writeLayers.ts';
 import { assertSizeFits, outputDepth } from '../files/outputFormat.ts';
-import type { AnyPictureFile, OutputFormat, PhotoFile } from '../files/photoFile.ts';
+import type { AnyPictureFile, PhotoFile } from '../files/photoFile.ts';
 import { paintedWith } from './describePainting.ts';
 import { finishPainting } from './finishPainting.ts';
 import { type LayeredPixels, paintLayered } from './paintLayered.ts';
 import { type PaintedPixels, paintPixels } from './paintPixels.ts';
-import { type PrintOrder, planFinish } from './printOrder.ts';
+import { type FileOrder, planFinish } from './printOrder.ts';
 import { assertRoomToPaint } from './room.ts';
 
 /** A photo that was read and is held by an engine; its own pixels are not needed any more. */
@@ -19,26 +19,14 @@ export interface HeldPhotoFile {
 }
 
 /** What to make of a photo. */
-export interface PaintingOrder {
+export interface PaintingOrder extends FileOrder {
   parameters: Parameters;
   /** Where the file shall be. */
   out: string;
-  format: OutputFormat;
-  /** Bits a sample; the photo's own unless given, and never more than the format holds. */
-  depth?: 8 | 16;
-  /** 1…100, for JPEG and WebP. */
-  quality?: number;
-  printLongEdgeMm: number;
-  /** How much of the photo's EXIF goes along; `essential` unless given. */
-  metadata?: 'all' | 'essential' | 'none';
   /** What it is painted by, in words. */
   description?: string;
   /** What it is painted with; this program unless given. */
   software?: string;
-  /** Colours and place on paper; the photo's own unless given. */
-  print?: PrintOrder;
-  /** Writes the strata too, beside the picture and under its name, in the photo's own colours. */
-  layers?: LayersKind;
 }
 
 export type WritePicture = (
@@ -50,11 +38,10 @@ export type WritePicture = (
 export interface DeliveryOptions {
   signal?: AbortSignal;
   /** Stages of the engine, then `writing`. */
-  onProgress?: (
-    fraction01: number,
-    stage: 'grain' | 'body' | 'line' | 'relief' | 'compose' | 'writing',
-  ) => void;
+  onProgress?: (fraction01: number, stage: PaintStage | 'writing') => void;
   writePicture: WritePicture;
+  /** Asked while the painting is made, where it is held in memory and no layers are written. */
+  review?: PaintReview;
   /**
    * Decides the name and what happens to a file that has it; writes to `out` itself unless given.
    * @param write makes the whole file at the path it is given
@@ -90,7 +77,7 @@ export async function deliverPainting(
   engine: Engine,
   photo: HeldPhotoFile,
   order: PaintingOrder,
-  { signal, onProgress, writePicture, place = placeAsNamed }: DeliveryOptions,
+  { signal, onProgress, writePicture, review, place = placeAsNamed }: DeliveryOptions,
 ): Promise<DeliveredPainting> {
   const { enginePhoto, file } = photo;
   const { widthPx, heightPx, channels, exif } = file;
@@ -108,7 +95,7 @@ export async function deliverPainting(
     engine,
     enginePhoto,
     { ...order, depth: finish.paintDepth },
-    { signal, onProgress },
+    { signal, onProgress, review },
   );
   try {
     signal?.throwIfAborted();
@@ -161,12 +148,13 @@ function paint(
   engine: Engine,
   photo: EnginePhoto,
   order: PaintingOrder & { depth: 8 | 16 },
-  { signal, onProgress }: Pick<DeliveryOptions, 'signal' | 'onProgress'>,
+  { signal, onProgress, review }: Pick<DeliveryOptions, 'signal' | 'onProgress' | 'review'>,
 ): Promise<PaintedPixels | LayeredPixels> {
   const { layers, depth } = order;
   if (!layers)
     return paintPixels(engine, photo, order, {
       signal,
+      review,
       onProgress: onProgress && ((fraction01, stage) => onProgress(paintShare01 * fraction01, stage)),
     });
   const asked = { ...order, layersDepth: layersDepth(layers, depth) };

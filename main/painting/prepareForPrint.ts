@@ -1,5 +1,5 @@
 import type { Sharp } from 'sharp';
-import { type CropFrame, type PrintPlan, planPrint } from '../../core/print/printPlan.ts';
+import { type CropFrame, keepsPixels, type PrintPlan, planPrint } from '../../core/print/printPlan.ts';
 import { FileError } from '../files/fileError.ts';
 import { sharp } from '../files/imageLibrary.ts';
 import { unlessAborted } from '../files/interruption.ts';
@@ -27,9 +27,8 @@ export async function prepareForPrint(
 ): Promise<PhotoFile | SpilledPhoto> {
   const { printLongEdgeMm, ppi = null, crop: frame = null } = order;
   const plan = planPrint(photo, { printLongEdgeMm, ppi, crop: frame });
-  const { crop, widthPx, heightPx } = plan;
-  if (widthPx === photo.widthPx && heightPx === photo.heightPx && crop.widthPx === photo.widthPx)
-    return photo;
+  const { widthPx, heightPx } = plan;
+  if (keepsPixels(photo, plan)) return photo;
   if (widthPx * heightPx > pixelLimit)
     throw new FileError(
       photo.path,

@@ -1,12 +1,19 @@
 import { readFile } from 'node:fs/promises';
 import { p3Profile, srgbProfile } from '../../core/colour/matrixProfile.ts';
-import { type CropFrame, mmPerInch, mmToPx } from '../../core/print/printPlan.ts';
+import {
+  type CropFrame,
+  keepsPixels,
+  mmPerInch,
+  planMargins,
+  planPrint,
+} from '../../core/print/printPlan.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import type { Intent } from '../colour/colourEngine.ts';
 import type { Conversion } from '../colour/finishPixels.ts';
 import type { TrimMarks } from '../colour/trimMarks.ts';
 import { FileError } from '../files/fileError.ts';
 import { profileSpace } from '../files/inputProfile.ts';
+import type { LayersKind } from '../files/layers/writeLayers.ts';
 import type { OutputFormat } from '../files/photoFile.ts';
 import { fileErrorFrom } from '../files/systemErrors.ts';
 
@@ -26,6 +33,22 @@ export interface PrintOrder {
   writesSize?: boolean;
 }
 
+/** The file itself, wherever it goes and whatever is painted. */
+export interface FileOrder {
+  format: OutputFormat;
+  /** Bits a sample; the photo's own unless given, and never more than the format holds. */
+  depth?: 8 | 16;
+  /** 1…100, for JPEG and WebP. */
+  quality?: number;
+  printLongEdgeMm: number;
+  /** How much of the photo's EXIF goes along; `essential` unless given. */
+  metadata?: 'all' | 'essential' | 'none';
+  /** Colours and place on paper; the photo's own unless given. */
+  print?: PrintOrder;
+  /** Writes the strata too, beside the picture and under its name, in the photo's own colours. */
+  layers?: LayersKind;
+}
+
 /** What a recipe's output settings ask for. */
 export function printOrderOf(output: OutputSettings): PrintOrder {
   const { profile, intent, blackPointCompensation, bleedMm, cropFrame: crop, trimMarks } = output;
@@ -38,6 +61,32 @@ export function printOrderOf(output: OutputSettings): PrintOrder {
     trimMarks,
     ppi: output.isResampled ? output.ppi : undefined,
   };
+}
+
+/** What file a recipe's output settings ask for, which tells its own size in any case. */
+export function fileOrderOf(output: OutputSettings): FileOrder {
+  const { format, depth, quality, printLongEdgeMm, metadata, layers } = output;
+  return {
+    format,
+    depth,
+    quality,
+    printLongEdgeMm,
+    metadata,
+    print: { ...printOrderOf(output), writesSize: true },
+    layers: layers === 'none' ? undefined : layers,
+  };
+}
+
+/** The part of an order that decides which pixels are painted. */
+export type SizeOrder = Pick<FileOrder, 'printLongEdgeMm' | 'print'>;
+
+/** Whether a print is painted from the photo's pixels as they are. */
+export function paintsOwnPixels(
+  photo: { widthPx: number; heightPx: number },
+  { printLongEdgeMm, print = {} }: SizeOrder,
+): boolean {
+  const { ppi = null, crop = null } = print;
+  return keepsPixels(photo, planPrint(photo, { printLongEdgeMm, ppi, crop }));
 }
 
 /** What is left to do to painted pixels before they are encoded. */
@@ -53,11 +102,6 @@ export interface FinishPlan {
   densityPpi: number | undefined;
   isNeeded: boolean;
 }
-
-/** Margin for trim marks, their length and width: common practice of the printing trade. */
-const slugMm = 8;
-const markMm = 5;
-const markLineMm = 0.25;
 
 /**
  * Plans what happens between painting and encoding.
@@ -87,15 +131,8 @@ export async function planFinish(
       };
   const ownPpi = Math.max(photo.widthPx, photo.heightPx) / (order.printLongEdgeMm / mmPerInch);
   const ppi = print.ppi ?? ownPpi;
-  const bleedPx = mmToPx(print.bleedMm ?? 0, ppi);
-  const trimMarks = print.trimMarks
-    ? {
-        slugPx: mmToPx(slugMm, ppi),
-        lengthPx: mmToPx(markMm, ppi),
-        linePx: Math.max(1, mmToPx(markLineMm, ppi)),
-        bleedPx,
-      }
-    : null;
+  const { bleedPx, marks } = planMargins(ppi, print.bleedMm ?? 0, print.trimMarks ?? false);
+  const trimMarks = marks && { ...marks, bleedPx };
   const isReduced = photo.depth === 16 && depth === 8;
   const writesSize = print.writesSize || print.ppi !== undefined || bleedPx > 0 || trimMarks !== null;
   return {

@@ -1,33 +1,28 @@
 import { useState } from 'react';
-import type { OpenedPhoto, OutputFormatName, SavedPainting } from '../../main/host/api/hostCommands.ts';
+import type { OpenedPhoto, SavedPainting } from '../../main/host/api/hostCommands.ts';
+import { useOutput } from '../app/outputWork.ts';
 import { host } from '../host/host.ts';
 import { sizeInWords } from '../opening/FolderList.tsx';
+import { planOf } from '../print/printMeasures.ts';
+import { formatOf, pixelsInWords, printSentence } from '../print/printWords.ts';
 import { Dialog } from '../shell/Dialog.tsx';
 import type { Look } from '../state/lookStore.ts';
-import { dialogStore } from '../state/panelStore.ts';
+import { dialogStore, panelStore } from '../state/panelStore.ts';
 import { sessionStore } from '../state/photoStore.ts';
 import { useStore } from '../state/store.ts';
+import { endComparing } from '../states/comparing.ts';
 import { ChooseFolder, chooseFolder } from './ChooseFolder.tsx';
 import { cancelSave, type SaveState, saveStore, startSave } from './saveWork.ts';
 
-const formats: readonly { value: OutputFormatName; name: string; ending: string; help: string }[] = [
-  { value: 'png', name: 'PNG', ending: '.png', help: 'Exact, every pixel as painted.' },
-  { value: 'tiff', name: 'TIFF', ending: '.tif', help: 'Exact, for the printer.' },
-  { value: 'jpeg', name: 'JPEG', ending: '.jpg', help: 'Small, for sending; not exact.' },
-  { value: 'webp', name: 'WebP', ending: '.webp', help: 'Small, for the web; not exact.' },
-];
-
-/** Saving the painting at full size: format, name, folder, then progress. */
+/** Saving the painting at full size: name and folder, what file the print page asks for, then progress. */
 export function SaveDialog({ photo, look }: { photo: OpenedPhoto; look: Look }) {
   const save = useStore(saveStore);
-  const [format, setFormat] = useState<OutputFormatName>(save.lastFormat);
-  const [depth, setDepth] = useState<8 | 16>(photo.depth);
-  const [quality, setQuality] = useState(92);
+  const output = useOutput();
   const [name, setName] = useState(`${photo.name.replace(/\.[^.]+$/, '')} painted`);
   const [folder, setFolder] = useState(photo.folder);
   const [isChoosingFolder, setChoosingFolder] = useState(false);
-  const chosen = formats.find(({ value }) => value === format)!;
-  const isExact = format === 'png' || format === 'tiff';
+  const { ending } = formatOf(output);
+  const plan = planOf(photo, output);
   const isSaving = save.progress !== null;
   const close = () => {
     if (!isSaving) saveStore.update((state) => ({ ...state, saved: null, trouble: null }));
@@ -53,12 +48,9 @@ export function SaveDialog({ photo, look }: { photo: OpenedPhoto; look: Look }) 
           void startSave({
             photoId: photo.photoId,
             parameters: look.parameters,
-            printLongEdgeMm: look.printLongEdgeMm,
             folder,
-            name: `${name.trim()}${chosen.ending}`,
-            format,
-            depth: isExact ? depth : undefined,
-            quality: isExact ? undefined : quality,
+            name: `${name.trim()}${ending}`,
+            output: { ...output, cropFrame: output.cropFrame ?? null },
           });
         }}
       >
@@ -75,7 +67,7 @@ export function SaveDialog({ photo, look }: { photo: OpenedPhoto; look: Look }) 
                 value={name}
                 onChange={(event) => setName(event.target.value)}
               />
-              <span className="field-ending">{chosen.ending}</span>
+              <span className="field-ending">{ending}</span>
             </span>
           </label>
           <div className="field">
@@ -87,68 +79,31 @@ export function SaveDialog({ photo, look }: { photo: OpenedPhoto; look: Look }) 
                 className="plain-button"
                 onClick={() => void chooseFolder(folder, setFolder, () => setChoosingFolder(true))}
               >
-                Change…
+                Change<span className="unseen"> the folder</span>…
               </button>
             </span>
           </div>
-          <fieldset className="field few-field">
-            <legend>Format</legend>
-            <span className="few">
-              {formats.map(({ value, name: shown }) => (
-                <label key={value} className="few-choice">
-                  <input
-                    className="unseen"
-                    type="radio"
-                    name="format"
-                    value={value}
-                    checked={value === format}
-                    onChange={() => setFormat(value)}
-                  />
-                  <span>{shown}</span>
-                </label>
-              ))}
+          <div className="field">
+            <span>Print</span>
+            <span className="field-folder">
+              <span className="field-print">{printSentence(photo, output)}</span>
+              <button
+                type="button"
+                className="plain-button"
+                onClick={() => {
+                  close();
+                  endComparing();
+                  panelStore.set('print');
+                }}
+              >
+                Change<span className="unseen"> the print</span>…
+              </button>
             </span>
-            <span className="field-help">{chosen.help}</span>
-          </fieldset>
-          {isExact ? (
-            <fieldset className="field few-field">
-              <legend>Depth</legend>
-              <span className="few">
-                {([8, 16] as const).map((bits) => (
-                  <label key={bits} className="few-choice">
-                    <input
-                      className="unseen"
-                      type="radio"
-                      name="depth"
-                      value={bits}
-                      checked={bits === depth}
-                      onChange={() => setDepth(bits)}
-                    />
-                    <span>{bits} bits</span>
-                  </label>
-                ))}
-              </span>
-            </fieldset>
-          ) : (
-            <label className="field">
-              <span>Quality</span>
-              <span className="field-quality">
-                <input
-                  className="track-input"
-                  type="range"
-                  min={50}
-                  max={100}
-                  value={quality}
-                  onChange={(event) => setQuality(Number(event.target.value))}
-                />
-                <output>{quality}</output>
-              </span>
-            </label>
-          )}
+          </div>
         </fieldset>
         <p className="save-size">
-          {photo.widthPx.toLocaleString('en')} × {photo.heightPx.toLocaleString('en')} px. The photograph
-          itself stays as it is; a name already taken gets a number.
+          {pixelsInWords(plan.fileWidthPx, plan.fileHeightPx)}. The photograph itself stays as it is; a name
+          already taken gets a number.
         </p>
         {save.trouble && (
           <p className="fault" role="alert">
@@ -205,8 +160,9 @@ function Saved({ saved, onClose }: { saved: SavedPainting; onClose: () => void }
       <p className="save-size">
         {saved.folder}
         <br />
-        {saved.widthPx.toLocaleString('en')} × {saved.heightPx.toLocaleString('en')} px,{' '}
-        {sizeInWords(saved.sizeBytes)}, painted in {(saved.tookMs / 1000).toFixed(1)} s.
+        {pixelsInWords(saved.widthPx, saved.heightPx)}, {sizeInWords(saved.sizeBytes)}, painted in{' '}
+        {(saved.tookMs / 1000).toFixed(1)} s.
+        {saved.layersName && ` Its layers are in ${saved.layersName}.`}
       </p>
       <div className="dialog-foot">
         {canReveal && (

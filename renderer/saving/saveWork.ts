@@ -1,7 +1,7 @@
 import { newCallId } from '../../core/hostProtocol/hostCaller.ts';
-import type { OutputFormatName, SavedPainting, SavePaintingInput } from '../../main/host/api/hostCommands.ts';
+import type { SavedPainting, SavePaintingInput } from '../../main/host/api/hostCommands.ts';
 import type { HostEvents } from '../../main/host/api/hostEvents.ts';
-import { takeDelivered } from '../app/memoryWork.ts';
+import { takeDelivered, tellWork } from '../app/memoryWork.ts';
 import { host, isUnwanted, type Trouble, troubleOf } from '../host/host.ts';
 import { addNotice } from '../state/noticeStore.ts';
 import { dialogStore } from '../state/panelStore.ts';
@@ -11,14 +11,12 @@ export interface SaveState {
   progress: { callId: string; fraction01: number; stage: string } | null;
   saved: SavedPainting | null;
   trouble: Trouble | null;
-  lastFormat: OutputFormatName;
 }
 
 export const saveStore = createStore<SaveState>({
   progress: null,
   saved: null,
   trouble: null,
-  lastFormat: 'png',
 });
 
 let work: AbortController | null = null;
@@ -33,9 +31,10 @@ export async function startSave(input: SavePaintingInput): Promise<void> {
     progress: { callId, fraction01: 0, stage: 'opening' },
     saved: null,
     trouble: null,
-    lastFormat: input.format,
   });
   try {
+    // What the recipe asks for is painted: the host has to know the last of it.
+    await tellWork();
     const saved = await host.call('savePainting', input, { signal: abort.signal, callId });
     takeDelivered(saved.memory);
     change({ progress: null, saved: dialogStore.get() === 'save' ? saved : null });

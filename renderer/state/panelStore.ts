@@ -2,8 +2,8 @@ import type { Stratum } from '../../core/parameters/table.ts';
 import { createStore } from './store.ts';
 import { changeView } from './viewStore.ts';
 
-/** The page open at the right: the presets, or the chosen stratum's controls. */
-export type PanelPage = 'presets' | 'stratum';
+/** The page open at the right: the presets, the chosen stratum's controls, or the print. */
+export type PanelPage = 'presets' | 'stratum' | 'print';
 
 export const panelStore = createStore<PanelPage>('stratum');
 

@@ -116,12 +116,22 @@ export class BlurEngine implements Engine {
     { onProgress: _, ...options }: BandOptions = {},
   ): Promise<ReturnType<typeof noTimes>> {
     const { pixels, release } = await this.paintPicture(photo, parameters, options);
-    await receive({ topRow: 0, rowCount: photo.heightPx, pixels });
+    const strata = options.withStrata ? this.#layersOf(photo as HeldPhoto, pixels) : undefined;
+    await receive({ topRow: 0, rowCount: photo.heightPx, pixels, strata });
     release();
     return noTimes();
   }
 
   async close(): Promise<void> {}
+
+  /** Nothing but paint: its body is the painting. */
+  #layersOf({ pictures: [{ pixels: ground, channels }] }: HeldPhoto, painted: Uint8Array | Uint16Array) {
+    const full = painted instanceof Uint16Array ? 1 : 257;
+    const body = new Uint16Array((painted.length / channels) * 3);
+    for (let i = 0; i < body.length; i += 1) body[i] = painted[Math.floor(i / 3) * channels + (i % 3)] * full;
+    const line = new Uint8Array(body.length / 3);
+    return { ground, groundChannels: channels, body, line, relief: null };
+  }
 
   async #blur(
     picture: DecodedPhoto,

@@ -217,7 +217,7 @@ describe('saving', () => {
       parameters: {},
       folder: t.photos,
       name: 'painted',
-      format: 'png' as const,
+      output: { format: 'png' as const },
     };
     const first = await t.caller.call('savePainting', ask, { callId });
     const second = await t.caller.call('savePainting', ask);
@@ -240,7 +240,12 @@ describe('saving', () => {
   it('leaves the photo and every other file as they were', async () => {
     const photo = await openFresh();
     const before = await readFile(photo.path);
-    const ask = { photoId: photo.photoId, parameters: {}, folder: t.photos, format: 'png' as const };
+    const ask = {
+      photoId: photo.photoId,
+      parameters: {},
+      folder: t.photos,
+      output: { format: 'png' as const },
+    };
     const saved = await t.caller.call('savePainting', { ...ask, name: photo.name });
     expect(saved.name).toBe('heron 2.png');
     expect(await readFile(photo.path)).toEqual(before);
@@ -251,7 +256,13 @@ describe('saving', () => {
   it('refuses a name that leads elsewhere or that some system cannot hold', async () => {
     const photo = await openFresh();
     for (const name of ['../out', 'a/b', 'a\\b', '.hidden', 'nul.png', 'a\u0000b', 'what?', ' ']) {
-      const ask = { photoId: photo.photoId, parameters: {}, folder: t.photos, name, format: 'png' as const };
+      const ask = {
+        photoId: photo.photoId,
+        parameters: {},
+        folder: t.photos,
+        name,
+        output: { format: 'png' as const },
+      };
       expect((await refusalOf(t.caller.call('savePainting', ask))).kind, name).toBe('BadRequest');
     }
     expect(await readdir(t.photos)).toEqual(['heron.png']);
@@ -259,7 +270,13 @@ describe('saving', () => {
 
   it('says in the file what painted it', async () => {
     const { photoId } = await openFresh();
-    const ask = { photoId, parameters: {}, folder: t.photos, name: 'told', format: 'jpeg' as const };
+    const ask = {
+      photoId,
+      parameters: {},
+      folder: t.photos,
+      name: 'told',
+      output: { format: 'jpeg' as const },
+    };
     const { path } = await t.caller.call('savePainting', ask);
     const exif = (await sharp(path).metadata()).exif!.toString('utf8');
     expect(exif).toMatch(/Painted by Oxgall: Low Water, State I\0/);
@@ -275,7 +292,7 @@ describe('saving', () => {
       parameters: {},
       folder: t.photos,
       name: 'p',
-      format: 'png' as const,
+      output: { format: 'png' as const },
     };
     const saving = refusalOf(t.caller.call('savePainting', ask, { signal: controller.signal }));
     await expect.poll(() => t.engine.paintingsStarted).toBe(1);
@@ -322,7 +339,7 @@ describe('what the user chose', () => {
 
   it('writes into no folder that was not chosen', async () => {
     const photo = await openFresh();
-    const ask = { photoId: photo.photoId, parameters: {}, name: 'p', format: 'png' as const };
+    const ask = { photoId: photo.photoId, parameters: {}, name: 'p', output: { format: 'png' as const } };
     for (const folder of [t.folder, '/', 'photos', `${t.photos}/..`])
       expect((await refusalOf(t.caller.call('savePainting', { ...ask, folder }))).kind, folder).toBe(
         'NotAllowed',

@@ -122,7 +122,7 @@ describe('the memory of a photo', () => {
       parameters: { ...statesOf(memory)[0].parameters, 'body.hold': 0.6 } as never,
       folder,
       name: 'out.png',
-      format: 'png',
+      output: { format: 'png' },
     });
     const history = saved.memory.recipe.histories[0];
     const { createHash } = await import('node:crypto');

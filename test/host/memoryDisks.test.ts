@@ -60,7 +60,7 @@ describe('a full disk', () => {
       parameters,
       folder: out,
       name: 'painted.png',
-      format: 'png',
+      output: { format: 'png' },
     });
     expect((await stat(saved.path)).size).toBeGreaterThan(0);
     await startAgain();

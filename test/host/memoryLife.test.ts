@@ -142,7 +142,7 @@ describe('a photo whose bytes have changed', () => {
       parameters: statesOf(kept)[0].parameters as never,
       folder,
       name: 'out.png',
-      format: 'png',
+      output: { format: 'png' },
     });
     const [delivery] = saved.memory.recipe.histories[0].deliveries;
     const hash = createHash('sha256')

@@ -64,7 +64,11 @@ describe('requests the host does not take', () => {
       ['paintStrata', { photoId: 'a', parameters: {}, level: 1.5, view: 'v' }, 'level'],
       ['paintStrata', { photoId: 'a', parameters: { k: {} }, level: 0, view: 'v' }, 'parameters'],
       ['paintSmallPicture', { photoId: 'a', parameters: {}, longEdgePx: 100_000 }, 'longEdgePx'],
-      ['savePainting', { photoId: 'a', parameters: {}, folder: '/', name: 'x', format: 'exe' }, 'format'],
+      [
+        'savePainting',
+        { photoId: 'a', parameters: {}, folder: '/', name: 'x', output: { format: 'exe' } },
+        'format',
+      ],
     ];
     for (const [name, input, where] of bad) {
       const answer = await refused(await t.post(name, input));

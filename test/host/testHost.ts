@@ -11,7 +11,10 @@ import type { HostParts } from '../../main/host/hostParts.ts';
 import { markOutOfGamut } from '../../main/host/markOutOfGamut.ts';
 import { readFacts, readQuick } from '../../main/host/quickPicture.ts';
 import { readScreenTable } from '../../main/host/readScreenTable.ts';
+import { deliverPainting } from '../../main/painting/deliverPainting.ts';
 import { holdPhoto } from '../../main/painting/holdPhoto.ts';
+import { paintPrepared } from '../../main/painting/paintPrepared.ts';
+import { readForPrint } from '../../main/painting/readForPrint.ts';
 import { openStores } from '../../main/store/openStores.ts';
 import { BlurEngine } from './blurEngine.ts';
 
@@ -44,6 +47,9 @@ export async function makeTestHost(changes: Partial<HostParts> = {}): Promise<Te
     loadFiles: async () => ({
       readPhoto,
       holdPhoto,
+      readForPrint,
+      paintPrepared,
+      deliverPainting,
       writePicture,
       readFacts,
       readQuick,

@@ -87,7 +87,7 @@ describe('output settings', () => {
   const frame = { aspect: 0.8, x01: 0.25, y01: 0.5 };
 
   it('change by what is named; the rest stays, fields of newer versions too', () => {
-    const own = changeOutput(sampleRecipe(), { bleedMm: 3, paperStock: 'laid' } as object);
+    const own = changeOutput(sampleRecipe(), { bleedMm: 3, paperStock: 'laid' });
     const changed = changeOutput(own, { ppi: 240, quality: undefined });
     expect(changed.work.output).toEqual({ ...own.work.output, ppi: 240 });
     expect(changed.work.output).toMatchObject({ bleedMm: 3, paperStock: 'laid', quality: 92 });

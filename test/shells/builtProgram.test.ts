@@ -63,7 +63,7 @@ describe('the built program', () => {
       parameters,
       folder,
       name: 'painted',
-      format: 'png',
+      output: { format: 'png' },
     });
     const file = await sharp(saved.path).raw().toBuffer({ resolveWithObject: true });
     expect(file.info).toMatchObject({ width: widthPx, height: heightPx, channels: 3 });
@@ -126,7 +126,7 @@ describe('the built program', () => {
       const { caller, kill, listen } = await start([large]);
       const events = readEvents(await listen());
       const { photoId } = await caller.call('openPhoto', { path: large });
-      const ask = { photoId, parameters: {}, folder, name: 'painted', format: 'tiff' as const };
+      const ask = { photoId, parameters: {}, folder, name: 'painted', output: { format: 'tiff' as const } };
       const saving = caller.call('savePainting', ask).then(
         () => 'saved',
         () => 'broken off',
@@ -147,7 +147,7 @@ describe('the built program', () => {
   it('ends politely while it is painting, and leaves nothing unfinished', async () => {
     const { caller, end } = await start();
     const { photoId } = await caller.call('openPhoto', { path: photo });
-    const ask = { photoId, parameters: {}, folder, name: 'painted', format: 'png' as const };
+    const ask = { photoId, parameters: {}, folder, name: 'painted', output: { format: 'png' as const } };
     const saving = caller.call('savePainting', ask).catch(() => undefined);
     expect(await end()).toBe(0);
     await saving;

@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { outputChangeSchema } from '../../../core/recipes/outputSettings.ts';
 import type { HostCommands } from './hostCommands.ts';
 import { parameters, path, photoId } from './inputParts.ts';
 import { memorySchemas } from './memorySchemas.ts';
@@ -71,12 +72,9 @@ export const commandSchemas = {
     /** A folder the user chose or opened a photo from, and a file name without folders. */
     folder: path,
     name: z.string().min(1).max(200),
-    format: outputFormat,
-    depth: z.union([z.literal(8), z.literal(16)]).optional(),
-    quality: z.int().min(1).max(100).optional(),
+    output: outputChangeSchema.optional(),
     /** `number` (the default) writes beside a file of that name; `replace` is for a file the user agreed to replace. */
     whenTaken: z.enum(['number', 'replace']).optional(),
-    printLongEdgeMm,
   }),
   listFolder: z.strictObject({ path: path.optional() }),
   chooseWithDialog: z.strictObject({

@@ -1,5 +1,6 @@
 import type { Parameters } from '../../../core/parameters/table.ts';
 import type { Rect } from '../../../core/pixels/photo.ts';
+import type { OutputChange } from '../../../core/recipes/outputSettings.ts';
 import type { MemoryCommands, PhotoMemory, PresetOffer } from './memoryCommands.ts';
 import type { RunCommands } from './runCommands.ts';
 import type { SeriesCommands } from './seriesCommands.ts';
@@ -34,7 +35,7 @@ export interface HostCommands extends MemoryCommands, SeriesCommands, RunCommand
    * are. Small pictures are converted already.
    */
   readScreenTable: { input: { photoId: string }; frame: ScreenTableHeader };
-  /** Paints at full resolution and writes a file; progress comes as events under the call's id. */
+  /** Paints at full resolution for print, as the photo's recipe asks, and writes a file; progress comes as events under the call's id. */
   savePainting: { input: SavePaintingInput; output: SavedPainting };
   /** Folders and photos in a folder; the home folder unless one is named that an earlier answer showed. */
   listFolder: { input: { path?: string }; output: FolderListing };
@@ -196,11 +197,9 @@ export interface SavePaintingInput {
   parameters: Partial<Parameters>;
   folder: string;
   name: string;
-  format: OutputFormatName;
-  depth?: 8 | 16;
-  quality?: number;
+  /** Over the print settings of the photo's recipe, for this file alone. */
+  output?: OutputChange;
   whenTaken?: 'number' | 'replace';
-  printLongEdgeMm?: number;
 }
 
 export interface SavedPainting {
@@ -208,6 +207,8 @@ export interface SavedPainting {
   path: string;
   name: string;
   folder: string;
+  /** Of the file or folder of layers beside it; null where none were asked for. */
+  layersName: string | null;
   widthPx: number;
   heightPx: number;
   sizeBytes: number;
