@@ -5,7 +5,7 @@ import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
 import type { Choice, CommandName, HostCommands, OpenedPhoto, Session } from './api/hostCommands.ts';
 import { allowOpening, type HostState } from './host.ts';
-import { listFolder, listPlaces } from './listFolder.ts';
+import { listFolder, listPlaces, listProfilePlaces } from './listFolder.ts';
 import { createMemoryHandlers, readShelf } from './memoryHandlers.ts';
 import type { OpenPhoto } from './openPhoto.ts';
 import { PaintCommands } from './paintCommands.ts';
@@ -62,8 +62,14 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
         openPaths: () => photos.all.map((photo) => photo.path),
         memories,
       }),
-    listFolder: async ({ path }) => {
+    describeProfile: async ({ photoId, profile }) => {
+      if (typeof profile === 'object') grants.checkProfile(profile.file);
+      const files = await parts.loadFiles();
+      return files.describeProfile(photos.find(photoId).path, profile);
+    },
+    listFolder: async ({ path, wanted }) => {
       const places = await listPlaces();
+      if (wanted === 'profiles') places.push(...(await listProfilePlaces()));
       for (const place of places) grants.offerFolder(place.path);
       const folder = grants.checkListing(path ?? homedir());
       const listing = await listFolder(folder);
@@ -161,6 +167,7 @@ async function chooseWithDialog(state: HostState, input: CheckedInput<'chooseWit
   const path = await desktop.choose(input);
   if (!path) return { path: null, folder: null, name: null };
   if (input.kind === 'photo') allowOpening(state, path);
+  if (input.kind === 'profile') state.grants.allowProfile(path);
   if (input.kind === 'folder') {
     state.grants.offerFolder(path);
     state.grants.allowWriting(path);

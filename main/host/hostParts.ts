@@ -11,7 +11,7 @@ import type {
 } from '../painting/deliverPainting.ts';
 import type { SizeOrder } from '../painting/printOrder.ts';
 import type { Stores } from '../store/openStores.ts';
-import type { ChooseInput, DemoSeries, DesktopCapabilities } from './api/hostCommands.ts';
+import type { ChooseInput, DemoSeries, DesktopCapabilities, ProfileFacts } from './api/hostCommands.ts';
 
 /** Reads and writes pictures. */
 export interface HostFiles {
@@ -51,6 +51,8 @@ export interface HostFiles {
   readQuick(path: string, facts: PhotoFacts, level: number): Promise<DecodedPhoto | null>;
   /** The way of the photo's colours to the screen, for `throughTable`; null where there is nothing to convert. */
   readScreenTable(path: string): Promise<Uint8Array | null>;
+  /** What a file for a profile would be. */
+  describeProfile(path: string, profile: PrintProfile): Promise<ProfileFacts>;
   /** Marks the pixels of a small painted picture that a printing condition cannot show: one byte each. */
   markOutOfGamut(path: string, rgba: Uint8Array, profile: PrintProfile): Promise<Uint8Array>;
 }

@@ -36,6 +36,7 @@ export function installedParts(options: {
         { readForPrint },
         { paintPrepared },
         { deliverPainting },
+        { describeProfile },
       ] = await Promise.all([
         import('../painting/holdPhoto.ts'),
         import('../files/writePicture.ts'),
@@ -46,6 +47,7 @@ export function installedParts(options: {
         import('../painting/readForPrint.ts'),
         import('../painting/paintPrepared.ts'),
         import('../painting/deliverPainting.ts'),
+        import('./describeProfile.ts'),
       ]);
       await removeAbandonedSpills();
       const { readFacts, readQuick } = quick;
@@ -59,6 +61,7 @@ export function installedParts(options: {
         readFacts,
         readQuick,
         readScreenTable,
+        describeProfile,
         markOutOfGamut,
       };
     }),

@@ -14,8 +14,13 @@ export function isPhotoName(name: string): boolean {
   return photoExtensions.has(extname(name).toLowerCase());
 }
 
+/** Whether a file name is one of a colour profile. */
+export function isProfileName(name: string): boolean {
+  return /\.ic[cm]$/i.test(name);
+}
+
 /**
- * The folders and photos in a folder, in natural order; hidden ones and other files are left out.
+ * The folders, photos and colour profiles in a folder, in natural order; hidden ones and other files are left out.
  * @param folder absolute
  * @throws FileError where it cannot be read
  */
@@ -34,12 +39,33 @@ export async function listFolder(folder: string): Promise<Omit<FolderListing, 'p
     crumbs: crumbsOf(folder),
     folders: found.flatMap((entry) => (entry?.kind === 'folder' ? [entry.folder] : [])),
     photos: found.flatMap((entry) => (entry?.kind === 'photo' ? [entry.photo] : [])),
+    profiles: found.flatMap((entry) => (entry?.kind === 'profile' ? [entry.profile] : [])),
     truncated: shown.length > maximumEntries,
     writable: await access(folder, constants.W_OK).then(
       () => true,
       () => false,
     ),
   };
+}
+
+/** Where the system and its programs keep colour profiles. */
+export async function listProfilePlaces(home: string = homedir()): Promise<{ name: string; path: string }[]> {
+  const known: Partial<Record<NodeJS.Platform, [name: string, path: string][]>> = {
+    linux: [
+      ['Profiles', '/usr/share/color/icc'],
+      ['My profiles', join(home, '.local/share/icc')],
+    ],
+    darwin: [
+      ['Profiles', '/Library/ColorSync/Profiles'],
+      ['System profiles', '/System/Library/ColorSync/Profiles'],
+      ['My profiles', join(home, 'Library/ColorSync/Profiles')],
+    ],
+    win32: [['Profiles', 'C:\\Windows\\System32\\spool\\drivers\\color']],
+  };
+  const places: { name: string; path: string }[] = [];
+  for (const [name, path] of known[process.platform] ?? [])
+    if (await isFolder(path)) places.push({ name, path });
+  return places;
 }
 
 /** Where people keep photos: home, its pictures, removable and network volumes. */
@@ -59,13 +85,15 @@ export async function listPlaces(home: string = homedir()): Promise<{ name: stri
 
 type Entry =
   | { kind: 'folder'; folder: FolderListing['folders'][number] }
-  | { kind: 'photo'; photo: FolderListing['photos'][number] };
+  | { kind: 'photo'; photo: FolderListing['photos'][number] }
+  | { kind: 'profile'; profile: FolderListing['profiles'][number] };
 
 async function look(folder: string, name: string): Promise<Entry | null> {
   const path = join(folder, name);
   // A link that leads nowhere, or a file that went meanwhile, is simply not shown.
   const facts = await stat(path).catch(() => null);
   if (facts?.isDirectory()) return { kind: 'folder', folder: { name, path } };
+  if (facts?.isFile() && isProfileName(name)) return { kind: 'profile', profile: { name, path } };
   if (!facts?.isFile() || !isPhotoName(name)) return null;
   return {
     kind: 'photo',

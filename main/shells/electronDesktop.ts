@@ -8,6 +8,11 @@ const photoFilter: FileFilter = {
   extensions: ['jpg', 'jpeg', 'png', 'tif', 'tiff', 'webp', 'avif', 'gif'],
 };
 
+const openFilters: Partial<Record<string, FileFilter[]>> = {
+  photo: [photoFilter],
+  profile: [{ name: 'Colour profiles', extensions: ['icc', 'icm'] }],
+};
+
 const saveFilters: Record<OutputFormatName, FileFilter> = {
   jpeg: { name: 'JPEG', extensions: ['jpg', 'jpeg'] },
   png: { name: 'PNG', extensions: ['png'] },
@@ -38,8 +43,8 @@ export function electronDesktop(
         return canceled || !filePath ? null : filePath;
       }
       const { canceled, filePaths } = await dialog.showOpenDialog(window, {
-        filters: kind === 'photo' ? [photoFilter] : undefined,
-        properties: kind === 'photo' ? ['openFile'] : ['openDirectory'],
+        filters: openFilters[kind],
+        properties: kind === 'folder' ? ['openDirectory'] : ['openFile'],
       });
       return canceled ? null : (filePaths[0] ?? null);
     },

@@ -9,20 +9,22 @@ let lastShown: string | undefined;
 interface FolderListProps {
   /** Where to start; home unless given. */
   startPath?: string;
-  /** Photos can be chosen, or only folders. */
-  choose: 'photo' | 'folder';
+  /** What can be chosen; with profiles no photos are shown. */
+  choose: 'photo' | 'folder' | 'profile';
   onPhoto?: (path: string) => void;
+  onProfile?: (path: string) => void;
   onFolder?: (listing: FolderListing) => void;
 }
 
 /** The folders and photos of this machine, where the shell has no dialog of its own. */
-export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListProps) {
+export function FolderList({ startPath, choose, onPhoto, onProfile, onFolder }: FolderListProps) {
   const [listing, setListing] = useState<FolderListing | null>(null);
   const [trouble, setTrouble] = useState<Trouble | null>(null);
   const show = useCallback(
     async (path?: string) => {
       try {
-        const next = await host.call('listFolder', { path });
+        const wanted = choose === 'profile' ? 'profiles' : undefined;
+        const next = await host.call('listFolder', { path, wanted });
         setListing(next);
         for (const { path: known } of [next, ...next.folders, ...next.places, ...next.crumbs])
           offered.add(known);
@@ -35,7 +37,7 @@ export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListP
         return false;
       }
     },
-    [onFolder],
+    [choose, onFolder],
   );
   useEffect(() => {
     const start = startPath && offered.has(startPath) ? startPath : lastShown;
@@ -44,6 +46,8 @@ export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListP
     });
   }, [show, startPath]);
   if (!listing) return <p className="folder-wait">{trouble ? trouble.message : 'Reading the folder…'}</p>;
+  const photos = choose === 'profile' ? [] : listing.photos;
+  const profiles = choose === 'profile' ? listing.profiles : [];
   return (
     <div className="folder">
       <nav className="folder-places" aria-label="Places">
@@ -89,7 +93,7 @@ export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListP
               </button>
             </li>
           ))}
-          {listing.photos.map((photo) => (
+          {photos.map((photo) => (
             <li key={photo.path}>
               <button
                 type="button"
@@ -102,8 +106,17 @@ export function FolderList({ startPath, choose, onPhoto, onFolder }: FolderListP
               </button>
             </li>
           ))}
-          {listing.folders.length + listing.photos.length === 0 && (
-            <li className="folder-empty">No photographs here.</li>
+          {profiles.map((profile) => (
+            <li key={profile.path}>
+              <button type="button" className="row-button" onClick={() => onProfile?.(profile.path)}>
+                {profile.name}
+              </button>
+            </li>
+          ))}
+          {listing.folders.length + photos.length + profiles.length === 0 && (
+            <li className="folder-empty">
+              {choose === 'profile' ? 'No colour profiles here.' : 'No photographs here.'}
+            </li>
           )}
           {listing.truncated && <li className="folder-empty">There is more here than this list shows.</li>}
         </ul>

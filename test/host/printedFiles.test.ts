@@ -199,4 +199,27 @@ describe('a colour profile', () => {
     expect((await save()).name).toBe('painted.tif');
     await rm(file);
   });
+
+  it('is found by its folder, and told by its name, its inks and whether it changes anything', async () => {
+    await writeFile(join(t.photos, 'wide.icc'), p3Profile());
+    await t.host.offerPath(t.photos);
+    expect((await t.caller.call('listFolder', { path: t.photos })).profiles).toEqual([
+      { name: 'wide.icc', path: join(t.photos, 'wide.icc') },
+    ]);
+    const told = (profile: 'keep' | 'srgb' | { file: string }) =>
+      t.caller.call('describeProfile', { photoId, profile });
+    expect(await told({ file: join(t.photos, 'wide.icc') })).toEqual({
+      name: 'Display P3',
+      inks: 'RGB',
+      isConverted: true,
+    });
+    expect(await told('keep')).toMatchObject({ inks: 'RGB', isConverted: false });
+    // A photo without a profile is taken for sRGB: nothing to convert.
+    expect(await told('srgb')).toMatchObject({ isConverted: false });
+    if (!existsSync(inks)) return;
+    await t.caller.call('listFolder', { wanted: 'profiles' });
+    await t.caller.call('listFolder', { path: '/usr/share/color/icc' });
+    await t.caller.call('listFolder', { path: '/usr/share/color/icc/ghostscript' });
+    expect(await told({ file: inks })).toMatchObject({ inks: 'CMYK', isConverted: true });
+  });
 });

@@ -6,6 +6,7 @@ import { createHostCaller, type HostCaller } from '../../core/hostProtocol/hostC
 import { readPhoto } from '../../main/files/readPhoto.ts';
 import { writePicture } from '../../main/files/writePicture.ts';
 import type { HostCommands } from '../../main/host/api/hostCommands.ts';
+import { describeProfile } from '../../main/host/describeProfile.ts';
 import { createHost, type Host } from '../../main/host/host.ts';
 import type { HostParts } from '../../main/host/hostParts.ts';
 import { markOutOfGamut } from '../../main/host/markOutOfGamut.ts';
@@ -54,6 +55,7 @@ export async function makeTestHost(changes: Partial<HostParts> = {}): Promise<Te
       readFacts,
       readQuick,
       readScreenTable,
+      describeProfile,
       markOutOfGamut,
     }),
     loadStores: async () => openStores(join(folder, 'data')),

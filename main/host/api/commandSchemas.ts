@@ -24,6 +24,8 @@ const region = z.strictObject({
 
 const printLongEdgeMm = z.number().min(10).max(10_000).optional();
 
+const profile = z.union([z.enum(['keep', 'srgb', 'p3']), z.strictObject({ file: path })]);
+
 const outputFormat = z.enum(['jpeg', 'png', 'tiff', 'webp']);
 
 export const commandSchemas = {
@@ -62,9 +64,10 @@ export const commandSchemas = {
     photoId,
     parameters,
     longEdgePx: z.int().min(16).max(512),
-    profile: z.union([z.enum(['keep', 'srgb', 'p3']), z.strictObject({ file: path })]),
+    profile,
     printLongEdgeMm,
   }),
+  describeProfile: z.strictObject({ photoId, profile }),
   readScreenTable: z.strictObject({ photoId }),
   savePainting: z.strictObject({
     photoId,
@@ -76,9 +79,9 @@ export const commandSchemas = {
     /** `number` (the default) writes beside a file of that name; `replace` is for a file the user agreed to replace. */
     whenTaken: z.enum(['number', 'replace']).optional(),
   }),
-  listFolder: z.strictObject({ path: path.optional() }),
+  listFolder: z.strictObject({ path: path.optional(), wanted: z.literal('profiles').optional() }),
   chooseWithDialog: z.strictObject({
-    kind: z.enum(['photo', 'folder', 'save']),
+    kind: z.enum(['photo', 'folder', 'save', 'profile']),
     /** Where the dialog starts; only for `save`. */
     folder: path.optional(),
     name: z.string().min(1).max(200).optional(),

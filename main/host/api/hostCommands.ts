@@ -38,7 +38,9 @@ export interface HostCommands extends MemoryCommands, SeriesCommands, RunCommand
   /** Paints at full resolution for print, as the photo's recipe asks, and writes a file; progress comes as events under the call's id. */
   savePainting: { input: SavePaintingInput; output: SavedPainting };
   /** Folders and photos in a folder; the home folder unless one is named that an earlier answer showed. */
-  listFolder: { input: { path?: string }; output: FolderListing };
+  listFolder: { input: { path?: string; wanted?: 'profiles' }; output: FolderListing };
+  /** What a file for that profile would be. */
+  describeProfile: { input: { photoId: string; profile: PrintProfileName }; output: ProfileFacts };
   /** The system's own dialog, where `session.desktop.fileDialogs` says there is one. */
   chooseWithDialog: { input: ChooseInput; output: Choice };
   listRecents: { input: Record<string, never>; output: { recents: Recent[] } };
@@ -182,8 +184,19 @@ export interface MarkOutOfGamutInput {
   photoId: string;
   parameters: Partial<Parameters>;
   longEdgePx: number;
-  profile: 'keep' | 'srgb' | 'p3' | { file: string };
+  profile: PrintProfileName;
   printLongEdgeMm?: number;
+}
+
+/** The photo's own, sRGB, Display P3, or an ICC file. */
+export type PrintProfileName = 'keep' | 'srgb' | 'p3' | { file: string };
+
+export interface ProfileFacts {
+  /** What it calls itself; null where it does not say. */
+  name: string | null;
+  inks: 'RGB' | 'CMYK';
+  /** The photo's painting has other colours, so that intent and black point matter. */
+  isConverted: boolean;
 }
 
 export interface ScreenTableHeader {
@@ -222,17 +235,19 @@ export interface FolderListing {
   name: string;
   /** From the root down to this folder; each may be listed. */
   crumbs: { name: string; path: string }[];
-  /** Starting points: home, pictures, mounted volumes. */
+  /** Starting points: home, pictures, mounted volumes; where profiles lie too if those are wanted. */
   places: { name: string; path: string }[];
   folders: { name: string; path: string }[];
   photos: { name: string; path: string; sizeBytes: number; modifiedAt: string }[];
+  /** Colour profiles, by their names. */
+  profiles: { name: string; path: string }[];
   /** The folder holds more than the answer does. */
   truncated: boolean;
   writable: boolean;
 }
 
 export interface ChooseInput {
-  kind: 'photo' | 'folder' | 'save';
+  kind: 'photo' | 'folder' | 'save' | 'profile';
   folder?: string;
   name?: string;
   format?: OutputFormatName;
