@@ -16,6 +16,7 @@ import './styles/sheets.css';
 import './styles/presets.css';
 import './styles/states.css';
 import './styles/wall.css';
+import './styles/print.css';
 import { createRoot } from 'react-dom/client';
 import { startEaselWork } from './app/easelWork.ts';
 import { takeHostEvent } from './app/hostEvents.ts';

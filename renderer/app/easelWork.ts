@@ -5,12 +5,15 @@ import { bandSpan, layOutSection } from '../geometry/sectionLayout.ts';
 import { type PlacedView, placeView } from '../geometry/viewTransform.ts';
 import { PaintDirector } from '../painting/paintDirector.ts';
 import { forgetPresetPictures, paintPresetPictures } from '../presets/presetPictures.ts';
+import { wholeLongEdgeMm } from '../print/printMeasures.ts';
 import { currentLook, type Look, lookStore, strataBottomUp, strengthOf } from '../state/lookStore.ts';
 import { comparisonStore } from '../state/memoryStore.ts';
+import { outputStore } from '../state/outputStore.ts';
 import { paintStore } from '../state/paintStore.ts';
 import { photoStore, sessionStore } from '../state/photoStore.ts';
 import { placedViewStore, type ViewState, viewStore } from '../state/viewStore.ts';
 import { lookOfSide } from '../states/comparing.ts';
+import { currentOutput } from './outputWork.ts';
 
 export const director = new PaintDirector(compositor);
 /** Paints what is compared with the easel; idle while nothing is. */
@@ -36,6 +39,14 @@ export function placeBandSpan(placed: PlacedView, view: ViewState) {
 function easelLook(): Look | null {
   const compared = comparisonStore.get();
   return compared ? lookOfSide(compared.right) : currentLook();
+}
+
+/** The look with the whole photo's length on paper, as what is asked of the engine means it. */
+function atPrintScale(look: Look | null): Look | null {
+  const photo = photoStore.get();
+  if (!photo || !look) return look;
+  const output = { ...currentOutput(), printLongEdgeMm: look.printLongEdgeMm };
+  return output.cropFrame ? { ...look, printLongEdgeMm: wholeLongEdgeMm(photo, output) } : look;
 }
 
 let isSceneAwaited = false;
@@ -104,7 +115,7 @@ export function startEaselWork(): void {
   leftDirector.onShown = showSoon;
   const paintSmall = () => {
     const photo = photoStore.get();
-    if (photo) paintPresetPictures(photo.photoId, currentLook()?.printLongEdgeMm);
+    if (photo) paintPresetPictures(photo.photoId, atPrintScale(currentLook())?.printLongEdgeMm);
   };
   director.onSettled = paintSmall;
   // A preset that was just made has no picture yet.
@@ -122,12 +133,14 @@ export function startEaselWork(): void {
   });
   const layLooks = () => {
     const compared = comparisonStore.get();
-    director.setLook(easelLook());
+    director.setLook(atPrintScale(easelLook()));
     leftDirector.setPhoto(compared ? photoStore.get() : null);
-    leftDirector.setLook(compared && lookOfSide(compared.left));
+    leftDirector.setLook(atPrintScale(compared && lookOfSide(compared.left)));
     showSoon();
   };
   lookStore.subscribe(layLooks);
+  // A crop makes more of the paper's length of each pixel, and so its strokes wider on the photo.
+  outputStore.subscribe(layLooks);
   comparisonStore.subscribe(layLooks);
   viewStore.subscribe(() => {
     placeStage();

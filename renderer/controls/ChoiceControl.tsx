@@ -2,6 +2,7 @@ import { useId } from 'react';
 import { type ChoiceParameter, type ParameterKey, parameterTable } from '../../core/parameters/table.ts';
 import { setParameter } from '../state/lookStore.ts';
 import { ControlFrame } from './ControlFrame.tsx';
+import { FewChoices } from './FewChoices.tsx';
 
 interface ChoiceControlProps {
   parameterKey: ParameterKey;
@@ -25,22 +26,14 @@ export function ChoiceControl({ parameterKey, value, presetValue }: ChoiceContro
       help={chosen?.help}
     >
       {parameter.choices.length <= fewChoices ? (
-        <fieldset className="few" aria-describedby={helpId}>
-          <legend className="unseen">{parameter.label}</legend>
-          {parameter.choices.map((choice) => (
-            <label key={choice.value} className="few-choice" title={choice.help}>
-              <input
-                className="unseen"
-                type="radio"
-                name={parameterKey}
-                value={choice.value}
-                checked={choice.value === value}
-                onChange={() => set(choice.value)}
-              />
-              <span>{choice.label}</span>
-            </label>
-          ))}
-        </fieldset>
+        <FewChoices
+          legend={parameter.label}
+          name={parameterKey}
+          choices={parameter.choices}
+          value={value}
+          describedBy={helpId}
+          onChoose={set}
+        />
       ) : (
         <select
           className="choice"

@@ -2,6 +2,7 @@ import type { ReactNode } from 'react';
 import type { ParameterKey } from '../../core/parameters/table.ts';
 import { parameterTable } from '../../core/parameters/table.ts';
 import { resetParameter } from '../state/lookStore.ts';
+import { PlainControl } from './PlainControl.tsx';
 
 interface ControlFrameProps {
   parameterKey: ParameterKey;
@@ -12,14 +13,18 @@ interface ControlFrameProps {
   children: ReactNode;
 }
 
-/** Name and value on one line, the control beneath, and a sentence that says what it does. */
+/** The control of a parameter. */
 export function ControlFrame({ parameterKey, isChanged, helpId, value, help, children }: ControlFrameProps) {
   const parameter = parameterTable[parameterKey];
   return (
-    <div className="control" data-key={parameterKey}>
-      <div className="control-head">
-        <span className="control-name">{parameter.label}</span>
-        {isChanged && (
+    <PlainControl
+      name={parameter.label}
+      value={value}
+      help={help ?? parameter.help}
+      helpId={helpId}
+      dataKey={parameterKey}
+      reset={
+        isChanged && (
           <button
             type="button"
             className="control-reset"
@@ -28,13 +33,10 @@ export function ControlFrame({ parameterKey, isChanged, helpId, value, help, chi
           >
             reset<span className="unseen"> {parameter.label.toLowerCase()} to the preset’s value</span>
           </button>
-        )}
-        <span className="control-value">{value}</span>
-      </div>
+        )
+      }
+    >
       {children}
-      <p className="control-help" id={helpId}>
-        {help ?? parameter.help}
-      </p>
-    </div>
+    </PlainControl>
   );
 }

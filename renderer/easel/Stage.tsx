@@ -1,6 +1,7 @@
 import { type KeyboardEvent, type PointerEvent, useEffect, useRef } from 'react';
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { nextScale, type Point } from '../geometry/viewTransform.ts';
+import { CropOverlay } from '../print/CropOverlay.tsx';
 import { lookStore } from '../state/lookStore.ts';
 import { useStore } from '../state/store.ts';
 import { changeView, placedViewStore, viewStore } from '../state/viewStore.ts';
@@ -81,6 +82,7 @@ export function Stage({ photo, canvasHost }: StageProps) {
         onDrop={(event) => dropState(event.dataTransfer.getData(stateDragType))}
       >
         <div className="stage-canvas" ref={canvasHost} />
+        <CropOverlay photo={photo} />
       </section>
       <Cut photo={photo} />
       <SplitDivider photo={photo} />

@@ -1,6 +1,7 @@
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
+import { changeOutput, useOutput } from '../app/outputWork.ts';
 import { ValueField } from '../controls/ValueField.tsx';
-import { changeLook, lookStore } from '../state/lookStore.ts';
+import { longestPrintMm, planOf, readLengthMm, shortestPrintMm } from '../print/printMeasures.ts';
 import { useStore } from '../state/store.ts';
 import { chooseSurround, placedViewStore, type Surround, viewStore } from '../state/viewStore.ts';
 import { fitPicture, showFullSize, zoomPicture } from './viewMoves.ts';
@@ -11,18 +12,13 @@ const surrounds: readonly { value: Surround; name: string }[] = [
   { value: 'dark', name: 'Dark surround' },
 ];
 
-const shortestPrintMm = 10;
-const longestPrintMm = 10_000;
-
 /** How the picture is looked at, and the size it will be printed at. */
 export function StageFoot({ photo }: { photo: OpenedPhoto }) {
   const placed = useStore(placedViewStore);
   const { intent, surround, stage } = useStore(viewStore);
-  const printLongEdgeMm = useStore(lookStore, (history) => history?.present.printLongEdgeMm ?? 300);
+  const output = useOutput();
   const scale = placed?.scale ?? 1;
-  const longEdgePx = Math.max(photo.widthPx, photo.heightPx);
-  const shortMm = Math.round((Math.min(photo.widthPx, photo.heightPx) * printLongEdgeMm) / longEdgePx);
-  const ppi = Math.round((longEdgePx * 25.4) / printLongEdgeMm);
+  const { widthMm, heightMm, ppi } = planOf(photo, output);
   return (
     <div className="stage-foot">
       <button
@@ -53,10 +49,10 @@ export function StageFoot({ photo }: { photo: OpenedPhoto }) {
         Print{' '}
         <ValueField
           label="Long edge of the print, typed"
-          shown={`${printLongEdgeMm} mm`}
+          shown={`${output.printLongEdgeMm} mm`}
           onTyped={typePrintLongEdge}
         />{' '}
-        × {shortMm} mm, {ppi} ppi
+        × {Math.round(Math.min(widthMm, heightMm))} mm, {Math.round(ppi)} ppi
       </span>
       <fieldset className="surrounds">
         <legend className="unseen">Surround</legend>
@@ -87,11 +83,9 @@ function typeZoom(text: string, stage: { widthPx: number; heightPx: number }): s
 }
 
 function typePrintLongEdge(text: string): string | null {
-  const match = /^\s*([\d.,]+)\s*(mm|cm|in)?\s*$/i.exec(text);
-  const factor = { mm: 1, cm: 10, in: 25.4 }[(match?.[2] ?? 'mm').toLowerCase()] ?? 1;
-  const mm = Math.round(Number(match?.[1].replace(',', '.')) * factor * 10) / 10;
-  if (!Number.isFinite(mm) || mm < shortestPrintMm || mm > longestPrintMm)
+  const mm = readLengthMm(text);
+  if (mm === null || mm < shortestPrintMm || mm > longestPrintMm)
     return `Takes ${shortestPrintMm} to ${longestPrintMm} mm; cm and in may be written too.`;
-  changeLook({ printLongEdgeMm: mm }, 'Print size');
+  changeOutput({ printLongEdgeMm: mm });
   return null;
 }

@@ -18,6 +18,11 @@ export function isExact({ format }: Pick<OutputSettings, 'format'>): boolean {
   return format === 'png' || format === 'tiff';
 }
 
+/** Whether a format holds the four inks of a CMYK profile. */
+export function holdsInks(format: OutputSettings['format']): boolean {
+  return format === 'tiff' || format === 'jpeg';
+}
+
 /** A profile in few words. */
 export function profileName(profile: OutputSettings['profile']): string {
   if (profile === 'keep') return 'the photograph’s own colours';

@@ -13,6 +13,7 @@ const placeKeys: readonly { keys: string; does: string }[] = [
   { keys: 'Shift and Enter, on a band’s name', does: 'Lift the band off, or lay it down again' },
   { keys: 'Arrows, Home, End, on a state', does: 'Walk the thread; Tab goes into the state’s card' },
   { keys: 'Escape, on a state', does: 'Close its card' },
+  { keys: 'Arrows, on the crop frame', does: 'Move it; with Shift, farther' },
   { keys: 'Delete, on a control', does: 'Back to the preset’s value' },
   { keys: 'Up and Down, in a value', does: 'One step; with Shift, ten' },
 ];

@@ -86,6 +86,7 @@ export const keyCommands: readonly KeyCommand[] = [
   { keys: ['b'], shown: 'B', does: 'Controls of the body', run: () => chooseStratum('body') },
   { keys: ['i'], shown: 'I', does: 'Controls of the line, the ink', run: () => chooseStratum('line') },
   { keys: ['r'], shown: 'R', does: 'Controls of the relief', run: () => chooseStratum('relief') },
+  { keys: ['f'], shown: 'F', does: 'Print: the file for the printer', run: () => panelStore.set('print') },
   {
     keys: ['escape'],
     shown: 'Escape',
