@@ -10,22 +10,18 @@ export interface ColourMeasures {
   readonly focus: number;
 }
 
-/** What sample windows of a frame, painted at full resolution, tell of its texture. */
-export interface WindowMeasures {
-  /** Noise floor and hold they were painted with. */
-  readonly noiseFloor: number;
-  readonly hold: number;
+/** What a painted body shows of its handling. */
+export interface Texture {
   readonly flatShare01: number;
   readonly planeMm: number;
   readonly coherence01: number;
-  readonly ink: InkHistogram;
 }
 
-/** The figures of a frame that is painted with a tone map, as its palette and its windows predict them. */
+/** The figures of a frame that is painted with a tone map, as its palette and its painting tell them. */
 export function predictedFigures(
   { palette, focus }: ColourMeasures,
   toneMap: ToneMap | null,
-  windows: WindowMeasures,
+  painted: Texture & { ink: InkHistogram },
   pen: { threshold: number; softness: number },
 ): FrameFigures {
   const tone = toneFiguresOf(palette, toneMap);
@@ -36,10 +32,10 @@ export function predictedFigures(
     chroma: tone.meanChroma,
     redGreen,
     yellowBlue,
-    planeMm: windows.planeMm,
-    coherence01: windows.coherence01,
-    lineCoverage01: coverageAt(windows.ink, pen.threshold, pen.softness),
-    flatShare01: windows.flatShare01,
+    planeMm: painted.planeMm,
+    coherence01: painted.coherence01,
+    lineCoverage01: coverageAt(painted.ink, pen.threshold, pen.softness),
+    flatShare01: painted.flatShare01,
     focus,
   };
 }

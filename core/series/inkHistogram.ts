@@ -14,6 +14,23 @@ function steepness(softness: number): number {
   return Math.min(100, 1.2 / Math.max(softness, 1e-6));
 }
 
+export const softPhi = steepness(softPen['line.softness']);
+
+/** More pixels tell no more. */
+const mostCounted = 4_000_000;
+
+/**
+ * Counts how often each coverage comes up; of very large lines every so many pixels.
+ * @param coverage drawn with the soft pen, 0…255
+ */
+export function countCoverage(coverage: Uint8Array): number[] {
+  const counts = new Array<number>(256).fill(0);
+  // Odd, so that it runs through the columns.
+  const step = 2 * Math.floor(coverage.length / mostCounted / 2) + 1;
+  for (let i = 0; i < coverage.length; i += step) counts[coverage[i]]++;
+  return counts;
+}
+
 /** S of each bin; the last stands for all that lies below. */
 const responses = Float64Array.from({ length: 256 }, (_, coverage) => {
   const c = Math.min(254.5, coverage) / 255;

@@ -5,11 +5,11 @@ export interface HoldTrial {
 }
 
 /** How far hold may go from the preset's, as a factor: further, one frame would look worked by another hand. */
-export const holdReach = 3.5;
+export const holdReach = 5;
 const leastHold = 0.04;
 const mostHold = 1;
 /** Shares this close are the same. */
-export const closeShare01 = 0.004;
+export const closeShare01 = 0.01;
 
 /** How the share of flat pixels commonly rises over the logarithm of hold, until two trials tell. */
 const commonSlope = 0.04;

@@ -12,11 +12,27 @@ export interface StageTimes {
   composeMs: number;
 }
 
+/**
+ * Looks at a picture while it is painted, before it is composed, and decides how to go on: so a frame is matched to
+ * others without being painted once more only to be measured.
+ */
+export interface PaintReview {
+  /**
+   * @param body of the whole picture: R, G, B in 0…65535; a view of shared memory, good until the promise settles
+   * @returns the hold to paint the body with instead (it is shown again), or null to go on
+   */
+  body(body: Uint16Array): Promise<number | null>;
+  /**
+   * @param responses how often each response of the line came up: see `InkHistogram`
+   * @returns the ink threshold ε to draw with
+   */
+  ink(responses: readonly number[]): number;
+}
+
 /** A piece of long work reports how far it is, 0…1, and in which stage. */
-export type OnProgress = (
-  fraction01: number,
-  stage: 'grain' | 'body' | 'line' | 'relief' | 'compose',
-) => void;
+export type OnProgress = (fraction01: number, stage: PaintStage) => void;
+
+export type PaintStage = 'grain' | 'body' | 'line' | 'relief' | 'compose';
 
 export interface PaintOptions {
   /** Long edge of the print; 300 mm unless given. */
@@ -115,11 +131,14 @@ export interface Engine {
     where: { level: number; region?: Rect },
     options?: PaintOptions,
   ): Promise<{ strata: Strata; times: StageTimes }>;
-  /** Paints at full resolution and composes, at the asked depth (the photo's own unless given). */
+  /**
+   * Paints at full resolution and composes, at the asked depth (the photo's own unless given).
+   * @param options.review asked on the way; the body and the line are painted for it even where they are hidden
+   */
   paintPicture(
     photo: EnginePhoto,
     parameters: Parameters,
-    options?: PaintOptions & { depth?: 8 | 16 },
+    options?: PaintOptions & { depth?: 8 | 16; review?: PaintReview },
   ): Promise<ComposedPicture>;
   /**
    * Paints at full resolution from top to bottom and hands the composed rows over band by band: the same pixels

@@ -1,14 +1,22 @@
 import type { Kernels } from '../../core/kernels/module.ts';
-import { type BodyWindow, evenUp, type LineJob } from '../../core/pipeline/jobs.ts';
+import { type BodyWindow, evenUp, type InkJob, type LineJob } from '../../core/pipeline/jobs.ts';
 import { edgeEmphasis, type LinePlan, streamlineStepPx } from '../../core/pipeline/linePlan.ts';
 import { lineRegion, lineScratchBytes } from '../../core/pipeline/lineTile.ts';
 import type { Rect } from '../../core/pixels/photo.ts';
+import { countCoverage, softPen, softPhi } from '../../core/series/inkHistogram.ts';
 import type { HeldPhoto } from './heldPhoto.ts';
 import type { PhotoRows } from './photoRows.ts';
 import { cutIntoTiles, type TileSize } from './regions.ts';
 import type { SharedHeap } from './sharedHeap.ts';
 import type { RowReader } from './slidingRows.ts';
 import type { WorkerPool } from './workerPool.ts';
+
+export interface LineOptions {
+  signal?: AbortSignal;
+  onProgress?: (fraction01: number) => void;
+  /** Chooses ε in place of the plan's, from the line's responses. */
+  chooseThreshold?: ((responses: readonly number[]) => number) | null;
+}
 
 /** Draws ink lines: S at the line's own level, then coverage at the painted one. */
 export class LinePainter {
@@ -46,8 +54,9 @@ export class LinePainter {
     body: BodyWindow,
     fromPhoto: RowReader | null,
     line: number,
-    options: { signal?: AbortSignal; onProgress?: (fraction01: number) => void } = {},
+    options: LineOptions = {},
   ): Promise<void> {
+    const { chooseThreshold, ...run } = options;
     const picture = photo.levels[level];
     const shift = shiftFor(plan, photo, level);
     const area = lineRegion(region, shift, picture);
@@ -64,27 +73,32 @@ export class LinePainter {
         shift,
         body: fromPhoto ? null : body,
         photo: fromPhoto?.picture ?? null,
-        plan,
+        // Where no ink can come S is not worked out: with the soft pen it can come wherever it may be asked for.
+        plan: chooseThreshold ? { ...plan, threshold: softPen['line.threshold'] } : plan,
         tables,
         out: field,
       };
-      await this.pool.run(job, { ...options, scratchBytes: lineScratchBytes(job) });
-      await this.pool.run(
-        {
-          kind: 'ink',
-          grid: { ...region, tileWidthPx: region.widthPx, tileHeightPx: 64 },
-          source: field,
-          sourceWidthPx: area.widthPx,
-          sourceHeightPx: area.heightPx,
-          originX: area.xPx,
-          originY: area.yPx,
-          shift,
-          threshold: plan.threshold,
-          phi: plan.phi,
-          out: line,
-        },
-        { signal: options.signal, scratchBytes: 0 },
-      );
+      await this.pool.run(job, { ...run, scratchBytes: lineScratchBytes(job) });
+      const ink: InkJob = {
+        kind: 'ink',
+        grid: { ...region, tileWidthPx: region.widthPx, tileHeightPx: 64 },
+        source: field,
+        sourceWidthPx: area.widthPx,
+        sourceHeightPx: area.heightPx,
+        originX: area.xPx,
+        originY: area.yPx,
+        shift,
+        threshold: plan.threshold,
+        phi: plan.phi,
+        out: line,
+      };
+      const inkRun = { signal: options.signal, scratchBytes: 0 };
+      if (chooseThreshold) {
+        await this.pool.run({ ...ink, threshold: softPen['line.threshold'], phi: softPhi }, inkRun);
+        const coverage = new Uint8Array(this.heap.memory.buffer, line, region.widthPx * region.heightPx);
+        ink.threshold = chooseThreshold(countCoverage(coverage));
+      }
+      await this.pool.run(ink, inkRun);
     } finally {
       for (const pointer of [field, tables.gaussian, tables.dog, tables.streamline]) this.heap.free(pointer);
     }

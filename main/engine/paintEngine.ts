@@ -13,6 +13,7 @@ import type {
   OpenOptions,
   PaintedBand,
   PaintOptions,
+  PaintReview,
   RowSource,
   StageTimes,
 } from './engineApi.ts';
@@ -139,17 +140,38 @@ class PaintEngine implements Engine {
     });
   }
 
-  paintPicture(
+  async paintPicture(
     photo: EnginePhoto,
     parameters: Parameters,
-    options: PaintOptions & { depth?: 8 | 16 } = {},
+    options: PaintOptions & { depth?: 8 | 16; review?: PaintReview } = {},
   ): Promise<ComposedPicture> {
     const held = photo as HeldPhoto;
+    for (let tried = parameters; ; ) {
+      const made = await this.#paintAndCompose(held, tried, options);
+      if (typeof made !== 'number') return made;
+      tried = { ...tried, 'body.hold': made };
+    }
+  }
+
+  /** A composed picture, or the hold that its review would rather have it painted with. */
+  #paintAndCompose(
+    held: HeldPhoto,
+    parameters: Parameters,
+    { depth, review, ...options }: PaintOptions & { depth?: 8 | 16; review?: PaintReview },
+  ): Promise<ComposedPicture | number> {
     const { heap } = this.#painters;
-    return this.#painting(held, wholePicture(held, parameters), options, async (painting) => {
-      const composing = await BandComposer.begin(painting, options.depth ?? held.depth);
-      const out = heap.allocate(composing.bytesOf(held.heightPx));
+    const order = { ...wholePicture(held, parameters), wantsAll: review !== undefined };
+    return this.#painting<ComposedPicture | number>(held, order, options, async (painting) => {
+      const composing = await BandComposer.begin(painting, depth ?? held.depth);
+      let out = 0;
       try {
+        if (review) {
+          const hold = await review.body(await painting.wholeBody());
+          options.signal?.throwIfAborted();
+          if (hold !== null) return hold;
+          painting.chooseThreshold = (responses) => review.ink(responses);
+        }
+        out = heap.allocate(composing.bytesOf(held.heightPx));
         await composing.compose(0, held.heightPx, out);
       } catch (error) {
         heap.free(out);

@@ -65,6 +65,8 @@ export class StrataPainting {
   #line = 0;
   #relief = 0;
   #layerPixels = 0;
+  /** Chooses the ink threshold in place of the plan's, once the line's responses are known. */
+  chooseThreshold: ((responses: readonly number[]) => number) | null = null;
 
   private constructor(
     readonly painters: StrataPainters,
@@ -150,6 +152,19 @@ export class StrataPainting {
     this.#photoRows.begin();
   }
 
+  /** Paints the body of the whole picture; a view, good until anything else is painted. */
+  async wholeBody(): Promise<Uint16Array> {
+    const { widthPx, heightPx } = this.order.region;
+    const startMs = performance.now();
+    await this.#body!.need(0, heightPx);
+    this.times.bodyMs += performance.now() - startMs;
+    return new Uint16Array(
+      this.painters.heap.memory.buffer,
+      this.#body!.window.pointer,
+      widthPx * heightPx * 3,
+    );
+  }
+
   /** Paints the rows of the region from `top` to `bottom` − 1; rows follow one another. */
   async layers(top: number, bottom: number): Promise<PaintedLayers> {
     const { held, level, region } = this.order;
@@ -165,6 +180,7 @@ export class StrataPainting {
       await this.painters.line.paint(held, this.#linePlan, level, rows, body, this.#lineSource, this.#line, {
         signal,
         onProgress: this.#stage('line'),
+        chooseThreshold: this.chooseThreshold,
       });
     const lineEndMs = performance.now();
     if (this.#reliefPlan)

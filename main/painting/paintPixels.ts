@@ -1,6 +1,13 @@
 import { createHash } from 'node:crypto';
 import type { Parameters } from '../../core/parameters/table.ts';
-import type { Engine, EnginePhoto, OnProgress, StageTimes } from '../engine/engineApi.ts';
+import type {
+  Engine,
+  EnginePhoto,
+  OnProgress,
+  PaintReview,
+  PaintStage,
+  StageTimes,
+} from '../engine/engineApi.ts';
 import type { SpilledPixels } from '../files/spilledPixels.ts';
 import { paintSpilled } from './paintSpilled.ts';
 
@@ -21,7 +28,7 @@ export async function paintPixels(
   engine: Engine,
   photo: EnginePhoto,
   { parameters, depth, printLongEdgeMm }: { parameters: Parameters; depth: 8 | 16; printLongEdgeMm: number },
-  { signal, onProgress }: { signal?: AbortSignal; onProgress?: OnProgress },
+  { signal, onProgress, review }: { signal?: AbortSignal; onProgress?: OnProgress; review?: PaintReview },
 ): Promise<PaintedPixels> {
   if (photo.isReadByRows) {
     const report = onProgress && ((fraction01: number) => onProgress(fraction01, 'body'));
@@ -29,18 +36,22 @@ export async function paintPixels(
     const painted = await paintSpilled(engine, photo, parameters, options);
     return { ...painted, release: () => painted.pixels.discard() };
   }
-  const painted = await engine.paintPicture(photo, parameters, {
-    depth,
-    printLongEdgeMm,
-    signal,
-    onProgress: onProgress && ((fraction01, stage) => onProgress(wholeOf(stage, fraction01), stage)),
-  });
+  // A review may have the body painted again: progress waits for it.
+  let highest = 0;
+  const report =
+    onProgress &&
+    ((fraction01: number, stage: PaintStage) => {
+      highest = Math.max(highest, wholeOf(stage, fraction01));
+      onProgress(highest, stage);
+    });
+  const options = { depth, printLongEdgeMm, signal, onProgress: report, review };
+  const painted = await engine.paintPicture(photo, parameters, options);
   const pixelsSha256 = createHash('sha256').update(bytesOf(painted.pixels)).digest('hex');
   return { ...painted, pixelsSha256 };
 }
 
 /** How far the whole painting is when a stage is at `fraction01`. */
-function wholeOf(stage: 'grain' | 'body' | 'line' | 'relief' | 'compose', fraction01: number): number {
+function wholeOf(stage: PaintStage, fraction01: number): number {
   const [from, to] = {
     grain: [0, 0.05],
     body: [0.05, 0.75],

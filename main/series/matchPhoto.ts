@@ -1,69 +1,67 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { DecodedPhoto } from '../../core/pixels/photo.ts';
 import type { FrameFigures } from '../../core/series/frameFigures.ts';
-import {
-  allMatchParts,
-  type FrameMatch,
-  type MatchParts,
-  noMatch,
-  parametersWithMatch,
-} from '../../core/series/frameMatch.ts';
-import { predictedFigures, type WindowMeasures } from '../../core/series/frameMeasures.ts';
-import { thresholdForCoverage } from '../../core/series/inkHistogram.ts';
-import { closeShare01, type HoldTrial, nextHold } from '../../core/series/matchHold.ts';
-import { matchTone } from '../../core/series/matchTone.ts';
+import { allMatchParts, type MatchParts } from '../../core/series/frameMatch.ts';
+import { predictedFigures } from '../../core/series/frameMeasures.ts';
+import { countCoverage, softPen } from '../../core/series/inkHistogram.ts';
 import type { Palette } from '../../core/series/palette.ts';
-import type { ToneMap } from '../../core/series/toneMap.ts';
-import type { Engine } from '../engine/engineApi.ts';
-import { FrameWindows, measureColours } from './measureFrame.ts';
+import type { Engine, EnginePhoto } from '../engine/engineApi.ts';
+import { FrameMatching, type MatchedFrame, penOf } from './frameMatching.ts';
+import { measureColours, measureTextures, type TextureAt } from './measureFrame.ts';
 
 /** What the other frames are matched to: plain data, measured once a run. */
 export interface LeadMeasures {
   readonly palette: Palette;
-  readonly windows: WindowMeasures;
+  /** What `auto` stood for, or the preset's own. */
+  readonly noiseFloor: number;
+  /** Of its painted body at several long edges, the greatest first. */
+  readonly textures: readonly TextureAt[];
   /** The figures of its painting: what the match aims at. */
   readonly figures: FrameFigures;
 }
 
 export interface MatchOptions {
   printLongEdgeMm: number;
+  /** Pyramid level that is painted to be measured; 0 unless given: a smaller one is quicker and nearly as good. */
+  level?: number;
   signal?: AbortSignal;
 }
 
-export interface MatchedFrame {
-  match: FrameMatch;
-  /** As the frame would be painted without the match of its tone, and with the preset's own ink and hold. */
-  before: FrameFigures;
-  after: FrameFigures;
-}
+/** Long edge from which on a smaller level tells how the whole will be. */
+const leastLevelEdgePx = 1500;
 
-/** Holds tried beyond the preset's own. */
-const holdTrials = 1;
+/** The smallest level that still tells. */
+export function measuringLevel({ widthPx, heightPx }: { widthPx: number; heightPx: number }): number {
+  return Math.max(0, Math.floor(Math.log2(Math.max(widthPx, heightPx) / leastLevelEdgePx)));
+}
 
 /**
  * Measures the lead.
- * @param noiseFloor of the opened photo (`EnginePhoto.noiseFloor`), what `auto` stands for
+ * @param photo not modified
+ * @param enginePhoto the same, held, without a tone map
  */
 export async function measureLead(
   engine: Engine,
   photo: DecodedPhoto,
-  noiseFloor: number,
+  enginePhoto: EnginePhoto,
   parameters: Parameters,
-  { printLongEdgeMm, signal }: MatchOptions,
+  options: MatchOptions,
 ): Promise<LeadMeasures> {
-  const colours = await measureColours(photo);
-  const painted = withFloor(parameters, noiseFloor);
-  const windows = await new FrameWindows(engine, photo, printLongEdgeMm).measure(painted, null, signal);
+  const { palette, focus } = await measureColours(photo);
+  const { body, line } = await paintLevel(engine, enginePhoto, parameters, options);
+  const textures = await measureTextures(body.pixels, body, options.printLongEdgeMm);
+  const painted = { ...textures[0], ink: countCoverage(line) };
+  const floor = parameters['body.noiseFloor'];
   return {
-    palette: colours.palette,
-    windows,
-    figures: predictedFigures(colours, null, windows, penOf(parameters)),
+    palette,
+    noiseFloor: floor === 'auto' ? enginePhoto.noiseFloor : floor,
+    textures,
+    figures: predictedFigures({ palette, focus }, null, painted, penOf(parameters)),
   };
 }
 
 /**
- * Decides how a frame is matched to the lead: tone first, then on windows painted with that tone how much detail is
- * held and where ink sets in.
+ * Decides how a frame would be matched to the lead, without painting it to a file.
  * @param photo at full resolution; not modified
  * @param parameters of the frame's state
  * @param options.amount01 how far tone, hold and ink go towards the lead
@@ -76,63 +74,57 @@ export async function matchPhoto(
   parameters: Parameters,
   options: MatchOptions & { amount01: number; parts?: MatchParts },
 ): Promise<MatchedFrame> {
-  const { amount01, parts = allMatchParts, printLongEdgeMm, signal } = options;
-  const colours = await measureColours(photo);
-  const toneMap = parts.tone ? matchTone(colours.palette, lead.palette, amount01) : null;
-  const isOn = amount01 > 0;
-  const noiseFloor =
-    isOn && parts.noise && parameters['body.noiseFloor'] === 'auto' ? lead.windows.noiseFloor : null;
-  const frame = new FrameWindows(engine, photo, printLongEdgeMm);
-  const match: FrameMatch = { ...noMatch, toneMap, noiseFloor };
-  const matched = parametersWithMatch(parameters, match);
-  const first = await frame.measure(matched, toneMap, signal);
-  const pen = penOf(parameters);
-  const before = predictedFigures(colours, null, first, pen);
-  let [windows, hold]: [WindowMeasures, number | null] = [first, null];
-  if (isOn && parts.detail && usesHold(parameters))
-    ({ windows, hold } = await findHold(frame, first, lead, matched, toneMap, amount01, signal));
-  const wanted = before.lineCoverage01 + amount01 * (lead.figures.lineCoverage01 - before.lineCoverage01);
-  const threshold = isOn && parts.ink ? thresholdForCoverage(windows.ink, wanted, parameters) : null;
-  const after = predictedFigures(colours, toneMap, windows, {
-    ...pen,
-    threshold: threshold ?? pen.threshold,
-  });
-  return { match: { ...match, hold, threshold }, before, after };
-}
-
-/** Tries holds until the share of flat pixels is the lead's, then takes the step that the trials suggest. */
-async function findHold(
-  frame: FrameWindows,
-  first: WindowMeasures,
-  lead: LeadMeasures,
-  parameters: Parameters,
-  toneMap: ToneMap | null,
-  amount01: number,
-  signal?: AbortSignal,
-): Promise<{ windows: WindowMeasures; hold: number | null }> {
-  const wanted = first.flatShare01 + amount01 * (lead.windows.flatShare01 - first.flatShare01);
-  const trials: HoldTrial[] = [first];
-  let windows = first;
-  const isClose = () => Math.abs(trials[trials.length - 1].flatShare01 - wanted) <= closeShare01;
-  for (let trial = 0; trial < holdTrials && !isClose(); trial++) {
-    const hold = nextHold(trials, wanted);
-    windows = await frame.measure({ ...parameters, 'body.hold': hold }, toneMap, signal);
-    trials.push(windows);
+  const { matching, enginePhoto } = await holdMatched(engine, photo, parameters, { ...options, lead });
+  try {
+    await reviewLevel(engine, enginePhoto, matching, options);
+    return matching.result();
+  } finally {
+    enginePhoto.close();
   }
-  if (trials.length === 1) return { windows, hold: null };
-  return { windows, hold: isClose() ? trials[trials.length - 1].hold : nextHold(trials, wanted) };
 }
 
-function usesHold(parameters: Parameters): boolean {
-  return parameters['body.method'] === 'multi-scale' && parameters['body.strength'] > 0;
+/** Begins to match a frame: the engine holds it with its tone mapped, and `matching` is asked while it is painted. */
+export async function holdMatched(
+  engine: Engine,
+  photo: DecodedPhoto,
+  parameters: Parameters,
+  options: MatchOptions & { lead: LeadMeasures; amount01: number; parts?: MatchParts },
+): Promise<{ matching: FrameMatching; enginePhoto: EnginePhoto }> {
+  const { lead, amount01, parts = allMatchParts, printLongEdgeMm, signal } = options;
+  const colours = await measureColours(photo);
+  const frame = { amount01, parts, printLongEdgeMm };
+  const matching = new FrameMatching(photo, colours, lead, parameters, frame);
+  const { toneMap } = matching;
+  const enginePhoto = await engine.open(photo, { toneMap, signal });
+  return { matching, enginePhoto };
 }
 
-function penOf(parameters: Parameters) {
-  return { threshold: parameters['line.threshold'], softness: parameters['line.softness'] };
+/** Paints a level as often as the matching asks for, only to be looked at. */
+export async function reviewLevel(
+  engine: Engine,
+  photo: EnginePhoto,
+  matching: FrameMatching,
+  options: MatchOptions,
+): Promise<void> {
+  for (let { parameters } = matching; ; ) {
+    const { body, line } = await paintLevel(engine, photo, parameters, options);
+    const hold = await matching.body(body.pixels, body);
+    if (hold === null) {
+      matching.ink(countCoverage(line));
+      return;
+    }
+    parameters = { ...parameters, 'body.hold': hold };
+  }
 }
 
-function withFloor(parameters: Parameters, noiseFloor: number): Parameters {
-  return parameters['body.noiseFloor'] === 'auto'
-    ? { ...parameters, 'body.noiseFloor': noiseFloor }
-    : parameters;
+async function paintLevel(
+  engine: Engine,
+  photo: EnginePhoto,
+  parameters: Parameters,
+  { printLongEdgeMm, level = 0, signal }: MatchOptions,
+) {
+  const drawn = { ...parameters, ...softPen };
+  const { strata } = await engine.paintStrata(photo, drawn, { level }, { printLongEdgeMm, signal });
+  const { widthPx, heightPx, body, line } = strata;
+  return { body: { widthPx, heightPx, pixels: body }, line };
 }

@@ -1,25 +1,33 @@
-import { parseLength } from '../../core/parameters/parse.ts';
-import { type Parameters, parameterKeys } from '../../core/parameters/table.ts';
+import { setImmediate } from 'node:timers/promises';
 import type { DecodedPhoto } from '../../core/pixels/photo.ts';
 import { focusOf } from '../../core/series/focus.ts';
-import type { ColourMeasures, WindowMeasures } from '../../core/series/frameMeasures.ts';
-import { softPen } from '../../core/series/inkHistogram.ts';
+import type { ColourMeasures, Texture } from '../../core/series/frameMeasures.ts';
 import { paletteOf } from '../../core/series/palette.ts';
-import type { ToneMap } from '../../core/series/toneMap.ts';
-import { addWindow, noWindows, textureOf } from '../../core/series/windowFigures.ts';
-import type { Engine } from '../engine/engineApi.ts';
+import { addRows, noTexture, textureOf } from '../../core/series/textureFigures.ts';
 import { sharp } from '../files/imageLibrary.ts';
-import { cutSampleSheet, type SampleSheet } from './sampleSheet.ts';
-import { windowLuma } from './windowLuma.ts';
 
 /** Long edge at which colours are gathered: noise has averaged away, and all frames are on one print scale. */
 const paletteEdgePx = 400;
-/** Long edge that texture is judged at, so that frames of different sizes compare. */
-const textureEdgePx = 800;
+/** Long edge that focus is judged at. */
+const focusEdgePx = 800;
+/**
+ * Long edges that texture is judged at, so that frames of different sizes compare. The greatest is about as fine as a
+ * print is looked at; the others are for photos too small for that.
+ */
+const textureEdgesPx = [1200, 850, 600, 425, 300] as const;
+/** What is brought down to less of its own size compares: hard edges have become as soft as everybody's. */
+const mostOfOwnEdge = 0.8;
+/** Rows looked at before others may have the thread: about two milliseconds. */
+const rowsAtOnce = 96;
+
+/** A texture, and the long edge it was judged at. */
+export interface TextureAt extends Texture {
+  readonly edgePx: number;
+}
 
 /** Gathers the colours of a photo, and how crisp it is, each at a print scale that all frames share. */
 export async function measureColours(photo: DecodedPhoto): Promise<ColourMeasures> {
-  const [few, many] = await Promise.all([reducedTo(photo, paletteEdgePx), reducedTo(photo, textureEdgePx)]);
+  const [few, many] = await Promise.all([reducedTo(photo, paletteEdgePx), reducedTo(photo, focusEdgePx)]);
   const focus = focusOf(lumaOf(many.rgb16), many.widthPx, many.heightPx);
   return { palette: paletteOf(few.rgb16), focus };
 }
@@ -57,66 +65,47 @@ function widened(bytes: Uint8Array): Uint16Array {
   return wide;
 }
 
-/** The sample windows of a photo, taken once and painted as often as is needed. */
-export class FrameWindows {
-  readonly #sample: SampleSheet;
-  readonly #longEdgePx: number;
-
-  /** @param photo at full resolution; copied from, not kept */
-  constructor(
-    readonly engine: Engine,
-    photo: DecodedPhoto,
-    readonly printLongEdgeMm: number,
-  ) {
-    this.#sample = cutSampleSheet(photo);
-    this.#longEdgePx = Math.max(photo.widthPx, photo.heightPx);
-  }
-
-  /**
-   * Paints the windows and measures their texture.
-   * @param parameters with a noise floor in numbers: the sheet's own noise is that of its seams too
-   */
-  async measure(
-    parameters: Parameters,
-    toneMap: ToneMap | null,
-    signal?: AbortSignal,
-  ): Promise<WindowMeasures> {
-    const { sheet, windows } = this.#sample;
-    const held = await this.engine.open(sheet, { toneMap, signal });
-    try {
-      const mmPerPx = this.printLongEdgeMm / this.#longEdgePx;
-      const floor = parameters['body.noiseFloor'];
-      const noiseFloor = floor === 'auto' ? held.noiseFloor : floor;
-      const { strata } = await this.engine.paintStrata(
-        held,
-        { ...withoutPermille(parameters, this.printLongEdgeMm), ...softPen, 'body.noiseFloor': noiseFloor },
-        { level: 0 },
-        { printLongEdgeMm: Math.max(sheet.widthPx, sheet.heightPx) * mmPerPx, signal },
-      );
-      const scale = Math.max(1, this.#longEdgePx / textureEdgePx);
-      const ink = new Array<number>(256).fill(0);
-      let sums = noWindows;
-      for (const window of windows) {
-        sums = addWindow(sums, windowLuma(strata.body, strata.widthPx, window, scale));
-        for (let y = window.yPx; y < window.yPx + window.heightPx; y++)
-          for (let x = window.xPx; x < window.xPx + window.widthPx; x++)
-            ink[strata.line[y * strata.widthPx + x]]++;
-      }
-      const texture = textureOf(sums, mmPerPx * scale, windows[0].widthPx * mmPerPx);
-      return { noiseFloor, hold: parameters['body.hold'], ...texture, ink };
-    } finally {
-      held.close();
-    }
-  }
+/** The long edge that a picture's texture is judged at, where those are measured: the greatest that suits it. */
+export function textureEdge(
+  { widthPx, heightPx }: { widthPx: number; heightPx: number },
+  measured: readonly number[] = textureEdgesPx,
+): number {
+  const most = mostOfOwnEdge * Math.max(widthPx, heightPx);
+  return measured.find((edgePx) => edgePx <= most) ?? measured[measured.length - 1];
 }
 
-/** Lengths that follow the photo's own size, in millimetres: the sheet has another size. */
-function withoutPermille(parameters: Parameters, printLongEdgeMm: number): Parameters {
-  const changed: Record<string, unknown> = { ...parameters };
-  for (const key of parameterKeys) {
-    const value = parameters[key];
-    const length = typeof value === 'string' ? parseLength(value) : null;
-    if (length?.unit === 'permille') changed[key] = `${(length.value * printLongEdgeMm) / 1000}mm`;
+/** Measures a painted body at every long edge that suits it; the greatest comes first. */
+export async function measureTextures(
+  body: Uint16Array,
+  size: { widthPx: number; heightPx: number },
+  printLongEdgeMm: number,
+): Promise<TextureAt[]> {
+  const edges = textureEdgesPx.slice(textureEdgesPx.indexOf(textureEdge(size) as 1200));
+  const textures: TextureAt[] = [];
+  for (const edgePx of edges)
+    textures.push({ edgePx, ...(await measureTexture(body, size, printLongEdgeMm, edgePx)) });
+  return textures;
+}
+
+/**
+ * Measures the texture of a painted body.
+ * @param body R, G, B in 0…65535, rows without padding; copied from
+ * @param edgePx long edge that it is brought down to
+ */
+export async function measureTexture(
+  body: Uint16Array,
+  size: { widthPx: number; heightPx: number },
+  printLongEdgeMm: number,
+  edgePx: number,
+): Promise<Texture> {
+  // The image library does not take shared memory.
+  const pixels = body.buffer instanceof SharedArrayBuffer ? body.slice() : body;
+  const { rgb16, widthPx, heightPx } = await reducedTo({ ...size, channels: 3, pixels }, edgePx);
+  const luma = new Uint8ClampedArray(lumaOf(rgb16));
+  let sums = noTexture;
+  for (let top = 0; top < heightPx; top += rowsAtOnce) {
+    sums = addRows(sums, { widthPx, heightPx, luma }, top, top + rowsAtOnce);
+    await setImmediate();
   }
-  return changed as Parameters;
+  return textureOf(sums, printLongEdgeMm / Math.max(widthPx, heightPx), printLongEdgeMm);
 }

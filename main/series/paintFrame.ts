@@ -7,7 +7,7 @@ import {
   noMatch,
   parametersWithMatch,
 } from '../../core/series/frameMatch.ts';
-import type { Engine } from '../engine/engineApi.ts';
+import type { Engine, EnginePhoto } from '../engine/engineApi.ts';
 import { assertFormatHolds } from '../files/outputFormat.ts';
 import { SpilledPixels } from '../files/spilledPixels.ts';
 import { writePicture } from '../files/writePicture.ts';
@@ -15,7 +15,8 @@ import { type DeliveredPainting, deliverPainting } from '../painting/deliverPain
 import { holdPhoto, letGo, readAnyPhoto } from '../painting/holdPhoto.ts';
 import { prepareForPrint } from '../painting/prepareForPrint.ts';
 import { printOrderOf } from '../painting/printOrder.ts';
-import { type LeadMeasures, matchPhoto, measureLead } from './matchPhoto.ts';
+import type { FrameMatching } from './frameMatching.ts';
+import { holdMatched, type LeadMeasures, measureLead, reviewLevel } from './matchPhoto.ts';
 
 /** What one frame is painted by. */
 export interface FrameOrder {
@@ -31,6 +32,11 @@ export interface PaintedFrame extends DeliveredPainting {
   match: FrameMatch;
   /** Before and after matching; null where the frame was not matched. */
   figures: { before: FrameFigures; after: FrameFigures } | null;
+}
+
+interface BegunFrame {
+  enginePhoto: EnginePhoto;
+  matching: FrameMatching | null;
 }
 
 export interface FrameOptions {
@@ -51,27 +57,29 @@ export async function paintFrame(
   const print = printOrderOf(output);
   const photo = await readForPrint(photoPath, output, signal);
   const { pixels } = photo;
-  let matched: Awaited<ReturnType<typeof matchPhoto>> | null = null;
-  const remarks: string[] = [];
+  const isTooLarge = pixels instanceof SpilledPixels;
+  const remarks = asked && isTooLarge ? ['Too large to be matched: painted as it is.'] : [];
+  let begun: BegunFrame;
   try {
     // The painting will be as transparent as the photo: better said now than when it is painted.
     if (format === 'jpeg') await assertFormatHolds(part, photo, signal, 'jpeg');
-    if (asked && pixels instanceof SpilledPixels) remarks.push('Too large to be matched: painted as it is.');
-    else if (asked) {
-      const { lead, amount01, parts } = asked;
-      const options = { amount01, parts, printLongEdgeMm, signal };
-      matched = await matchPhoto(engine, { ...photo, pixels } as never, lead, parameters, options);
-    }
+    begun =
+      asked && !isTooLarge
+        ? await holdMatched(engine, { ...photo, pixels }, parameters, { ...asked, printLongEdgeMm, signal })
+        : { enginePhoto: await holdPhoto(engine, photo, { signal }), matching: null };
   } catch (failure) {
     letGo(photo);
     throw failure;
   }
-  const match = matched?.match ?? noMatch;
-  const enginePhoto = await holdPhoto(engine, photo, { signal, toneMap: match.toneMap });
+  const { enginePhoto, matching } = begun;
   try {
+    const isLayered = layers !== 'none';
+    // Layers are made band by band: how to paint has to be known before.
+    if (matching && isLayered) await reviewLevel(engine, enginePhoto, matching, { printLongEdgeMm, signal });
+    const known = matching?.parameters ?? parameters;
     const { pixels: _, ...file } = photo;
     const order = {
-      parameters: parametersWithMatch(parameters, match),
+      parameters: matching && isLayered ? parametersWithMatch(parameters, matching.result().match) : known,
       out: part,
       format,
       depth,
@@ -79,12 +87,13 @@ export async function paintFrame(
       metadata,
       printLongEdgeMm,
       print: { ...print, writesSize: true },
-      layers: layers === 'none' ? undefined : layers,
+      layers: isLayered ? layers : undefined,
     };
     const delivered = await deliverPainting(engine, { enginePhoto, file }, order, {
       signal,
       onProgress,
       writePicture,
+      review: matching && !isLayered ? matching : undefined,
       // The picture comes first, its strata after it.
       place: async (out, write) => {
         const at = out === part ? part : `${part}.strata`;
@@ -92,8 +101,14 @@ export async function paintFrame(
         return at;
       },
     });
-    const figures = matched && { before: matched.before, after: matched.after };
-    return { ...delivered, match, figures, remarks: [...remarks, ...delivered.remarks] };
+    const matched = matching?.result();
+    const figures = matched ? { before: matched.before, after: matched.after } : null;
+    return {
+      ...delivered,
+      match: matched?.match ?? noMatch,
+      figures,
+      remarks: [...remarks, ...delivered.remarks],
+    };
   } finally {
     enginePhoto.close();
   }
@@ -117,7 +132,7 @@ export async function measureLeadPhoto(
   const decoded = { ...photo, pixels };
   const held = await engine.open(decoded, { signal });
   try {
-    return await measureLead(engine, decoded, held.noiseFloor, parameters, { printLongEdgeMm, signal });
+    return await measureLead(engine, decoded, held, parameters, { printLongEdgeMm, signal });
   } finally {
     held.close();
   }

@@ -41,7 +41,7 @@ export async function paintSeries(
       ({ match } = await matchPhoto(engine, photo, lead, parameters, options));
     } else {
       const held = await engine.open(photo);
-      lead = await measureLead(engine, photo, held.noiseFloor, parameters, { printLongEdgeMm });
+      lead = await measureLead(engine, photo, held, parameters, { printLongEdgeMm });
       held.close();
     }
     series.matches.push(match);

@@ -51,7 +51,7 @@ async function figuresOf(path: string): Promise<FrameFigures[]> {
   const parameters = defaultParameters();
   const photo = await frameAt(0, path);
   const held = await engine.open(photo);
-  const lead = await measureLead(engine, photo, held.noiseFloor, parameters, { printLongEdgeMm });
+  const lead = await measureLead(engine, photo, held, parameters, { printLongEdgeMm });
   held.close();
   const figures = [lead.figures];
   for (let index = 1; index < frameCount; index++) {

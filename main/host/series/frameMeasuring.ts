@@ -3,7 +3,8 @@ import type { Parameters } from '../../../core/parameters/table.ts';
 import type { FrameFigures } from '../../../core/series/frameFigures.ts';
 import type { MatchParts } from '../../../core/series/frameMatch.ts';
 import { SpilledPixels } from '../../files/spilledPixels.ts';
-import type { LeadMeasures, MatchedFrame } from '../../series/matchPhoto.ts';
+import type { MatchedFrame } from '../../series/frameMatching.ts';
+import type { LeadMeasures } from '../../series/matchPhoto.ts';
 import type { HostParts } from '../hostParts.ts';
 import type { PhotoOnDisk } from './framePictures.ts';
 
@@ -102,7 +103,7 @@ export class FrameMeasuring {
   async #measure(frame: MeasuringOrder, plan: MeasuringPlan, signal: AbortSignal): Promise<MeasuredFrame> {
     const lead = await this.#leadOf(plan, frame, signal);
     if (frame === plan.lead || !plan.lead) return { before: lead.figures, after: lead.figures, match: null };
-    const { matchPhoto } = await import('../../series/matchPhoto.ts');
+    const { matchPhoto, measuringLevel } = await import('../../series/matchPhoto.ts');
     const { amount01, printLongEdgeMm } = plan;
     const engine = await this.parts.loadEngine();
     const photo = await this.#read(frame, signal);
@@ -110,6 +111,7 @@ export class FrameMeasuring {
       amount01,
       parts: frame.parts,
       printLongEdgeMm,
+      level: measuringLevel(photo),
       signal,
     });
   }
@@ -120,17 +122,16 @@ export class FrameMeasuring {
     const key = keyOf(lead, { ...plan, lead: null });
     const known = this.#leads.get(key);
     if (known) return known;
-    const { measureLead } = await import('../../series/matchPhoto.ts');
+    const { measureLead, measuringLevel } = await import('../../series/matchPhoto.ts');
     const engine = await this.parts.loadEngine();
     const photo = await this.#read(lead, signal);
     const held = await engine.open(photo, { signal });
-    const { noiseFloor } = held;
-    held.close();
     const { printLongEdgeMm } = plan;
-    const measures = await measureLead(engine, photo, noiseFloor, lead.parameters, {
+    const measures = await measureLead(engine, photo, held, lead.parameters, {
       printLongEdgeMm,
+      level: measuringLevel(photo),
       signal,
-    });
+    }).finally(() => held.close());
     if (plan.lead) {
       if (this.#leads.size > 8) this.#leads.clear();
       this.#leads.set(key, measures);

@@ -1,12 +1,12 @@
-/** A piece of luma in 8-bit steps (0…255, not rounded), rows without padding. */
-export interface LumaWindow {
+/** Luma of a picture in 8-bit steps (0…255), rows without padding. */
+export interface LumaPicture {
   widthPx: number;
   heightPx: number;
-  luma: Float64Array;
+  luma: Uint8ClampedArray;
 }
 
-/** Sums over the windows of a frame, from which its texture figures are taken. */
-export interface WindowSums {
+/** Sums over a picture, from which its texture figures are taken. */
+export interface TextureSums {
   pixels: number;
   flat: number;
   runs: number;
@@ -15,26 +15,28 @@ export interface WindowSums {
   energy: number;
 }
 
-export const noWindows: WindowSums = { pixels: 0, flat: 0, runs: 0, steps: 0, aligned: 0, energy: 0 };
+export const noTexture: TextureSums = { pixels: 0, flat: 0, runs: 0, steps: 0, aligned: 0, energy: 0 };
 
 /** Two neighbours that differ by this much, in 8-bit steps, belong to two planes. */
 const planeStep = 3;
-/** Side of the squares over which the direction of strokes is judged. */
-const blockPx = 8;
+/** Side of the squares over which the direction of strokes is judged; rows are added by so many. */
+export const blockPx = 8;
 
 /**
- * Adds one window: flat pixels (|∇| of 8-bit luma below one step, central differences), runs of one tone along rows
- * and columns, and how far gradients share a direction within squares (the structure tensor's coherence, weighted
- * with its energy).
+ * Adds rows: flat pixels (|∇| of 8-bit luma below one step, central differences), runs of one tone along rows and
+ * columns, and how far gradients share a direction within squares (the structure tensor's coherence, weighted with
+ * its energy).
+ * @param picture not modified
+ * @param top a multiple of `blockPx`
  */
-export function addWindow(sums: WindowSums, window: LumaWindow): WindowSums {
-  const { widthPx, heightPx } = window;
-  const luma = window.luma.map(Math.round);
+export function addRows(sums: TextureSums, picture: LumaPicture, top: number, bottom: number): TextureSums {
+  const { widthPx, heightPx, luma } = picture;
   let { pixels, flat, runs, steps, aligned, energy } = sums;
-  for (let y0 = 1; y0 < heightPx - 1; y0 += blockPx)
+  const end = Math.min(bottom + 1, heightPx - 1);
+  for (let y0 = top + 1; y0 < end; y0 += blockPx)
     for (let x0 = 1; x0 < widthPx - 1; x0 += blockPx) {
       let [e, f, g] = [0, 0, 0];
-      for (let y = y0; y < Math.min(y0 + blockPx, heightPx - 1); y++)
+      for (let y = y0; y < Math.min(y0 + blockPx, end); y++)
         for (let x = x0; x < Math.min(x0 + blockPx, widthPx - 1); x++) {
           const i = y * widthPx + x;
           const gx = (luma[i + 1] - luma[i - 1]) / 2;
@@ -55,10 +57,10 @@ export function addWindow(sums: WindowSums, window: LumaWindow): WindowSums {
 }
 
 /**
- * @param mmPerPx of the windows, on the print
- * @param longestMm what a plane without end counts as: the windows' own size
+ * @param mmPerPx of the picture, on the print
+ * @param longestMm what a plane without end counts as
  */
-export function textureOf(sums: WindowSums, mmPerPx: number, longestMm: number) {
+export function textureOf(sums: TextureSums, mmPerPx: number, longestMm: number) {
   return {
     flatShare01: sums.pixels > 0 ? sums.flat / sums.pixels : 1,
     planeMm: Math.min(longestMm, (sums.steps / Math.max(1, sums.runs)) * mmPerPx),
