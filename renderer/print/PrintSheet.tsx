@@ -6,7 +6,7 @@ import { useStore } from '../state/store.ts';
 import { viewStore } from '../state/viewStore.ts';
 import { drawSheet, fitSheet } from './drawSheet.ts';
 import { inInches, inMm, type PlannedPrint, wholeLongEdgeMm } from './printMeasures.ts';
-import { pixelsInWords } from './printWords.ts';
+import { aroundInWords, pixelsInWords } from './printWords.ts';
 import { usePrintPicture } from './usePrintPicture.ts';
 
 interface PrintSheetProps {
@@ -66,7 +66,7 @@ export function PrintSheet({ photo, look, output, plan }: PrintSheetProps) {
         </span>
         <span>
           {pixelsInWords(plan.fileWidthPx, plan.fileHeightPx)}
-          {plan.margins.outsidePx > 0 && ', all around included'}
+          {aroundInWords(output)}
         </span>
       </figcaption>
     </figure>

@@ -107,7 +107,7 @@ function PixelControl({ photo, output, plan }: SizeControlsProps) {
     return null;
   };
   const { widthPx, heightPx } = plan.crop;
-  const ownPixels = `${pixelsInWords(widthPx, heightPx)} lie at ${own} an inch`;
+  const ownPixels = `own ${pixelsInWords(widthPx, heightPx)} lie at ${own} an inch`;
   const help = output.isResampled
     ? `Painted at ${pixelsInWords(plan.widthPx, plan.heightPx)}; the photograph’s ${ownPixels}.`
     : `The photograph’s ${ownPixels}. ${own < sufficientPpi ? 'Press work asks for 300, paint will do with 200.' : 'Press work asks for 300.'}`;
@@ -130,7 +130,7 @@ function PixelControl({ photo, output, plan }: SizeControlsProps) {
         legend="Pixels of the print"
         name="print-pixels"
         choices={[
-          { value: 'own', label: 'The photograph’s', help: 'Nothing is resampled' },
+          { value: 'own', label: 'Its own', help: 'Nothing is resampled' },
           { value: 'asked', label: 'So many an inch', help: 'Resampled before it is painted' },
         ]}
         value={output.isResampled ? 'asked' : 'own'}

@@ -6,12 +6,10 @@ import {
   type SheetMargins,
 } from '../../core/print/printPlan.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
-import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
+import type { Size } from '../geometry/viewTransform.ts';
 
 export const shortestPrintMm = 10;
 export const longestPrintMm = 10_000;
-
-type Size = Pick<OpenedPhoto, 'widthPx' | 'heightPx'>;
 
 /** A print as it will lie on paper, and the file that it becomes. */
 export interface PlannedPrint extends PrintPlan {

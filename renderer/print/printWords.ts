@@ -1,5 +1,8 @@
+import type { PrintPlan } from '../../core/print/printPlan.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
-import type { OpenedPhoto, OutputFormatName } from '../../main/host/api/hostCommands.ts';
+import type { OutputFormatName } from '../../main/host/api/hostCommands.ts';
+import type { Size } from '../geometry/viewTransform.ts';
+import { aspectInWords } from './cropAspects.ts';
 import { inMm, planOf } from './printMeasures.ts';
 
 export const formats: readonly { value: OutputFormatName; name: string; ending: string; help: string }[] = [
@@ -32,10 +35,7 @@ export function profileName(profile: OutputSettings['profile']): string {
 }
 
 /** What file will be made, as one sentence. */
-export function printSentence(
-  photo: Pick<OpenedPhoto, 'widthPx' | 'heightPx'>,
-  output: OutputSettings,
-): string {
+export function printSentence(photo: Size, output: OutputSettings): string {
   const plan = planOf(photo, output);
   const { name } = formatOf(output);
   const kind = isExact(output) ? `${name} of ${output.depth} bits` : `${name} of quality ${output.quality}`;
@@ -49,11 +49,21 @@ export function printSentence(
   ];
   const parts = [
     `${kind}, ${size}`,
-    output.cropFrame && 'cropped',
+    isCropped(photo, plan) && `cropped to ${aspectInWords(output.cropFrame!.aspect)}`,
     around.length > 0 && `with ${around.join(' and ')}`,
     `in ${profileName(output.profile)}`,
   ].filter(Boolean);
   return `${parts.join(', ')}${layers}.`;
+}
+
+function isCropped(photo: Size, { crop }: PrintPlan): boolean {
+  return crop.widthPx < photo.widthPx || crop.heightPx < photo.heightPx;
+}
+
+/** What the pixels of the file hold besides the print. */
+export function aroundInWords({ bleedMm, trimMarks }: OutputSettings): string {
+  const around = [bleedMm > 0 && 'bleed', trimMarks && 'margin'].filter(Boolean);
+  return around.length > 0 ? ` with ${around.join(' and ')}` : '';
 }
 
 /** `3,000 × 2,000 px` */
