@@ -103,9 +103,8 @@ export class FrameMatching implements PaintReview {
     const best = trials.reduce((nearest, trial) => (miss(trial) < miss(nearest) ? trial : nearest));
     const isSettled = trials.slice(0, -1).some((trial) => trial.hold === last.hold);
     if (isSettled || miss(last) <= closeShare01) return null;
-    const next = nextHold(trials, wanted01);
-    const isNew = trials.length <= holdTrials && trials.every((trial) => trial.hold !== next);
-    if (isNew) return next;
+    const next = trials.length <= holdTrials ? nextHold(trials, wanted01, this.lead.holdSlope) : null;
+    if (next !== null && trials.every((trial) => trial.hold !== next)) return next;
     return best === last ? null : best.hold;
   }
 

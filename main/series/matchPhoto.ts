@@ -4,6 +4,7 @@ import type { FrameFigures } from '../../core/series/frameFigures.ts';
 import { allMatchParts, type MatchParts } from '../../core/series/frameMatch.ts';
 import { predictedFigures } from '../../core/series/frameMeasures.ts';
 import { countCoverage, softPen } from '../../core/series/inkHistogram.ts';
+import { slopeBetween } from '../../core/series/matchHold.ts';
 import type { Palette } from '../../core/series/palette.ts';
 import type { Engine, EnginePhoto } from '../engine/engineApi.ts';
 import { FrameMatching, type MatchedFrame, penOf } from './frameMatching.ts';
@@ -16,6 +17,8 @@ export interface LeadMeasures {
   readonly noiseFloor: number;
   /** Of its painted body at several long edges, the greatest first. */
   readonly textures: readonly TextureAt[];
+  /** How its share of flat pixels rises over the logarithm of hold. */
+  readonly holdSlope: number;
   /** The figures of its painting: what the match aims at. */
   readonly figures: FrameFigures;
 }
@@ -56,8 +59,29 @@ export async function measureLead(
     palette,
     noiseFloor: floor === 'auto' ? enginePhoto.noiseFloor : floor,
     textures,
+    holdSlope: await measureHoldSlope(engine, enginePhoto, parameters, options),
     figures: predictedFigures({ palette, focus }, null, painted, penOf(parameters)),
   };
+}
+
+/** Hold is tried by this factor to see what it does. */
+const slopeFactor = 0.4;
+
+async function measureHoldSlope(
+  engine: Engine,
+  photo: EnginePhoto,
+  parameters: Parameters,
+  options: MatchOptions,
+): Promise<number> {
+  const level = measuringLevel(photo);
+  const trialOf = async (hold: number) => {
+    const tried = { ...parameters, 'body.hold': hold };
+    const { body } = await paintLevel(engine, photo, tried, { ...options, level });
+    const [texture] = await measureTextures(body.pixels, body, options.printLongEdgeMm);
+    return { hold, flatShare01: texture.flatShare01 };
+  };
+  const own = parameters['body.hold'];
+  return slopeBetween(await trialOf(own * slopeFactor), await trialOf(own));
 }
 
 /**
