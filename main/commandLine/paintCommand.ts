@@ -2,7 +2,6 @@ import { engineVersion } from '../../core/engineVersion.ts';
 import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { planBody } from '../../core/pipeline/bodyPlan.ts';
 import { createEngine } from '../engine/paintEngine.ts';
-import type { LayersKind } from '../files/layers/writeLayers.ts';
 import { outputFormatFor } from '../files/outputFormat.ts';
 import { defaultOutputPath } from '../files/outputPath.ts';
 import { describePainting } from '../painting/describePainting.ts';
@@ -21,7 +20,6 @@ const options = {
   out: { type: 'string' },
   depth: { type: 'string' },
   'print-long-edge': { type: 'string' },
-  layers: { type: 'string' },
   ...printOptions,
   keep: { type: 'boolean' },
   workers: { type: 'string' },
@@ -43,10 +41,6 @@ export const paintCommand: Command = {
     [
       '--print-long-edge MM',
       `Long edge of the print, for lengths in mm; the recipe's, or ${defaultPrintLongEdgeMm}, unless given.`,
-    ],
-    [
-      '--layers ora|tiff',
-      'Writes the strata too, beside the painting: one OpenRaster file, or a folder of 16-bit TIFFs; none if not.',
     ],
     ...printOptionHelp,
     ['--keep', "Notes what was painted in the photo's recipe, which is made where there is none."],
@@ -77,8 +71,8 @@ async function paint(words: string[]): Promise<number> {
   );
   const askedDepth = readDepth(read.values.depth);
   const usedRecipe = work.look === null ? (work.read?.recipe ?? null) : null;
-  const layers = readLayers(read.values.layers) ?? usedRecipe?.work.output.layers ?? 'none';
   const { print, output } = readPrintOrder(read.values, usedRecipe?.work.output ?? null);
+  const { layers, quality, metadata } = { layers: 'none' as const, ...usedRecipe?.work.output, ...output };
   const layersKind = layers === 'none' ? undefined : layers;
   const named = read.values.out;
   const out = named ?? (await defaultOutputPath(photoPath, 'png'));
@@ -90,8 +84,7 @@ async function paint(words: string[]): Promise<number> {
   const starting = createEngine({ workers });
   starting.catch(() => undefined);
   try {
-    const asked = { depth: askedDepth, printLongEdgeMm, print, layers: layersKind };
-    const metadata = output.metadata ?? usedRecipe?.work.output.metadata;
+    const asked = { depth: askedDepth, quality, printLongEdgeMm, print, layers: layersKind };
     const told = { metadata, ...describePainting(work.title, work.state) };
     const order = { parameters, out, format, ...asked, ...told };
     const painted = await paintToFile(starting, photoPath, order, {
@@ -151,11 +144,6 @@ function readDepth(text: string | undefined): 8 | 16 | undefined {
   if (text === undefined) return undefined;
   if (text !== '8' && text !== '16') throw new UsageError(`Expected 8 or 16 for --depth, received ${text}`);
   return text === '8' ? 8 : 16;
-}
-
-function readLayers(text: string | undefined): LayersKind | 'none' | undefined {
-  if (text === undefined || text === 'none' || text === 'ora' || text === 'tiff') return text;
-  throw new UsageError(`Expected ora, tiff or none for --layers, received ${text}`);
 }
 
 function roundAll<T extends Record<string, number>>(times: T): T {

@@ -1,7 +1,7 @@
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import { intentNumber } from '../colour/colourEngine.ts';
 import { type PrintOrder, printOrderOf } from '../painting/printOrder.ts';
-import { readNumber } from './readWords.ts';
+import { readNumber, readWhole } from './readWords.ts';
 import { UsageError } from './usage.ts';
 
 /** Options of every command that writes files for print. */
@@ -14,6 +14,8 @@ export const printOptions = {
   bleed: { type: 'string' },
   'trim-marks': { type: 'boolean' },
   metadata: { type: 'string' },
+  layers: { type: 'string' },
+  quality: { type: 'string' },
 } as const;
 
 /** Their lines in the help. */
@@ -37,6 +39,11 @@ export const printOptionHelp = [
     '--metadata NAME',
     "How much of the photo's camera data goes along: all, essential (without the place; the default) or none.",
   ],
+  [
+    '--layers ora|tiff',
+    'Writes the strata too, beside the painting: one OpenRaster file, or a folder of 16-bit TIFFs; none if not.',
+  ],
+  ['--quality N', 'Of JPEG and WebP, 1 to 100; 92 unless given.'],
   ['--trim-marks', 'Puts the picture on a white margin with marks where it is to be cut.'],
 ] as const;
 
@@ -49,6 +56,8 @@ export interface PrintValues {
   bleed?: string;
   'trim-marks'?: boolean;
   metadata?: string;
+  layers?: string;
+  quality?: string;
   'print-long-edge'?: string;
 }
 
@@ -74,6 +83,8 @@ export function readPrintOrder(
   if (values.bleed !== undefined) output.bleedMm = readNumber(values.bleed, '--bleed', 0, 100);
   if (values['trim-marks']) output.trimMarks = true;
   if (values.metadata !== undefined) output.metadata = readMetadata(values.metadata);
+  if (values.layers !== undefined) output.layers = readLayers(values.layers);
+  if (values.quality !== undefined) output.quality = readWhole(values.quality, '--quality', 1, 100);
   const asked = { ...recipe, ...output } as OutputSettings;
   const writesSize = values['print-long-edge'] !== undefined || recipe !== null;
   return { print: { ...printOrderOf(asked), writesSize }, output };
@@ -88,6 +99,11 @@ function readProfile(text: string): OutputSettings['profile'] {
 function readMetadata(text: string): OutputSettings['metadata'] {
   if (text === 'all' || text === 'essential' || text === 'none') return text;
   throw new UsageError(`Expected all, essential or none for --metadata, received ${text}`);
+}
+
+function readLayers(text: string): OutputSettings['layers'] {
+  if (text === 'none' || text === 'ora' || text === 'tiff') return text;
+  throw new UsageError(`Expected ora, tiff or none for --layers, received ${text}`);
 }
 
 function readIntent(text: string): OutputSettings['intent'] {
