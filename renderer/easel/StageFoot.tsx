@@ -1,7 +1,7 @@
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { changeOutput, useOutput } from '../app/outputWork.ts';
 import { ValueField } from '../controls/ValueField.tsx';
-import { longestPrintMm, planOf, readLengthMm, shortestPrintMm } from '../print/printMeasures.ts';
+import { inMm, longestPrintMm, planOf, readLengthMm, shortestPrintMm } from '../print/printMeasures.ts';
 import { useStore } from '../state/store.ts';
 import { chooseSurround, placedViewStore, type Surround, viewStore } from '../state/viewStore.ts';
 import { fitPicture, showFullSize, zoomPicture } from './viewMoves.ts';
@@ -49,10 +49,10 @@ export function StageFoot({ photo }: { photo: OpenedPhoto }) {
         Print{' '}
         <ValueField
           label="Long edge of the print, typed"
-          shown={`${output.printLongEdgeMm} mm`}
+          shown={`${inMm(output.printLongEdgeMm)} mm`}
           onTyped={typePrintLongEdge}
         />{' '}
-        × {Math.round(Math.min(widthMm, heightMm))} mm, {Math.round(ppi)} ppi
+        × {inMm(Math.min(widthMm, heightMm))} mm, {Math.round(ppi)} ppi
       </span>
       <fieldset className="surrounds">
         <legend className="unseen">Surround</legend>

@@ -69,7 +69,7 @@ export function shortNumber(value: number, digits: number): string {
 }
 
 export function inMm(mm: number): string {
-  return shortNumber(mm, mm < 100 ? 1 : 0);
+  return shortNumber(mm, 1);
 }
 
 export function inInches(mm: number): string {

@@ -106,7 +106,7 @@ describe('the drawing of the sheet', () => {
 describe('the sentence of the save dialog', () => {
   it('tells everything that is asked for, and nothing that is not', () => {
     expect(printSentence(photo, outputOf({ format: 'png', printLongEdgeMm: 304.8 }))).toBe(
-      'PNG of 8 bits, 305 × 203 mm at 500 pixels an inch, in the photograph’s own colours.',
+      'PNG of 8 bits, 304.8 × 203.2 mm at 500 pixels an inch, in the photograph’s own colours.',
     );
     const full = outputOf({
       format: 'tiff',

@@ -70,7 +70,7 @@ describe.skipIf(!chromiumFound.path || !exiftool)('the print page in a real wind
     const dialog = page.getByRole('dialog', { name: 'Save the painting' });
     await dialog
       .getByText(
-        'TIFF of 8 bits, 102 × 102 mm at 150 pixels an inch, cropped to 1:1, with 3 mm of bleed, in sRGB.',
+        'TIFF of 8 bits, 101.6 × 101.6 mm at 150 pixels an inch, cropped to 1:1, with 3 mm of bleed, in sRGB.',
       )
       .waitFor();
     expect(await seriousFindings(page), 'save dialog').toEqual([]);
