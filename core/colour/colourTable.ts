@@ -1,6 +1,20 @@
 /** Points along each side of a colour table. */
 export const colourTableSide = 33;
 
+/**
+ * Colours of a table reach from this far below 0 to three times as far above: beyond what a screen can show they go on,
+ * and are cut off only between the points. A table of colours already cut off would round the edge away.
+ */
+const reach = 256;
+/** Steps of a table's numbers to one of the screen's. */
+const fineness = 64;
+const fineBits = 14;
+
+/** How a table holds a number of the screen, 0…255 or beyond. */
+export function tableNumber(value: number): number {
+  return Math.max(0, Math.min(65535, Math.round((value + reach) * fineness)));
+}
+
 const side = colourTableSide;
 const [stepR, stepG, stepB] = [3, 3 * side, 3 * side * side];
 
@@ -16,13 +30,21 @@ for (let value = 0; value < 256; value++) {
   beyondOf[value] = Math.round((place - pointOf[value]) * 256);
 }
 
+const half = 1 << (fineBits - 1);
+
+function cutOff(value: number): number {
+  const number = value - reach;
+  return number < 0 ? 0 : Math.min(number, 255);
+}
+
 /**
  * Brings colours through a table, by tetrahedral interpolation:
  * the four corners of a cell around the colour, so that greys stay on the line between two greys.
  * @param rgba R, G, B, A of 8 bits each; changed in place, A is left
- * @param table `colourTableSide`³ points, R fastest, then G, then B; 3 bytes a point; not modified
+ * @param table `colourTableSide`³ points, R fastest, then G, then B; 3 numbers a point, as `tableNumber` makes
+ * them; not modified
  */
-export function throughTable(rgba: Uint8Array | Uint8ClampedArray, table: Uint8Array): void {
+export function throughTable(rgba: Uint8Array | Uint8ClampedArray, table: Uint16Array): void {
   let last = -1;
   let outR = 0;
   let outG = 0;
@@ -90,13 +112,17 @@ export function throughTable(rgba: Uint8Array | Uint8ClampedArray, table: Uint8A
       const w2 = middle - small;
       const one = near + first;
       const two = near + second;
-      outR = (table[near] * w0 + table[one] * w1 + table[two] * w2 + table[far] * small + 128) >> 8;
-      outG =
-        (table[near + 1] * w0 + table[one + 1] * w1 + table[two + 1] * w2 + table[far + 1] * small + 128) >>
-        8;
-      outB =
-        (table[near + 2] * w0 + table[one + 2] * w1 + table[two + 2] * w2 + table[far + 2] * small + 128) >>
-        8;
+      outR = cutOff(
+        (table[near] * w0 + table[one] * w1 + table[two] * w2 + table[far] * small + half) >> fineBits,
+      );
+      outG = cutOff(
+        (table[near + 1] * w0 + table[one + 1] * w1 + table[two + 1] * w2 + table[far + 1] * small + half) >>
+          fineBits,
+      );
+      outB = cutOff(
+        (table[near + 2] * w0 + table[one + 2] * w1 + table[two + 2] * w2 + table[far + 2] * small + half) >>
+          fineBits,
+      );
     }
     rgba[i] = outR;
     rgba[i + 1] = outG;

@@ -69,6 +69,15 @@ export function matrixProfile(
   return assemble(tags);
 }
 
+/**
+ * The way from the connection space (XYZ under D50, Y = 1 for white) to a space's linear RGB, which for colours
+ * outside of it is less than 0 or more than 1.
+ * @returns three rows
+ */
+export function linearFromConnection(primaries: RgbPrimaries): readonly (readonly number[])[] {
+  return inverted(transposed(adaptedColorants(primaries).colorants));
+}
+
 /** Columns of linear RGB → XYZ, adapted from D65 to the connection space by Bradford. */
 function adaptedColorants(primaries: RgbPrimaries): { colorants: Matrix; adaptation: Matrix } {
   const toXyz = ([x, y]: Chromaticity): Vector => [x / y, 1, (1 - x - y) / y];

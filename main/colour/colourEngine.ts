@@ -15,6 +15,13 @@ const blackPointCompensationFlag = 0x2000;
 /** More points in the tables that LittleCMS makes of a whole chain: accuracy before memory. */
 const highResolutionFlag = 0x0400;
 
+/** No table of the whole chain at all: every colour by the profiles themselves. For few colours. */
+const noTablesFlag = 0x0100;
+
+/** R, G, B 0…1 and X, Y, Z with 1 for white: numbers of 32 bits with a point. */
+const rgbFloat = (1 << 22) | (4 << 16) | (3 << 3) | 4;
+const xyzFloat = (1 << 22) | (9 << 16) | (3 << 3) | 4;
+
 const spaceNumber: Record<PixelSpace | 'Lab', number> = { RGB: 4, CMYK: 6, GRAY: 3, Lab: 10 };
 
 /** Interleaved samples of 16 bits, as LittleCMS codes formats. */
@@ -76,6 +83,35 @@ export class ColourEngine {
       if (!made) throw new RangeError(`Expected profiles for the ${intent} intent, received others`);
       return this.#runner(made, fromSpace, toSpace);
     } finally {
+      lcms.cmsCloseProfile(input);
+      lcms.cmsCloseProfile(output);
+    }
+  }
+
+  /**
+   * Measures colours of an RGB profile, with its black at 0: relative colorimetric with black-point compensation.
+   * @param rgb interleaved, 0…1; not modified
+   * @returns X, Y, Z under D50, Y = 1 for white; beyond the numbers of 16 bits where colours are
+   * @throws RangeError where the profile cannot be used this way
+   */
+  measureRgb(profile: Uint8Array, rgb: Float32Array): Float32Array {
+    const { lcms } = this;
+    const input = this.#open(profile);
+    const output = lcms.cmsCreateXYZProfile();
+    const at = lcms._malloc(rgb.byteLength);
+    try {
+      if (lcms.cmsGetColorSpaceASCII(input) !== 'RGB')
+        throw new RangeError('Expected a profile for RGB, received one for another space');
+      const flags = noTablesFlag | blackPointCompensationFlag;
+      const intent = intentNumber.relative;
+      const made = lcms.cmsCreateTransform(input, rgbFloat, output, xyzFloat, intent, flags);
+      if (!made) throw new RangeError('Expected a profile that colours can be measured by, received another');
+      new Float32Array(lcms.HEAPU8.buffer, at, rgb.length).set(rgb);
+      lcms._cmsDoTransform(made, at, at, rgb.length / 3);
+      lcms.cmsDeleteTransform(made);
+      return new Float32Array(lcms.HEAPU8.buffer, at, rgb.length).slice();
+    } finally {
+      lcms._free(at);
       lcms.cmsCloseProfile(input);
       lcms.cmsCloseProfile(output);
     }

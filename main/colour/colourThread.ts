@@ -1,16 +1,17 @@
 import { Worker } from 'node:worker_threads';
 import { colourWorkerUrl } from './colourFiles.ts';
 import type { FinishedPixels, FinishJob } from './finishPixels.ts';
+import type { ScreenSpace } from './screenTable.ts';
 
 export type ColourQuestion = { id: number } & (
   | { kind: 'finish'; job: FinishJob }
   | { kind: 'spaceOf'; profile: Uint8Array }
-  | { kind: 'gamut'; rgb: Uint16Array; from: Uint8Array; print: Uint8Array }
-  | { kind: 'screen'; profile: Uint8Array }
+  | { kind: 'gamut'; from: Uint8Array; print: Uint8Array }
+  | { kind: 'screen'; profile: Uint8Array; screen: ScreenSpace }
 );
 
 export type ColourAnswer =
-  | { id: number; result: FinishedPixels | Uint8Array | string | null }
+  | { id: number; result: FinishedPixels | Uint16Array | string | null }
   | { id: number; problem: string };
 
 interface Waiting {
@@ -35,14 +36,14 @@ export function spaceOfProfile(profile: Uint8Array): Promise<string | null> {
   return ask<string | null>({ kind: 'spaceOf', profile });
 }
 
-/** See `gamutMask`. */
-export function maskOutOfGamut(rgb: Uint16Array, from: Uint8Array, print: Uint8Array): Promise<Uint8Array> {
-  return ask<Uint8Array>({ kind: 'gamut', rgb, from, print });
+/** See `gamutTable`. */
+export function tableOfGamut(from: Uint8Array, print: Uint8Array): Promise<Uint16Array> {
+  return ask<Uint16Array>({ kind: 'gamut', from, print });
 }
 
 /** See `screenTable`. */
-export function tableForScreen(profile: Uint8Array): Promise<Uint8Array | null> {
-  return ask<Uint8Array | null>({ kind: 'screen', profile });
+export function tableForScreen(profile: Uint8Array, screen: ScreenSpace): Promise<Uint16Array | null> {
+  return ask<Uint16Array | null>({ kind: 'screen', profile, screen });
 }
 
 type Asked<Question> = Question extends unknown ? Omit<Question, 'id'> : never;

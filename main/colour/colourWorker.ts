@@ -2,7 +2,7 @@ import { parentPort } from 'node:worker_threads';
 import { ColourEngine } from './colourEngine.ts';
 import type { ColourAnswer, ColourQuestion } from './colourThread.ts';
 import { finishPixels } from './finishPixels.ts';
-import { gamutMask } from './gamutMask.ts';
+import { gamutTable } from './gamutTable.ts';
 import { screenTable } from './screenTable.ts';
 
 /** One question after another, each answered under its number. */
@@ -21,7 +21,7 @@ function answer(loaded: ColourEngine, question: ColourQuestion): void {
 /** What lies in shared memory cannot be handed over, nor need it be. */
 function buffersOf(result: ReturnType<typeof compute>): ArrayBuffer[] {
   if (result === null || typeof result === 'string') return [];
-  const { buffer } = result instanceof Uint8Array ? result : result.pixels;
+  const { buffer } = 'pixels' in result ? result.pixels : result;
   return buffer instanceof ArrayBuffer ? [buffer] : [];
 }
 
@@ -32,9 +32,9 @@ function compute(loaded: ColourEngine, question: ColourQuestion) {
     case 'spaceOf':
       return loaded.spaceOf(question.profile);
     case 'gamut':
-      return gamutMask(loaded, question.rgb, question.from, question.print);
+      return gamutTable(loaded, question.from, question.print);
     case 'screen':
-      return screenTable(loaded, question.profile);
+      return screenTable(loaded, question.profile, question.screen);
   }
 }
 

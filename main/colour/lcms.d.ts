@@ -9,6 +9,7 @@ declare module 'lcms-wasm/dist/lcms.js' {
     cmsCloseProfile(profile: number): void;
     cmsGetColorSpaceASCII(profile: number): string | null;
     cmsCreateLab4Profile(): number;
+    cmsCreateXYZProfile(): number;
     cmsCreateTransform(
       input: number,
       inputFormat: number,

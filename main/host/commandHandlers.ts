@@ -48,11 +48,11 @@ export function createCommandHandlers(state: HostState): CommandHandlers {
     },
     paintStrata: (input, call) => paint.paintStrata(photos.find(input.photoId), input, call),
     paintSmallPicture: (input, call) => paint.paintSmallPicture(photos.find(input.photoId), input, call),
-    markOutOfGamut: (input, call) => {
+    readGamutTable: async (input) => {
       if (typeof input.profile === 'object') grants.checkProfile(input.profile.file);
-      return paint.markOutOfGamut(photos.find(input.photoId), input, call);
+      return paint.readGamutTable(photos.find(input.photoId), input);
     },
-    readScreenTable: ({ photoId }) => paint.readScreenTable(photos.find(photoId)),
+    readScreenTable: (input) => paint.readScreenTable(photos.find(input.photoId), input),
     savePainting: (input, call) =>
       savePainting(photos.find(input.photoId), input, call, {
         loadEngine: () => parts.loadEngine(),

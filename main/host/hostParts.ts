@@ -1,5 +1,6 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { DecodedPhoto, Strata } from '../../core/pixels/photo.ts';
+import type { ScreenSpace } from '../colour/screenTable.ts';
 import type { Engine, EnginePhoto, OpenOptions } from '../engine/engineApi.ts';
 import type { AnyPictureFile, PhotoFile } from '../files/photoFile.ts';
 import type { SpilledPhoto } from '../files/spillPhoto.ts';
@@ -50,11 +51,11 @@ export interface HostFiles {
   /** A quick decode at 1/2^`level` of the size; null where the format has no short cut. */
   readQuick(path: string, facts: PhotoFacts, level: number): Promise<DecodedPhoto | null>;
   /** The way of the photo's colours to the screen, for `throughTable`; null where there is nothing to convert. */
-  readScreenTable(path: string): Promise<Uint8Array | null>;
+  readScreenTable(path: string, screen: ScreenSpace): Promise<Uint16Array | null>;
   /** What a file for a profile would be. */
   describeProfile(path: string, profile: PrintProfile): Promise<ProfileFacts>;
-  /** Marks the pixels of a small painted picture that a printing condition cannot show: one byte each. */
-  markOutOfGamut(path: string, rgba: Uint8Array, profile: PrintProfile): Promise<Uint8Array>;
+  /** What a printing condition makes of the photo's colours, for `markOutside`; null where nothing is converted. */
+  readGamutTable(path: string, profile: PrintProfile): Promise<Uint16Array | null>;
 }
 
 /** A profile to print for. */

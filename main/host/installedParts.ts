@@ -32,7 +32,7 @@ export function installedParts(options: {
         quick,
         { removeAbandonedSpills },
         { readScreenTable },
-        { markOutOfGamut },
+        { readGamutTable },
         { readForPrint },
         { paintPrepared },
         { deliverPainting },
@@ -43,7 +43,7 @@ export function installedParts(options: {
         import('./quickPicture.ts'),
         import('../files/spillFile.ts'),
         import('./readScreenTable.ts'),
-        import('./markOutOfGamut.ts'),
+        import('./readGamutTable.ts'),
         import('../painting/readForPrint.ts'),
         import('../painting/paintPrepared.ts'),
         import('../painting/deliverPainting.ts'),
@@ -62,7 +62,7 @@ export function installedParts(options: {
         readQuick,
         readScreenTable,
         describeProfile,
-        markOutOfGamut,
+        readGamutTable,
       };
     }),
     loadStores: once<Stores>(async () => {

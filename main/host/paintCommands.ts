@@ -3,7 +3,12 @@ import { encodeFrame } from '../../core/hostProtocol/frame.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import type { Rect, Strata } from '../../core/pixels/photo.ts';
 import type { CheckedInput } from './api/commandSchemas.ts';
-import type { ScreenTableHeader, SmallPictureHeader, StrataHeader } from './api/hostCommands.ts';
+import type {
+  GamutTableHeader,
+  ScreenTableHeader,
+  SmallPictureHeader,
+  StrataHeader,
+} from './api/hostCommands.ts';
 import type { HostParts } from './hostParts.ts';
 import { clipRegion, coarserRegion, parametersForReduced } from './levels.ts';
 import type { OpenPhoto } from './openPhoto.ts';
@@ -26,10 +31,23 @@ export class PaintCommands {
   ) {}
 
   /** See `HostCommands.readScreenTable`. */
-  async readScreenTable(photo: OpenPhoto): Promise<Uint8Array<ArrayBuffer>> {
-    const table = await this.screenTables.of(photo.path);
-    const header: ScreenTableHeader = { photoId: photo.photoId };
+  async readScreenTable(
+    photo: OpenPhoto,
+    { screen = 'srgb' }: CheckedInput<'readScreenTable'>,
+  ): Promise<Uint8Array<ArrayBuffer>> {
+    const { table, space } = await this.screenTables.wayTo(photo.path, screen);
+    const header: ScreenTableHeader = { photoId: photo.photoId, space };
     return encodeFrame(header, table ? { table } : {});
+  }
+
+  /** See `HostCommands.readGamutTable`. @param profile a file's path was checked */
+  async readGamutTable(
+    photo: OpenPhoto,
+    { profile }: CheckedInput<'readGamutTable'>,
+  ): Promise<Uint8Array<ArrayBuffer>> {
+    const files = await this.parts.loadFiles();
+    const table = await files.readGamutTable(photo.path, profile);
+    return encodeFrame({ photoId: photo.photoId } satisfies GamutTableHeader, table ? { table } : {});
   }
 
   /**
@@ -74,39 +92,12 @@ export class PaintCommands {
   }
 
   /** Paints and composes a picture of a few hundred pixels; such pictures wait while a view is painted. */
-  paintSmallPicture(
+  async paintSmallPicture(
     photo: OpenPhoto,
     input: CheckedInput<'paintSmallPicture'>,
     call: RunningCall,
   ): Promise<Uint8Array<ArrayBuffer>> {
     if (input.view) this.calls.takePlace(`small ${photo.photoId} ${input.view}`, call);
-    return this.#paintSmall(photo, input, call, async (header, rgba) => {
-      const table = await this.screenTables.of(photo.path);
-      if (table) throughTable(rgba, table);
-      return encodeFrame(header, { rgba });
-    });
-  }
-
-  /** See `HostCommands.markOutOfGamut`. @param profile a file's path was checked */
-  markOutOfGamut(
-    photo: OpenPhoto,
-    input: CheckedInput<'markOutOfGamut'>,
-    call: RunningCall,
-  ): Promise<Uint8Array<ArrayBuffer>> {
-    this.calls.takePlace(`gamut ${photo.photoId}`, call);
-    return this.#paintSmall(photo, input, call, async (header, rgba) => {
-      const files = await this.parts.loadFiles();
-      return encodeFrame(header, { outside: await files.markOutOfGamut(photo.path, rgba, input.profile) });
-    });
-  }
-
-  /** @param use takes the composed picture in the photo's own colours */
-  async #paintSmall(
-    photo: OpenPhoto,
-    input: Omit<CheckedInput<'paintSmallPicture'>, 'view'>,
-    call: RunningCall,
-    use: (header: SmallPictureHeader, rgba: Uint8Array) => Promise<Uint8Array<ArrayBuffer>>,
-  ): Promise<Uint8Array<ArrayBuffer>> {
     const parameters = parseParameters(input.parameters);
     const [engine, compose] = await Promise.all([this.parts.loadEngine(), this.parts.loadComposeSmall()]);
     const level = levelForLongEdge(photo, input.longEdgePx);
@@ -120,8 +111,16 @@ export class PaintCommands {
         );
         signal.throwIfAborted();
         const { widthPx, heightPx } = strata;
-        const header = { photoId: photo.photoId, widthPx, heightPx, source: source.kind };
-        return use(header, await compose(strata, parameters));
+        const header: SmallPictureHeader = {
+          photoId: photo.photoId,
+          widthPx,
+          heightPx,
+          source: source.kind,
+        };
+        const rgba = await compose(strata, parameters);
+        const table = await this.screenTables.of(photo.path);
+        if (table) throughTable(rgba, table);
+        return encodeFrame(header, { rgba });
       }),
     );
   }

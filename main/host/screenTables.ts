@@ -1,18 +1,25 @@
+import type { ScreenSpace } from '../colour/screenTable.ts';
 import type { HostFiles } from './hostParts.ts';
 
-/** So many photos' tables are remembered: more than may be open, few enough to be nothing (108 KB each). */
+/** So many photos' tables are remembered: more than may be open, few enough to be nothing (216 KB each). */
 const mostTables = 8;
+
+/** How a photo's numbers come to a screen: through a table where there is one, and then in which space they are. */
+export interface WayToScreen {
+  table: Uint16Array | null;
+  space: ScreenSpace;
+}
 
 /** The tables that bring photos' colours to the screen, by path. */
 export class ScreenTables {
-  readonly #tables = new Map<string, Promise<Uint8Array | null>>();
+  readonly #tables = new Map<string, Promise<Uint16Array | null>>();
 
   constructor(private readonly loadFiles: () => Promise<HostFiles>) {}
 
   /** Finds a photo's table anew, for it is being opened and may have changed; nobody waits for it yet. */
   begin(path: string): void {
     const table = this.loadFiles()
-      .then((files) => files.readScreenTable(path))
+      .then((files) => files.readScreenTable(path, 'srgb'))
       // A file that cannot be read is told of by whoever paints it.
       .catch(() => null);
     this.#tables.delete(path);
@@ -21,9 +28,17 @@ export class ScreenTables {
     if (this.#tables.size > mostTables) this.#tables.delete(oldest);
   }
 
-  /** @returns null where the photo's numbers are shown as they are */
-  async of(path: string): Promise<Uint8Array | null> {
+  /** @returns null where the photo's numbers are sRGB as they are */
+  async of(path: string): Promise<Uint16Array | null> {
     if (!this.#tables.has(path)) this.begin(path);
     return this.#tables.get(path)!;
+  }
+
+  /** The way to a canvas: photos in sRGB stay as they are on any, others make use of a wider one. */
+  async wayTo(path: string, screen: ScreenSpace): Promise<WayToScreen> {
+    const table = await this.of(path);
+    if (!table || screen === 'srgb') return { table, space: 'srgb' };
+    const files = await this.loadFiles();
+    return { table: await files.readScreenTable(path, screen), space: screen };
   }
 }

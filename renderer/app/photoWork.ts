@@ -1,5 +1,7 @@
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { compositor } from '../compositing/compositor.ts';
+import { canvasSpace } from '../compositing/compositorClient.ts';
+import type { WayToScreen } from '../compositing/messages.ts';
 import { host, isUnwanted, troubleOf } from '../host/host.ts';
 import { changeLook, endLook, startLook } from '../state/lookStore.ts';
 import { addNotice } from '../state/noticeStore.ts';
@@ -21,9 +23,9 @@ export async function openPhoto(path: string): Promise<void> {
     const photo = await host.call('openPhoto', { path }, { signal: abort.signal });
     if (abort.signal.aborted) return;
     // Fetched before the first picture, which else would turn colour before one's eyes.
-    const screenTable = await screenTableOf(photo.photoId, abort.signal);
+    const way = await wayToScreen(photo.photoId, abort.signal);
     if (abort.signal.aborted) return;
-    compositor.setScreenTable(screenTable);
+    compositor.setWayToScreen(way);
     openingStore.set({ path: null, trouble: null });
     setOnEasel(photo);
     roomStore.set('easel');
@@ -35,10 +37,14 @@ export async function openPhoto(path: string): Promise<void> {
 }
 
 /** Photos whose way to the screen cannot be found are shown by their numbers. */
-async function screenTableOf(photoId: string, signal: AbortSignal): Promise<Uint8Array | null> {
-  const frame = await host.callForFrame('readScreenTable', { photoId }, { signal }).catch(() => null);
+async function wayToScreen(photoId: string, signal: AbortSignal): Promise<WayToScreen> {
+  const screen = canvasSpace === 'srgb' ? 'srgb' : 'p3';
+  const frame = await host.callForFrame('readScreenTable', { photoId, screen }, { signal }).catch(() => null);
   const table = frame?.planes.table;
-  return table instanceof Uint8Array ? table.slice() : null;
+  return {
+    table: table instanceof Uint16Array ? table.slice() : null,
+    space: frame?.header.space === 'p3' ? 'display-p3' : 'srgb',
+  };
 }
 
 export function cancelOpening(): void {

@@ -11,20 +11,25 @@ import type { Parameters } from '../../core/parameters/table.ts';
 import type { Strata } from '../../core/pixels/photo.ts';
 import { BlockHeap } from './blockHeap.ts';
 import { ComposeHands } from './composeHands.ts';
+import type { WayToScreen } from './messages.ts';
 
 /** Turns strata into the pixels of the canvas. */
 export interface Composer {
   /** Copies the strata into the kernels' memory. */
   hold(strata: Strata): HeldStrata;
   /** Takes effect with the next composition. */
-  setScreenTable(table: Uint8Array | null): void;
+  setWayToScreen(way: WayToScreen): void;
 }
 
 export interface HeldStrata {
   /** Views of the kernels' memory, until `release`. */
   readonly strata: Strata;
-  /** Interleaved R, G, B, A, straight alpha, in the canvas's colours; written into `target`. */
+  /** What the numbers of the composed picture mean. */
+  readonly space: PredefinedColorSpace;
+  /** Interleaved R, G, B, A, straight alpha, in that space; written into `target`. */
   compose(parameters: Parameters, target: Uint8ClampedArray): void;
+  /** The same in the photo's own colours. */
+  composeOwn(parameters: Parameters): Uint8ClampedArray;
   /** Brings pixels in the photo's colours to the canvas's. */
   toScreen(rgba: Uint8ClampedArray): void;
   release(): void;
@@ -42,14 +47,11 @@ export async function createComposer(): Promise<Composer> {
   const hands = new ComposeHands((part) => composeHere(...part), { module, memory }, helperCount());
   // The kernel as composition knows it, done by all hands.
   const shared: Kernels = { ...kernels, compose: (...whole) => hands.compose(whole) };
-  let screenTable: Uint8Array | null = null;
-  const toScreen = (rgba: Uint8ClampedArray) => {
-    if (screenTable) throughTable(rgba, screenTable);
-  };
+  const screen: WayToScreen = { table: null, space: 'srgb' };
   return {
-    hold: (strata) => holdStrata(shared, heap, strata, toScreen),
-    setScreenTable(table) {
-      screenTable = table;
+    hold: (strata) => holdStrata(shared, heap, strata, screen),
+    setWayToScreen: (way) => {
+      Object.assign(screen, way);
     },
   };
 }
@@ -63,7 +65,8 @@ function holdStrata(
   kernels: Kernels,
   heap: BlockHeap,
   strata: Strata,
-  toScreen: (rgba: Uint8ClampedArray) => void,
+  /** As it stands whenever something is composed. */
+  screen: WayToScreen,
 ): HeldStrata {
   const count = strata.widthPx * strata.heightPx;
   const bytesPerSample = strata.ground.BYTES_PER_ELEMENT as 1 | 2;
@@ -97,13 +100,26 @@ function holdStrata(
     relief: reliefPointer,
   };
   const composed: ComposedPointer = { out: outPointer, bytesPerSample: 1, channels: 4 };
+  const toScreen = (rgba: Uint8ClampedArray) => {
+    if (screen.table) throughTable(rgba, screen.table);
+  };
+  const composeOut = (parameters: Parameters) => {
+    writeCompositionSettings(settings, parameters);
+    compose(kernels, pointers, parameters, settingsPointer, count, composed);
+  };
   return {
     strata: { ...strata, ground, body, line, relief },
+    get space() {
+      return screen.space;
+    },
     compose(parameters, target) {
-      writeCompositionSettings(settings, parameters);
-      compose(kernels, pointers, parameters, settingsPointer, count, composed);
+      composeOut(parameters);
       target.set(out);
       toScreen(target);
+    },
+    composeOwn(parameters) {
+      composeOut(parameters);
+      return out.slice();
     },
     toScreen,
     release() {

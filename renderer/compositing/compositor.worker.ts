@@ -78,8 +78,8 @@ scope.onmessage = ({ data }: MessageEvent<ToCompositor>) => {
 function take(message: ToCompositor, composer: Composer): void {
   switch (message.kind) {
     case 'start':
-      pictureContext = message.picture.getContext('2d');
-      sectionContext = message.section.getContext('2d');
+      pictureContext = message.picture.getContext('2d', { colorSpace: message.space });
+      sectionContext = message.section.getContext('2d', { colorSpace: message.space });
       tell({ kind: 'ready' });
       return;
     case 'piece':
@@ -91,7 +91,7 @@ function take(message: ToCompositor, composer: Composer): void {
       drawSoon();
       return;
     case 'screen':
-      composer.setScreenTable(message.table);
+      composer.setWayToScreen(message.way);
       for (const side of Object.values(sheets)) for (const sheet of Object.values(side)) sheet.colourAgain();
       drawSoon();
       return;

@@ -1,4 +1,12 @@
-import type { FromCompositor, PaintedPiece, PieceSlot, Scene, SceneSide, ToCompositor } from './messages.ts';
+import type {
+  FromCompositor,
+  PaintedPiece,
+  PieceSlot,
+  Scene,
+  SceneSide,
+  ToCompositor,
+  WayToScreen,
+} from './messages.ts';
 
 /** How long a frame took; also sent to the window as an event, so that it can be measured from outside. */
 export interface FrameTime {
@@ -11,6 +19,10 @@ export interface FrameTime {
 
 /** One for each slot, and one more on its way. */
 const spentKept = 4;
+
+/** A canvas keeps its space: that of the screen the window was opened on. */
+export const canvasSpace: PredefinedColorSpace =
+  typeof matchMedia !== 'undefined' && matchMedia('(color-gamut: p3)').matches ? 'display-p3' : 'srgb';
 
 /** The window's end of the compositing worker. */
 export class CompositorClient {
@@ -28,7 +40,7 @@ export class CompositorClient {
   }
 
   start(picture: OffscreenCanvas, section: OffscreenCanvas): void {
-    this.send({ kind: 'start', picture, section }, [picture, section]);
+    this.send({ kind: 'start', picture, section, space: canvasSpace }, [picture, section]);
   }
 
   setPiece(side: SceneSide, slot: PieceSlot, piece: PaintedPiece): void {
@@ -40,8 +52,8 @@ export class CompositorClient {
   }
 
   /** For all pieces of the photo on the easel, those that are held and those that come. */
-  setScreenTable(table: Uint8Array | null): void {
-    this.send({ kind: 'screen', table });
+  setWayToScreen(way: WayToScreen): void {
+    this.send({ kind: 'screen', way });
   }
 
   show(scene: Omit<Scene, 'id'>): number {

@@ -3,6 +3,12 @@ import type { Rect, Strata } from '../../core/pixels/photo.ts';
 import type { BandPlace } from '../geometry/sectionLayout.ts';
 import type { PlacedView, Size } from '../geometry/viewTransform.ts';
 
+/** How a photo's numbers come to the canvas: through a table where there is one, and then in which space they are. */
+export interface WayToScreen {
+  table: Uint16Array | null;
+  space: PredefinedColorSpace;
+}
+
 /** Everything the compositing worker needs to draw one frame. Lengths are device pixels. */
 export interface Scene {
   id: number;
@@ -40,11 +46,11 @@ export type PieceSlot = 'rough' | 'base' | 'detail';
 export type SceneSide = 'easel' | 'left';
 
 export type ToCompositor =
-  | { kind: 'start'; picture: OffscreenCanvas; section: OffscreenCanvas }
+  /** @param space that of the canvases, for as long as the window lives */
+  | { kind: 'start'; picture: OffscreenCanvas; section: OffscreenCanvas; space: PredefinedColorSpace }
   | { kind: 'piece'; side: SceneSide; slot: PieceSlot; piece: PaintedPiece }
   | { kind: 'dropPiece'; side: SceneSide; slot: PieceSlot }
-  /** How the photo's colours come to the canvas; null for numbers as they are. */
-  | { kind: 'screen'; table: Uint8Array | null }
+  | { kind: 'screen'; way: WayToScreen }
   | { kind: 'scene'; scene: Scene };
 
 export type FromCompositor =

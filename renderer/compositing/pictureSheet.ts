@@ -58,9 +58,10 @@ export class PictureSheet {
     const { firstRow, rowCount, firstColumn, columnCount } = place;
     const key = [firstRow, rowCount, firstColumn, columnCount, stratum === 'line' ? inkColour : ''].join();
     let strip = this.strips.get(stratum);
-    if (strip?.pixels.width !== columnCount || strip.pixels.height !== rowCount) {
+    const { space } = this.held;
+    if (!strip?.fits(columnCount, rowCount, space)) {
       strip?.giveBack();
-      strip = new Strip(columnCount, rowCount);
+      strip = new Strip(columnCount, rowCount, space);
       this.strips.set(stratum, strip);
     }
     if (strip.key !== key) {
@@ -119,10 +120,15 @@ class Strip {
   readonly pixels: ImageData;
   key = '';
 
-  constructor(columnCount: number, rowCount: number) {
+  constructor(columnCount: number, rowCount: number, colorSpace: PredefinedColorSpace) {
     this.canvas = new OffscreenCanvas(columnCount, rowCount);
-    this.context = this.canvas.getContext('2d', { willReadFrequently: true })!;
-    this.pixels = new ImageData(columnCount, rowCount);
+    this.context = this.canvas.getContext('2d', { willReadFrequently: true, colorSpace })!;
+    this.pixels = new ImageData(columnCount, rowCount, { colorSpace });
+  }
+
+  fits(columnCount: number, rowCount: number, space: PredefinedColorSpace): boolean {
+    const { width, height, colorSpace } = this.pixels;
+    return width === columnCount && height === rowCount && colorSpace === space;
   }
 
   giveBack(): void {
@@ -137,10 +143,10 @@ interface Surface {
   pixels: ImageData;
 }
 
-function createSurface({ widthPx, heightPx }: Strata): Surface {
+function createSurface({ strata: { widthPx, heightPx }, space: colorSpace }: HeldStrata): Surface {
   const canvas = new OffscreenCanvas(widthPx, heightPx);
-  const context = canvas.getContext('2d', { willReadFrequently: true })!;
-  return { canvas, context, pixels: new ImageData(widthPx, heightPx) };
+  const context = canvas.getContext('2d', { willReadFrequently: true, colorSpace })!;
+  return { canvas, context, pixels: new ImageData(widthPx, heightPx, { colorSpace }) };
 }
 
 class ComposedPicture {
@@ -151,7 +157,7 @@ class ComposedPicture {
     private readonly held: HeldStrata,
     surface: Surface | undefined,
   ) {
-    this.surface = surface ?? createSurface(held.strata);
+    this.surface = surface ?? createSurface(held);
   }
 
   get canvas(): OffscreenCanvas {
@@ -182,6 +188,10 @@ class ComposedPicture {
   compose(parameters: Parameters): boolean {
     const key = compositionKey(parameters);
     if (key === this.composedFor) return false;
+    if (this.surface!.pixels.colorSpace !== this.held.space) {
+      this.release();
+      this.surface = createSurface(this.held);
+    }
     const { pixels, context } = this.surface!;
     this.held.compose(parameters, pixels.data);
     context.putImageData(pixels, 0, 0);

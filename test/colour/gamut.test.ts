@@ -2,8 +2,10 @@ import { execFileSync } from 'node:child_process';
 import { existsSync, readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { markOutside } from '../../core/colour/gamutMarks.ts';
 import { p3Profile, srgbProfile } from '../../core/colour/matrixProfile.ts';
-import { maskOutOfGamut } from '../../main/colour/colourThread.ts';
+import { ColourEngine } from '../../main/colour/colourEngine.ts';
+import { gamutTable } from '../../main/colour/gamutTable.ts';
 import { writePicture } from '../../main/files/writePicture.ts';
 import { makeTestHost, type TestHost } from '../host/testHost.ts';
 
@@ -22,16 +24,23 @@ function transicc(input: string, output: string, rows: readonly (readonly number
 
 const cube = [0, 51, 102, 153, 204, 255];
 const colours = cube.flatMap((r) => cube.flatMap((g) => cube.map((b) => [r, g, b])));
-const rgb16 = Uint16Array.from(colours.flat(), (value) => value * 257);
+const rgba = Uint8Array.from(colours.flatMap((colour) => [...colour, 255]));
+
+async function marksOf(from: Uint8Array, print: Uint8Array): Promise<Uint8Array> {
+  const marks = new Uint8Array(colours.length);
+  const count = markOutside(rgba.slice(), gamutTable(await ColourEngine.load(), from, print), marks);
+  expect(count).toBe(marks.reduce((sum, mark) => sum + mark, 0));
+  return marks;
+}
 
 describe('colours outside of what a file can show', () => {
   it('are none where the file’s space holds the photo’s', async () => {
-    const outside = await maskOutOfGamut(rgb16, srgbProfile(), p3Profile());
+    const outside = await marksOf(srgbProfile(), p3Profile());
     expect(outside.every((mark) => mark === 0)).toBe(true);
   });
 
   it('are the strongest of P3 where the file is sRGB, never greys', async () => {
-    const outside = await maskOutOfGamut(rgb16, p3Profile(), srgbProfile());
+    const outside = await marksOf(p3Profile(), srgbProfile());
     const isOutside = (...colour: number[]) =>
       outside[colours.findIndex((other) => other.every((part, c) => part === colour[c]))] === 1;
     expect([isOutside(255, 0, 0), isOutside(0, 255, 0), isOutside(255, 51, 0)]).toEqual([true, true, true]);
@@ -42,7 +51,7 @@ describe('colours outside of what a file can show', () => {
   it.skipIf(!hasPrint)(
     'in print are those that transicc moves there and back (skipped without it)',
     async () => {
-      const outside = await maskOutOfGamut(rgb16, srgbProfile(), new Uint8Array(readFileSync(cmykPath)));
+      const outside = await marksOf(srgbProfile(), new Uint8Array(readFileSync(cmykPath)));
       const asked = transicc('*sRGB', '*Lab', colours);
       const inks = transicc('*sRGB', cmykPath, colours);
       const shown = transicc(cmykPath, '*Lab', inks);
@@ -68,31 +77,35 @@ describe('the host’s overlay', () => {
   });
   afterAll(() => t.close());
 
-  it('marks the half of a photo that sRGB cannot show', async () => {
-    const path = join(t.photos, 'half.png');
-    const pixels = new Uint8Array(64 * 48 * 3);
-    for (let i = 0; i < 64 * 48; i++) pixels.set(i % 64 < 32 ? [255, 0, 0] : [120, 120, 120], i * 3);
-    const iccProfile = p3Profile();
+  const open = async (iccProfile: Uint8Array) => {
+    const path = join(t.photos, 'red.png');
+    const pixels = Uint8Array.from({ length: 64 * 48 * 3 }, (_, i) => (i % 3 === 0 ? 255 : 0));
     await writePicture(path, { widthPx: 64, heightPx: 48, channels: 3, pixels, iccProfile, format: 'png' });
     await t.host.offerPath(path);
-    const { photoId } = await t.caller.call('openPhoto', { path });
-    const asked = { photoId, parameters: {}, longEdgePx: 64 };
-    const { header, planes } = await t.caller.callForFrame('markOutOfGamut', { ...asked, profile: 'srgb' });
-    const outside = planes.outside!;
-    expect(outside).toHaveLength(header.widthPx * header.heightPx);
-    const row = [...outside.subarray(24 * 64, 25 * 64)];
-    expect(row.slice(0, 20)).toEqual(Array(20).fill(1));
-    expect(row.slice(-20)).toEqual(Array(20).fill(0));
-    const kept = await t.caller.callForFrame('markOutOfGamut', { ...asked, profile: 'keep' });
-    expect(kept.planes.outside!.every((mark) => mark === 0)).toBe(true);
+    return (await t.caller.call('openPhoto', { path })).photoId;
+  };
+
+  it('is told what sRGB makes of a photo in Display P3', async () => {
+    const photoId = await open(p3Profile());
+    const { planes } = await t.caller.callForFrame('readGamutTable', { photoId, profile: 'srgb' });
+    const marks = new Uint8Array(2);
+    markOutside(Uint8Array.from([255, 0, 0, 255, 120, 120, 120, 255]), planes.table as Uint16Array, marks);
+    expect([...marks]).toEqual([1, 0]);
+  });
+
+  it('is told nothing where the file keeps the photo’s colours', async () => {
+    const photoId = await open(srgbProfile());
+    for (const profile of ['keep', 'srgb'] as const) {
+      const { planes } = await t.caller.callForFrame('readGamutTable', { photoId, profile });
+      expect(planes.table).toBeUndefined();
+    }
   });
 
   it('reads no file that nobody chose', async () => {
-    const path = join(t.photos, 'half.png');
-    const { photoId } = await t.caller.call('openPhoto', { path });
+    const photoId = await open(srgbProfile());
     const profile = { file: '/etc/hostname' };
-    await expect(
-      t.caller.callForFrame('markOutOfGamut', { photoId, parameters: {}, longEdgePx: 64, profile }),
-    ).rejects.toMatchObject({ kind: 'NotAllowed' });
+    await expect(t.caller.callForFrame('readGamutTable', { photoId, profile })).rejects.toMatchObject({
+      kind: 'NotAllowed',
+    });
   });
 });

@@ -2,7 +2,7 @@ import { writeFile } from 'node:fs/promises';
 import { join } from 'node:path';
 import sharp from 'sharp';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
-import { colourTableSide, throughTable } from '../../core/colour/colourTable.ts';
+import { colourTableSide, tableNumber, throughTable } from '../../core/colour/colourTable.ts';
 import { p3Profile, srgbProfile } from '../../core/colour/matrixProfile.ts';
 import { writePicture } from '../../main/files/writePicture.ts';
 import { makeTestHost, type TestHost } from './testHost.ts';
@@ -39,11 +39,11 @@ describe('colours on the screen', () => {
     const { planes } = await t.caller.callForFrame('paintSmallPicture', { photoId, ...small });
     const rgba = planes.rgba!;
     for (let c = 0; c < 3; c++)
-      expect(Math.abs(rgba[c] - srgb[c]), `${[...rgba.subarray(0, 3)]}`).toBeLessThan(6);
+      expect(Math.abs(rgba[c] - srgb[c]), `${[...rgba.subarray(0, 3)]}`).toBeLessThanOrEqual(2);
     const { planes: way } = await t.caller.callForFrame('readScreenTable', { photoId });
     const canvas = Uint8ClampedArray.from([...p3, 255]);
-    throughTable(canvas, way.table as Uint8Array);
-    for (let c = 0; c < 3; c++) expect(Math.abs(canvas[c] - srgb[c])).toBeLessThan(6);
+    throughTable(canvas, way.table as Uint16Array);
+    for (let c = 0; c < 3; c++) expect(Math.abs(canvas[c] - srgb[c])).toBeLessThanOrEqual(1);
     expect(canvas[3]).toBe(255);
   });
 
@@ -77,7 +77,7 @@ describe('a colour table', () => {
     for (let b = 0; b < colourTableSide; b++)
       for (let g = 0; g < colourTableSide; g++)
         for (let r = 0; r < colourTableSide; r++) points.push(...way(r * step, g * step, b * step));
-    return Uint8Array.from(points, Math.round);
+    return Uint16Array.from(points, tableNumber);
   };
 
   it('that changes nothing changes nothing by more than its own rounding', () => {

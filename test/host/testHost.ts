@@ -9,8 +9,8 @@ import type { HostCommands } from '../../main/host/api/hostCommands.ts';
 import { describeProfile } from '../../main/host/describeProfile.ts';
 import { createHost, type Host } from '../../main/host/host.ts';
 import type { HostParts } from '../../main/host/hostParts.ts';
-import { markOutOfGamut } from '../../main/host/markOutOfGamut.ts';
 import { readFacts, readQuick } from '../../main/host/quickPicture.ts';
+import { readGamutTable } from '../../main/host/readGamutTable.ts';
 import { readScreenTable } from '../../main/host/readScreenTable.ts';
 import { deliverPainting } from '../../main/painting/deliverPainting.ts';
 import { holdPhoto } from '../../main/painting/holdPhoto.ts';
@@ -56,7 +56,7 @@ export async function makeTestHost(changes: Partial<HostParts> = {}): Promise<Te
       readQuick,
       readScreenTable,
       describeProfile,
-      markOutOfGamut,
+      readGamutTable,
     }),
     loadStores: async () => openStores(join(folder, 'data')),
     loadComposeSmall: async () => async (strata) => {

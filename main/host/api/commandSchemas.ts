@@ -60,15 +60,9 @@ export const commandSchemas = {
     view: z.string().min(1).max(40).optional(),
     printLongEdgeMm,
   }),
-  markOutOfGamut: z.strictObject({
-    photoId,
-    parameters,
-    longEdgePx: z.int().min(16).max(512),
-    profile,
-    printLongEdgeMm,
-  }),
+  readGamutTable: z.strictObject({ photoId, profile }),
   describeProfile: z.strictObject({ photoId, profile }),
-  readScreenTable: z.strictObject({ photoId }),
+  readScreenTable: z.strictObject({ photoId, screen: z.enum(['srgb', 'p3']).optional() }),
   savePainting: z.strictObject({
     photoId,
     parameters,

@@ -26,15 +26,15 @@ export interface HostCommands extends MemoryCommands, SeriesCommands, RunCommand
   /** Paints and composes a small picture: plane `rgba`, 8 bits. For presets, states and recents. */
   paintSmallPicture: { input: PaintSmallPictureInput; frame: SmallPictureHeader };
   /**
-   * Paints a small picture and marks what a file for that profile cannot show: plane `outside`, one byte a pixel, 1 where
-   * printing moves the colour by more than a CIE 1976 difference of 4.
+   * How far a file for that profile moves each colour of the photo: plane `table` for `markOutside`, absent where the
+   * photo's own colours are kept.
    */
-  markOutOfGamut: { input: MarkOutOfGamutInput; frame: SmallPictureHeader };
+  readGamutTable: { input: { photoId: string; profile: PrintProfileName }; frame: GamutTableHeader };
   /**
-   * The way of a photo's colours to the canvas: plane `table` for `throughTable`, absent where numbers are shown as they
-   * are. Small pictures are converted already.
+   * The way of a photo's colours to a canvas of sRGB, or of Display P3: plane `table` for `throughTable`, absent where
+   * numbers are shown as they are; the header says in which space they are then. Small pictures are in sRGB already.
    */
-  readScreenTable: { input: { photoId: string }; frame: ScreenTableHeader };
+  readScreenTable: { input: { photoId: string; screen?: ScreenSpaceName }; frame: ScreenTableHeader };
   /** Paints at full resolution for print, as the photo's recipe asks, and writes a file; progress comes as events under the call's id. */
   savePainting: { input: SavePaintingInput; output: SavedPainting };
   /** Folders and photos in a folder; the home folder unless one is named that an earlier answer showed. */
@@ -180,14 +180,6 @@ export interface SmallPictureHeader {
   source: 'quick' | 'full';
 }
 
-export interface MarkOutOfGamutInput {
-  photoId: string;
-  parameters: Partial<Parameters>;
-  longEdgePx: number;
-  profile: PrintProfileName;
-  printLongEdgeMm?: number;
-}
-
 /** The photo's own, sRGB, Display P3, or an ICC file. */
 export type PrintProfileName = 'keep' | 'srgb' | 'p3' | { file: string };
 
@@ -199,9 +191,17 @@ export interface ProfileFacts {
   isConverted: boolean;
 }
 
-export interface ScreenTableHeader {
+export interface GamutTableHeader {
   photoId: string;
 }
+
+export interface ScreenTableHeader {
+  photoId: string;
+  space: ScreenSpaceName;
+}
+
+/** Spaces of a canvas. */
+export type ScreenSpaceName = 'srgb' | 'p3';
 
 export type OutputFormatName = 'jpeg' | 'png' | 'tiff' | 'webp';
 
