@@ -42,7 +42,7 @@ describe('robust scores', () => {
   });
 
   it('make no odd one of frames that hardly differ', () => {
-    expect(robustZ([5, 5, 5, 5, 5.01], 1).every((z) => Math.abs(z) < oddFrom)).toBe(true);
+    expect(robustZ([5, 5, 5, 5, 5.01], 1).every((z) => Math.abs(z) < oddFrom(5))).toBe(true);
   });
 });
 
@@ -62,6 +62,19 @@ describe('odd ones out', () => {
     const frames = someFrames(10, 4);
     frames[0] = { ...frames[0], lightness: 5 };
     expect(oddOnesOut(frames, 0)[0]?.remedies[0]).toBe('chooseAnotherLead');
+  });
+
+  it.each([6, 9, 20, 60])('are few among %i frames that scatter normally', (count) => {
+    const normal = seededNormal(count);
+    const scattered = () =>
+      Object.fromEntries(Object.entries(usual).map(([key, value]) => [key, value * (1 + 0.3 * normal())]));
+    let flagged = 0;
+    for (let series = 0; series < 400; series++) {
+      const frames = Array.from({ length: count }, () => scattered() as unknown as FrameFigures);
+      if (oddOnesOut(frames).some((one) => one !== null)) flagged++;
+    }
+    expect(flagged).toBeLessThan(80);
+    expect(flagged).toBeGreaterThan(10);
   });
 
   it('are not named among three', () => {

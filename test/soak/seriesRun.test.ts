@@ -1,7 +1,8 @@
-import { mkdtemp, rm } from 'node:fs/promises';
+import { mkdtemp, readFile, rm } from 'node:fs/promises';
 import { availableParallelism, tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
+import { runLogName } from '../../main/series/runLog.ts';
 import { photographs } from '../fixtures/photographs.ts';
 import { holdToUnbroken } from '../series/killedRun.ts';
 import { startProgram, writeFrames } from '../series/runProgram.ts';
@@ -18,9 +19,13 @@ describe('a long run', () => {
       const data = join(folder, 'data');
       const paint = async (...words: string[]) => {
         const startMs = performance.now();
-        const { code, out } = await startProgram(data, words).ended;
+        const { child, ended } = startProgram(data, words);
+        const memory: MemorySample[] = [];
+        const timer = setInterval(() => void sampleMemory(child.pid!, words, memory), 500);
+        const { code, out } = await ended;
+        clearInterval(timer);
         expect(code).toBe(0);
-        return { ms: performance.now() - startMs, told: JSON.parse(out) };
+        return { ms: performance.now() - startMs, told: JSON.parse(out), memory };
       };
       const one = await paint(
         'paint',
@@ -45,6 +50,12 @@ describe('a long run', () => {
         );
         const perfectMs = (200 * one.told.milliseconds.total) / availableParallelism();
         process.stdout.write(`match ${match}: ${(all.ms / perfectMs).toFixed(2)} × the perfect time\n`);
+        const early = meanOf(all.memory.filter(({ painted }) => painted >= 20 && painted < 60));
+        const late = meanOf(all.memory.filter(({ painted }) => painted >= 160));
+        process.stdout.write(
+          `match ${match}: ${Math.round(early / 2 ** 20)} MB from frame 20 on, ${Math.round(late / 2 ** 20)} MB to frame 200\n`,
+        );
+        expect(late / early).toBeLessThan(1.1);
         if (match === '0') expect(all.ms / perfectMs).toBeLessThan(1.15);
       }
     } finally {
@@ -52,3 +63,25 @@ describe('a long run', () => {
     }
   });
 });
+
+/** Resident memory when so many frames had been painted. */
+interface MemorySample {
+  painted: number;
+  bytes: number;
+}
+
+/** Reads what the system says of a process; elsewhere than on Linux there is nothing to read. */
+async function sampleMemory(pid: number, words: readonly string[], samples: MemorySample[]): Promise<void> {
+  const out = words[words.indexOf('--out') + 1];
+  const [status, log] = await Promise.all([
+    readFile(`/proc/${pid}/status`, 'utf8').catch(() => ''),
+    readFile(join(out, runLogName(null)), 'utf8').catch(() => ''),
+  ]);
+  const kilobytes = Number(/VmRSS:\s+(\d+)/.exec(status)?.[1]);
+  const painted = log.split('"kind":"painted"').length - 1;
+  if (kilobytes > 0) samples.push({ painted, bytes: kilobytes * 1024 });
+}
+
+function meanOf(samples: readonly MemorySample[]): number {
+  return samples.reduce((sum, { bytes }) => sum + bytes, 0) / samples.length;
+}
