@@ -19,6 +19,7 @@ interface LengthControlProps {
   parameterKey: ParameterKey;
   value: LengthText;
   presetValue: LengthText;
+  /** Of the whole photo, in pixels and at the scale of its print. */
   longEdgePx: number;
   printLongEdgeMm: number;
 }

@@ -7,6 +7,8 @@ import {
   type Stratum,
 } from '../../core/parameters/table.ts';
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
+import { useOutput } from '../app/outputWork.ts';
+import { wholeLongEdgeMm } from '../print/printMeasures.ts';
 import type { Look } from '../state/lookStore.ts';
 import { ChoiceControl } from './ChoiceControl.tsx';
 import { ColourControl } from './ColourControl.tsx';
@@ -63,6 +65,7 @@ interface ControlProps {
 
 function Control({ parameterKey, look, photo }: ControlProps) {
   const parameter: Parameter = parameterTable[parameterKey];
+  const output = useOutput();
   const value = look.parameters[parameterKey];
   const presetValue = look.presetParameters[parameterKey];
   switch (parameter.kind) {
@@ -83,7 +86,7 @@ function Control({ parameterKey, look, photo }: ControlProps) {
           value={value as LengthText}
           presetValue={presetValue as LengthText}
           longEdgePx={Math.max(photo.widthPx, photo.heightPx)}
-          printLongEdgeMm={look.printLongEdgeMm}
+          printLongEdgeMm={wholeLongEdgeMm(photo, output)}
         />
       );
     case 'choice':

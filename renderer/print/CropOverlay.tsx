@@ -52,10 +52,21 @@ export function CropOverlay({ photo }: { photo: OpenedPhoto }) {
         {plan.margins.marks && <Marks print={print} from={bleed} pxPerMm={pxPerMm} />}
       </svg>
       {frame && freeAxis(photo, frame) !== null && (
-        <FrameHandle photo={photo} frame={frame} print={print} pxPerPoint={placed.scale / ratio} />
+        <FrameHandle
+          photo={photo}
+          frame={frame}
+          print={print}
+          isAround={isAround(print, stage.widthPx / ratio, stage.heightPx / ratio)}
+          pxPerPoint={placed.scale / ratio}
+        />
       )}
     </>
   );
+}
+
+/** None of its edges is seen. */
+function isAround({ left, top, width, height }: Box, stageWidth: number, stageHeight: number): boolean {
+  return left <= 0 && top <= 0 && left + width >= stageWidth && top + height >= stageHeight;
 }
 
 function grown({ left, top, width, height }: Box, by: number): Box {
@@ -118,12 +129,13 @@ interface FrameHandleProps {
   photo: OpenedPhoto;
   frame: CropFrame;
   print: Box;
+  isAround: boolean;
   /** CSS pixels a pixel of the photo. */
   pxPerPoint: number;
 }
 
 /** Takes the frame by its inside; beside it, a drag still moves the picture. */
-function FrameHandle({ photo, frame, print, pxPerPoint }: FrameHandleProps) {
+function FrameHandle({ photo, frame, print, isAround, pxPerPoint }: FrameHandleProps) {
   const held = useRef<{ from: Point; frame: CropFrame } | null>(null);
   const axis = freeAxis(photo, frame);
   const move = (next: CropFrame) => changeOutput({ cropFrame: { ...next } });
@@ -153,7 +165,7 @@ function FrameHandle({ photo, frame, print, pxPerPoint }: FrameHandleProps) {
   };
   return (
     <div
-      className={`crop-frame crop-frame-${axis}`}
+      className={`crop-frame crop-frame-${axis}${isAround ? ' crop-frame-around' : ''}`}
       style={{ left: print.left, top: print.top, width: print.width, height: print.height }}
       role="slider"
       tabIndex={0}

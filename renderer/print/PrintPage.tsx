@@ -15,7 +15,7 @@ export function PrintPage({ photo, look }: { photo: OpenedPhoto; look: Look }) {
   const plan = useMemo(() => planOf(photo, output), [photo, output]);
   return (
     <>
-      <p className="panel-sentence">The file for the printer, and how it lies on paper.</p>
+      <p className="panel-sentence">What file is made for the printer.</p>
       <PrintSheet photo={photo} look={look} output={output} plan={plan} />
       <SizeControls photo={photo} output={output} plan={plan} />
       <CropControls photo={photo} output={output} />

@@ -5,7 +5,9 @@ import { partings } from '../../core/presets/thread.ts';
 import type { PresetHistory } from '../../core/recipes/recipe.ts';
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { returnTo, writeBeside } from '../app/memoryWork.ts';
+import { useOutput } from '../app/outputWork.ts';
 import { SmallPicture } from '../presets/SmallPicture.tsx';
+import { wholeLongEdgeMm } from '../print/printMeasures.ts';
 import type { Look } from '../state/lookStore.ts';
 import type { ComparedSide } from '../state/memoryStore.ts';
 import { compare } from './comparing.ts';
@@ -32,7 +34,7 @@ const cardWidthPx = 340;
 /** What one state is: its picture, what it changed, what was said of it, and what can be done with it. */
 export function StateCard(props: CardProps) {
   const { state, history, look, photo, branch, isReadOnly, xPx, threadWidthPx, onFinished } = props;
-  const picture = useStatePicture(photo.photoId, state, look.printLongEdgeMm);
+  const picture = useStatePicture(photo.photoId, state, wholeLongEdgeMm(photo, useOutput()));
   const isPresent = state.id === look.stateId;
   const beginsBranch = branch !== null || isFollower(history, state);
   const note = history.margins[state.id]?.note ?? state.note;

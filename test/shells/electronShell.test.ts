@@ -1,7 +1,8 @@
-import { mkdtemp, readFile, rm } from 'node:fs/promises';
+import { mkdtemp, readFile, rm, writeFile } from 'node:fs/promises';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it, vi } from 'vitest';
+import { p3Profile } from '../../core/colour/matrixProfile.ts';
 import { makePhoto } from '../host/testHost.ts';
 import { makeElectronStandIn, StandInContents } from './electronStandIn.ts';
 
@@ -197,6 +198,21 @@ describe('what a page may do', () => {
     expect(await (await post('chooseWithDialog', { kind: 'photo' })).json()).toMatchObject({ path });
     expect((await post('openPhoto', { path })).status).toBe(200);
     expect(await (await post('chooseWithDialog', { kind: 'save' })).json()).toMatchObject({ path: null });
+  });
+
+  it('prints for a profile that was chosen in the dialog, and for no other', async () => {
+    await startShell();
+    const path = await makePhoto(join(folder, 'reeds.png'), 20, 20);
+    vi.stubEnv('OXGALL_TEST_CHOICE', path);
+    await post('chooseWithDialog', { kind: 'photo' });
+    const { photoId } = await (await post('openPhoto', { path })).json();
+    const file = join(await mkdtemp(join(folder, 'profiles-')), 'wide.icc');
+    await writeFile(file, p3Profile());
+    const told = () => post('describeProfile', { photoId, profile: { file } });
+    expect((await told()).status).toBe(403);
+    vi.stubEnv('OXGALL_TEST_CHOICE', file);
+    expect(await (await post('chooseWithDialog', { kind: 'profile' })).json()).toMatchObject({ path: file });
+    expect(await (await told()).json()).toMatchObject({ name: 'Display P3', inks: 'RGB' });
   });
 });
 
