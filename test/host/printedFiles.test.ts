@@ -85,6 +85,17 @@ describe.skipIf(!exiftool)('a file saved from the window, as exiftool reads it (
   });
 });
 
+describe('a photo nobody has worked on', () => {
+  it.each([8, 16] as const)('of %i bits is saved as an exact file of as many', async (depth) => {
+    const own = join(t.photos, `bits-${depth}.png`);
+    const pixels = depth === 8 ? new Uint8Array(48).fill(90) : new Uint16Array(48).fill(23_456);
+    const image = sharp(pixels, { raw: { width: 4, height: 4, channels: 3 } });
+    await (depth === 16 ? image.toColourspace('rgb16') : image).png().toFile(own);
+    const { memory } = await openAt(t, own);
+    expect(memory.recipe.work.output).toMatchObject({ format: 'png', depth });
+  });
+});
+
 describe('a delivery from the window', () => {
   it('is noted with every setting, and is painted again to the pixel', async () => {
     await lay(sheet);

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { mmToPx, planPrint } from '../../core/print/printPlan.ts';
+import { keepsPixels, mmToPx, planMargins, planPrint } from '../../core/print/printPlan.ts';
 
 const photo = { widthPx: 6000, heightPx: 4000 };
 
@@ -48,5 +48,33 @@ describe('a print', () => {
     expect(mmToPx(3, 300)).toBe(35);
     expect(mmToPx(25.4, 300)).toBe(300);
     expect(mmToPx(0, 300)).toBe(0);
+  });
+});
+
+describe('a print with the photo’s own pixels', () => {
+  it.each([
+    ['nothing asked for', null, null, true],
+    ['a crop', null, { aspect: 1, x01: 0.5, y01: 0.5 }, false],
+    ['a flat crop, as wide as the photo', null, { aspect: 3, x01: 0.5, y01: 0.5 }, false],
+    ['a crop that leaves all of it', null, { aspect: 1.5, x01: 0.1, y01: 0.9 }, true],
+    // 508 mm are 20 inches: 6000 pixels are 300 an inch.
+    ['as many an inch as it has', 300, null, true],
+    ['fewer an inch', 299, null, false],
+  ])('%s', (_name, ppi, crop, isOwn) => {
+    expect(keepsPixels(photo, planPrint(photo, { printLongEdgeMm: 508, ppi, crop }))).toBe(isOwn);
+  });
+});
+
+describe('what lies around a print', () => {
+  it('is bleed and a margin with marks, in whole pixels', () => {
+    // At 254 an inch a millimetre is ten pixels.
+    expect(planMargins(254, 3, true)).toEqual({
+      bleedPx: 30,
+      marks: { slugPx: 80, lengthPx: 50, linePx: 3 },
+      outsidePx: 110,
+    });
+    expect(planMargins(254, 3, false)).toEqual({ bleedPx: 30, marks: null, outsidePx: 30 });
+    // A line is never thinner than a pixel.
+    expect(planMargins(25.4, 0, true)).toMatchObject({ bleedPx: 0, marks: { linePx: 1 } });
   });
 });

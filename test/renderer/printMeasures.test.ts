@@ -1,5 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
+import { lengthToPx } from '../../core/parameters/lengths.ts';
 import { defaultOutputSettings, type OutputSettings } from '../../core/recipes/outputSettings.ts';
 import { fitSheet } from '../../renderer/print/drawSheet.ts';
 import {
@@ -78,7 +79,11 @@ describe('the plan of a print', () => {
   it('makes the whole photo longer on paper by as much as a crop leaves of it', () => {
     expect(wholeLongEdgeMm(photo, outputOf({ printLongEdgeMm: 200 }))).toBe(200);
     // Of 6000 pixels 4000 are left: what is 200 mm of them is 300 mm of all.
-    expect(wholeLongEdgeMm(photo, outputOf({ printLongEdgeMm: 200, cropFrame: square }))).toBe(300);
+    const cropped = outputOf({ printLongEdgeMm: 200, cropFrame: square });
+    expect(wholeLongEdgeMm(photo, cropped)).toBe(300);
+    // So a brush is as many pixels wide on the easel as in the file.
+    const onEasel = lengthToPx('5mm', { longEdgePx: 6000, printLongEdgeMm: wholeLongEdgeMm(photo, cropped) });
+    expect(onEasel).toBe(lengthToPx('5mm', { longEdgePx: 4000, printLongEdgeMm: 200 }));
   });
 });
 
