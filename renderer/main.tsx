@@ -17,8 +17,10 @@ import './styles/presets.css';
 import './styles/states.css';
 import './styles/wall.css';
 import './styles/print.css';
+import './styles/gamut.css';
 import { createRoot } from 'react-dom/client';
 import { startEaselWork } from './app/easelWork.ts';
+import { startGamutWork } from './app/gamutWork.ts';
 import { takeHostEvent } from './app/hostEvents.ts';
 import { startTellingWork } from './app/memoryWork.ts';
 import { openPhoto, refreshSession } from './app/photoWork.ts';
@@ -30,6 +32,7 @@ import { openSeries } from './wall/wallWork.ts';
 
 startEaselWork();
 startTellingWork();
+startGamutWork();
 startKeys();
 createRoot(document.getElementById('root')!).render(<App />);
 

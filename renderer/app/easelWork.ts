@@ -5,7 +5,8 @@ import { bandSpan, layOutSection } from '../geometry/sectionLayout.ts';
 import { type PlacedView, placeView } from '../geometry/viewTransform.ts';
 import { PaintDirector } from '../painting/paintDirector.ts';
 import { forgetPresetPictures, paintPresetPictures } from '../presets/presetPictures.ts';
-import { wholeLongEdgeMm } from '../print/printMeasures.ts';
+import { planOf, wholeLongEdgeMm } from '../print/printMeasures.ts';
+import { gamutStore } from '../state/gamutStore.ts';
 import { currentLook, type Look, lookStore, strataBottomUp, strengthOf } from '../state/lookStore.ts';
 import { comparisonStore } from '../state/memoryStore.ts';
 import { outputStore } from '../state/outputStore.ts';
@@ -67,6 +68,7 @@ function showScene(): void {
   const compared = comparisonStore.get();
   const leftLook = compared && lookOfSide(compared.left);
   const placed = placedViewStore.get();
+  const gamut = gamutStore.get();
   if (!photo || !look || !placed || view.stage.widthPx === 0) return;
   compositor.show({
     photo: { widthPx: photo.widthPx, heightPx: photo.heightPx },
@@ -84,6 +86,8 @@ function showScene(): void {
     bandSpan: placeBandSpan(placed, view),
     shown: director.shown,
     left: leftLook && { parameters: leftLook.parameters, shown: leftDirector.shown },
+    hatchRatio: gamut.isMarked && gamut.isKnown ? view.devicePixelRatio : null,
+    crop: planOf(photo, currentOutput()).crop,
   });
 }
 
@@ -142,6 +146,7 @@ export function startEaselWork(): void {
   // A crop makes more of the paper's length of each pixel, and so its strokes wider on the photo.
   outputStore.subscribe(layLooks);
   comparisonStore.subscribe(layLooks);
+  gamutStore.subscribe(showSoon);
   viewStore.subscribe(() => {
     placeStage();
     showSoon();

@@ -4,7 +4,9 @@
  */
 import { type Composer, createComposer } from './composer.ts';
 import { drawPicture, drawSection } from './drawScene.ts';
+import { Hatching } from './hatching.ts';
 import type { FromCompositor, PaintedPiece, PieceSlot, Scene, SceneSide, ToCompositor } from './messages.ts';
+import { OutsideMarker } from './outsideMarker.ts';
 import { PictureSheet } from './pictureSheet.ts';
 
 /** What a dedicated worker's global scope has and the DOM's types know as a window's. */
@@ -19,6 +21,9 @@ const ready: Promise<Composer> = createComposer();
 const sheets: Record<SceneSide, Partial<Record<PieceSlot, PictureSheet>>> = { easel: {}, left: {} };
 let pictureContext: OffscreenCanvasRenderingContext2D | null = null;
 let sectionContext: OffscreenCanvasRenderingContext2D | null = null;
+const marker = new OutsideMarker(() => drawSoon());
+const hatching = new Hatching(marker);
+let toldShare: number | null = null;
 let scene: Scene | null = null;
 let isAwaitingFrame = false;
 
@@ -41,8 +46,27 @@ function draw(): void {
   for (const sheet of left ?? [])
     if (!scene.bare && sheet.composePaint(scene.left!.parameters)) composed = true;
   drawPicture(pictureContext, scene, drawn, left);
+  hatching.draw(pictureContext, scene, drawn, left);
   drawSection(sectionContext, scene, drawn);
   tell({ kind: 'drawn', sceneId: scene.id, frameMs: performance.now() - startMs, composed });
+  if (!scene.bare) seeToMarks(scene, drawn, left);
+}
+
+function seeToMarks(
+  { parameters, left: leftScene, crop }: Scene,
+  drawn: readonly PictureSheet[],
+  left: readonly PictureSheet[] | null,
+): void {
+  marker.consider([
+    ...drawn.map((sheet) => ({ sheet, parameters })),
+    ...(left ?? []).map((sheet) => ({ sheet, parameters: leftScene!.parameters })),
+  ]);
+  // The lowest sheet is the one of the whole picture.
+  const share01 = drawn[0] ? marker.shareOf({ sheet: drawn[0], parameters }, crop) : null;
+  // While a new one is being found the old one stands.
+  if (share01 === null || share01 === toldShare) return;
+  toldShare = share01;
+  tell({ kind: 'outside', share01 });
 }
 
 function shownOf(side: SceneSide, slots: readonly PieceSlot[]): PictureSheet[] {
@@ -55,15 +79,21 @@ function replaceSheet(side: SceneSide, slot: PieceSlot, piece: PaintedPiece, com
   if (!ground) throw new Error('A piece came without its ground, and none was held.');
   // The ground may lie in the old sheet's memory: that is given back last.
   sheets[side][slot] = new PictureSheet(piece, { ...piece.strata, ground }, composer, old);
-  old?.release();
+  putAway(old);
   // All is copied: the window may read the next piece into the same memory.
   const { buffer } = piece.strata.body;
   if (buffer instanceof ArrayBuffer) tell({ kind: 'spent', buffer }, [buffer]);
 }
 
 function dropSheet(side: SceneSide, slot: PieceSlot): void {
-  sheets[side][slot]?.release();
+  putAway(sheets[side][slot]);
   delete sheets[side][slot];
+}
+
+function putAway(sheet: PictureSheet | undefined): void {
+  if (!sheet) return;
+  marker.forget(sheet);
+  sheet.release();
 }
 
 // Messages that come before the kernels are loaded wait for them, in order.
@@ -93,6 +123,11 @@ function take(message: ToCompositor, composer: Composer): void {
     case 'screen':
       composer.setWayToScreen(message.way);
       for (const side of Object.values(sheets)) for (const sheet of Object.values(side)) sheet.colourAgain();
+      drawSoon();
+      return;
+    case 'gamut':
+      marker.setTable(message.table);
+      toldShare = null;
       drawSoon();
       return;
     case 'scene':

@@ -33,6 +33,8 @@ export class CompositorClient {
   private spent: ArrayBuffer[] = [];
   private nextSceneId = 1;
   onFailure: (message: string) => void = () => {};
+  /** Called when the share of the picture that print cannot show is found, or is another. */
+  onOutside: (share01: number | null) => void = () => {};
 
   constructor() {
     this.worker.onmessage = ({ data }: MessageEvent<FromCompositor>) => this.take(data);
@@ -56,6 +58,11 @@ export class CompositorClient {
     this.send({ kind: 'screen', way });
   }
 
+  /** See `readGamutTable`; null marks nothing. */
+  setGamutTable(table: Uint16Array | null): void {
+    this.send({ kind: 'gamut', table });
+  }
+
   show(scene: Omit<Scene, 'id'>): number {
     const id = this.nextSceneId++;
     this.sentAtMs.set(id, performance.now());
@@ -77,6 +84,7 @@ export class CompositorClient {
 
   private take(message: FromCompositor): void {
     if (message.kind === 'failed') this.onFailure(message.message);
+    if (message.kind === 'outside') this.onOutside(message.share01);
     if (message.kind === 'spent') this.spent = [message.buffer, ...this.spent].slice(0, spentKept);
     if (message.kind === 'drawn') {
       const sentAtMs = this.sentAtMs.get(message.sceneId) ?? performance.now();

@@ -1,4 +1,5 @@
 import type { Stratum } from '../../core/parameters/table.ts';
+import type { Rect } from '../../core/pixels/photo.ts';
 import { bandView, cutSourceY } from '../geometry/sectionLayout.ts';
 import type { Scene } from './messages.ts';
 import type { PictureSheet } from './pictureSheet.ts';
@@ -20,6 +21,33 @@ function setSmoothing(context: Context, magnification: number): void {
   context.imageSmoothingQuality = magnification < 1 ? 'medium' : 'low';
 }
 
+/** A side of the split, in device pixels, and whether the photo alone stands there. */
+export interface DrawnSide {
+  side: 'left' | 'right';
+  isBare: boolean;
+  rect: Rect;
+}
+
+/** @param isCompared other pieces stand on the left of the split; the photo alone does otherwise */
+export function drawnSides(scene: Scene, isCompared: boolean): DrawnSide[] {
+  const { view, photo, bare, split01 } = scene;
+  const widthPx = Math.round(photo.widthPx * view.scale);
+  const heightPx = Math.round(photo.heightPx * view.scale);
+  const splitPx = split01 === null ? 0 : Math.round(widthPx * split01);
+  const leftWidthPx = bare ? widthPx : splitPx;
+  const rect = (leftPx: number, rightPx: number): Rect => ({
+    xPx: view.originXPx + leftPx,
+    yPx: view.originYPx,
+    widthPx: rightPx - leftPx,
+    heightPx,
+  });
+  const sides: DrawnSide[] = [
+    { side: 'left', isBare: bare || !isCompared, rect: rect(0, leftWidthPx) },
+    { side: 'right', isBare: false, rect: rect(leftWidthPx, widthPx) },
+  ];
+  return sides.filter((one) => one.rect.widthPx > 0);
+}
+
 /**
  * Draws the picture, or the photo, or two on either side of the split.
  * @param sheets lie one over the other
@@ -32,22 +60,13 @@ export function drawPicture(
   left: readonly PictureSheet[] | null,
 ): void {
   fitCanvas(context, scene.stage.widthPx, scene.stage.heightPx);
-  const { view, photo } = scene;
-  const widthPx = Math.round(photo.widthPx * view.scale);
-  const heightPx = Math.round(photo.heightPx * view.scale);
-  const splitPx = scene.split01 === null ? 0 : Math.round(widthPx * scene.split01);
-  const leftWidthPx = scene.bare ? widthPx : splitPx;
-  for (const side of ['left', 'right'] as const) {
-    const leftPx = side === 'left' ? 0 : leftWidthPx;
-    const rightPx = side === 'left' ? leftWidthPx : widthPx;
-    const isBare = side === 'left' && (scene.bare || left === null);
-    if (rightPx <= leftPx) continue;
+  for (const { side, isBare, rect } of drawnSides(scene, left !== null)) {
     context.save();
     context.beginPath();
-    context.rect(view.originXPx + leftPx, view.originYPx, rightPx - leftPx, heightPx);
+    context.rect(rect.xPx, rect.yPx, rect.widthPx, rect.heightPx);
     context.clip();
     for (const sheet of side === 'left' && !isBare ? left! : sheets) {
-      const place = sheet.place(view);
+      const place = sheet.place(scene.view);
       setSmoothing(context, place.magnification);
       const canvas = isBare ? sheet.bareCanvas(scene.parameters) : sheet.paintedCanvas;
       context.drawImage(canvas, place.x, place.y, place.width, place.height);

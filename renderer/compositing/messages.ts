@@ -26,6 +26,10 @@ export interface Scene {
   shown: readonly PieceSlot[];
   /** What stands on the left of the split; null for the photo alone. */
   left: { parameters: Parameters; shown: readonly PieceSlot[] } | null;
+  /** The screen's pixel ratio, for strokes over what print cannot show; null for no strokes. */
+  hatchRatio: number | null;
+  /** What will be printed of the photo, in its pixels. */
+  crop: Rect;
 }
 
 /** Strata of a level or of a part of it, as the host painted them. */
@@ -51,11 +55,15 @@ export type ToCompositor =
   | { kind: 'piece'; side: SceneSide; slot: PieceSlot; piece: PaintedPiece }
   | { kind: 'dropPiece'; side: SceneSide; slot: PieceSlot }
   | { kind: 'screen'; way: WayToScreen }
+  /** What a print makes of the photo's colours, for `markOutside`; null where nothing is marked. */
+  | { kind: 'gamut'; table: Uint16Array | null }
   | { kind: 'scene'; scene: Scene };
 
 export type FromCompositor =
   | { kind: 'ready' }
   | { kind: 'drawn'; sceneId: number; frameMs: number; composed: boolean }
+  /** How much of what is printed lies outside of what the print can show; null while it is not known. */
+  | { kind: 'outside'; share01: number | null }
   /** Memory that a piece came in, to be used again. */
   | { kind: 'spent'; buffer: ArrayBuffer }
   | { kind: 'failed'; message: string };

@@ -2,6 +2,7 @@ import { director } from '../app/easelWork.ts';
 import { closePhoto } from '../app/photoWork.ts';
 import { zoomByKey } from '../easel/Stage.tsx';
 import { fitPicture, showFullSize } from '../easel/viewMoves.ts';
+import { toggleMarks } from '../state/gamutStore.ts';
 import { redoLook, undoLook } from '../state/lookStore.ts';
 import { paintStore } from '../state/paintStore.ts';
 import { chooseStratum, dialogStore, panelStore } from '../state/panelStore.ts';
@@ -81,6 +82,7 @@ export const keyCommands: readonly KeyCommand[] = [
   },
   { keys: ['t'], shown: 'T', does: 'To the states; the arrows walk along them', run: focusThread },
   { keys: ['v'], shown: 'V', does: 'Let two compared states take turns', run: toggleFlicker },
+  { keys: ['m'], shown: 'M', does: 'Mark what the paper cannot hold, or no longer', run: toggleMarks },
   { keys: ['p'], shown: 'P', does: 'Presets', run: () => panelStore.set('presets') },
   { keys: ['g'], shown: 'G', does: 'Controls of the ground', run: () => chooseStratum('ground') },
   { keys: ['b'], shown: 'B', does: 'Controls of the body', run: () => chooseStratum('body') },
