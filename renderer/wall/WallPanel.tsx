@@ -102,7 +102,8 @@ function SeriesPage({ series, settings }: PageProps) {
 function seriesInWords({ frames }: SeriesView, { leftOut, lead }: SeriesSettings): string {
   const count = frames.length === 1 ? 'One frame' : `${frames.length} frames`;
   const out = leftOut.length === 0 ? '' : `, ${leftOut.length} left out`;
-  return `${count}${out}. ${lead ? `${lead} leads.` : 'None leads.'}`;
+  const leads = lead && leftOut.includes(lead) ? `${lead} leads, but is not painted.` : `${lead} leads.`;
+  return `${count}${out}. ${lead ? leads : 'None leads.'}`;
 }
 
 function ChosenPage({ series, settings, chosen }: PageProps & { chosen: FrameView[] }) {

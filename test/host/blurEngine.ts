@@ -1,5 +1,6 @@
 import type { Parameters } from '../../core/parameters/table.ts';
 import type { DecodedPhoto, Rect, Strata } from '../../core/pixels/photo.ts';
+import { countCoverage } from '../../core/series/inkHistogram.ts';
 import type {
   BandOptions,
   ComposedPicture,
@@ -7,6 +8,7 @@ import type {
   EnginePhoto,
   PaintedBand,
   PaintOptions,
+  PaintReview,
   RowSource,
 } from '../../main/engine/engineApi.ts';
 
@@ -88,9 +90,14 @@ export class BlurEngine implements Engine {
   async paintPicture(
     photo: EnginePhoto,
     parameters: Parameters,
-    options: PaintOptions & { depth?: 8 | 16 } = {},
+    options: PaintOptions & { depth?: 8 | 16; review?: PaintReview } = {},
   ): Promise<ComposedPicture> {
     const { strata } = await this.paintStrata(photo, parameters, { level: 0 }, options);
+    if (options.review) {
+      // It knows no hold: the body stays as it is.
+      for (let isAsked = true; isAsked; ) isAsked = (await options.review.body(strata.body)) !== null;
+      options.review.ink(countCoverage(strata.line));
+    }
     const { channels } = photo;
     const count = photo.widthPx * photo.heightPx;
     const pixels =

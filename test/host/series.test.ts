@@ -127,6 +127,12 @@ describe('the picture of a frame', () => {
     const match = { ...settings.match, amount01: 0.5 };
     const half = await testHost.caller.call('changeSeries', { seriesId, change: { match } });
     expect(keyOf(half, 'plate-9.png')).not.toBe(before);
+    const out = await testHost.caller.call('changeSeries', {
+      seriesId,
+      change: { leftOut: ['plate-1.png'] },
+    });
+    // A lead that is not painted leads on.
+    expect(keyOf(out, 'plate-9.png')).toBe(keyOf(half, 'plate-9.png'));
     const led = await testHost.caller.call('changeSeries', { seriesId, change: { lead: 'plate-9.png' } });
     expect(keyOf(led, 'plate-9.png')).not.toBe(keyOf(half, 'plate-9.png'));
   });

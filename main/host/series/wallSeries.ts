@@ -283,20 +283,20 @@ export class WallSeries {
     this.tell();
   }
 
-  /** What is measured: every frame that is neither left out nor unreadable. */
+  /** What is measured: every frame that is neither left out nor unreadable. A lead that is left out leads on. */
   #plan(): MeasuringPlan {
     const { leftOut, lead, match, output } = this.#document;
     const out = new Set(leftOut);
-    const frames = this.#frames.flatMap((frame): MeasuringOrder[] => {
+    const readable = this.#frames.flatMap((frame): MeasuringOrder[] => {
       const { frameId, path, stamp, facts } = frame;
-      if (!facts || out.has(frameId)) return [];
+      if (!facts) return [];
       const photo = { path, stamp, facts };
       const { parameters } = this.lookOf(frameId);
       return [{ frameId, photo, parameters, parts: partsOfFrame(this.#document, frameId) }];
     });
     return {
-      frames,
-      lead: frames.find(({ frameId }) => frameId === lead) ?? null,
+      frames: readable.filter(({ frameId }) => !out.has(frameId)),
+      lead: readable.find(({ frameId }) => frameId === lead) ?? null,
       amount01: match.amount01,
       printLongEdgeMm: output.printLongEdgeMm,
     };
