@@ -2,7 +2,6 @@ import { type KeyboardEvent, type PointerEvent, useEffect, useRef } from 'react'
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { nextScale, type Point } from '../geometry/viewTransform.ts';
 import { CropOverlay } from '../print/CropOverlay.tsx';
-import { GamutSign } from '../print/GamutSign.tsx';
 import { lookStore } from '../state/lookStore.ts';
 import { useStore } from '../state/store.ts';
 import { changeView, placedViewStore, viewStore } from '../state/viewStore.ts';
@@ -87,7 +86,6 @@ export function Stage({ photo, canvasHost }: StageProps) {
       </section>
       <Cut photo={photo} />
       <SplitDivider photo={photo} />
-      <GamutSign />
       <WorkSign />
       <StageFoot photo={photo} />
     </section>

@@ -1,6 +1,7 @@
 import type { OpenedPhoto } from '../../main/host/api/hostCommands.ts';
 import { changeOutput, useOutput } from '../app/outputWork.ts';
 import { ValueField } from '../controls/ValueField.tsx';
+import { GamutSign } from '../print/GamutSign.tsx';
 import { inMm, longestPrintMm, planOf, readLengthMm, shortestPrintMm } from '../print/printMeasures.ts';
 import { useStore } from '../state/store.ts';
 import { chooseSurround, placedViewStore, type Surround, viewStore } from '../state/viewStore.ts';
@@ -54,6 +55,7 @@ export function StageFoot({ photo }: { photo: OpenedPhoto }) {
         />{' '}
         × {inMm(Math.min(widthMm, heightMm))} mm, {Math.round(ppi)} ppi
       </span>
+      <GamutSign />
       <fieldset className="surrounds">
         <legend className="unseen">Surround</legend>
         {surrounds.map(({ value, name }) => (

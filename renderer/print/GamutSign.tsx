@@ -10,7 +10,7 @@ export function GamutSign() {
   const { isMarked, isKnown, share01, trouble } = useStore(gamutStore);
   if (trouble)
     return (
-      <div className="gamut-sign gamut-trouble" role="status">
+      <div className="gamut-trouble" role="status">
         <p>
           What the print cannot hold is not known. {trouble.message} {trouble.remedy}
         </p>
@@ -20,16 +20,26 @@ export function GamutSign() {
       </div>
     );
   if (!isKnown) return null;
+  const sentence = share01 === null ? 'Looking at the colours' : gamutSentence(share01, profile);
   return (
-    <div className="gamut-sign">
-      <p role="status">{share01 === null ? 'Looking at the colours' : gamutSentence(share01, profile)}</p>
-      {share01 !== 0 && (
-        <label className="check-line" title="Mark what the paper cannot hold (M)">
-          <input type="checkbox" checked={isMarked} onChange={toggleMarks} />
-          <span className="gamut-sample" aria-hidden="true" />
-          <span>Mark what the paper cannot hold</span>
-        </label>
-      )}
-    </div>
+    <>
+      <span className="foot-rule" aria-hidden="true" />
+      <span className="gamut-sign">
+        {share01 !== 0 && (
+          <label className="gamut-check" title="Mark what the paper cannot hold (M)">
+            <input
+              type="checkbox"
+              aria-label="Mark what the paper cannot hold"
+              checked={isMarked}
+              onChange={toggleMarks}
+            />
+            <span className="gamut-sample" aria-hidden="true" />
+          </label>
+        )}
+        <span className="gamut-words" role="status" title={sentence}>
+          {sentence}
+        </span>
+      </span>
+    </>
   );
 }

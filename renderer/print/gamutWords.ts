@@ -3,8 +3,8 @@ import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 /** How much of the picture a print cannot show, as one sentence. */
 export function gamutSentence(share01: number, profile: OutputSettings['profile']): string {
   const print = profile === 'srgb' ? 'sRGB' : profile === 'p3' ? 'Display P3' : 'this paper';
-  if (share01 === 0) return `Every colour of the picture lies within ${print}.`;
-  return `${shareInWords(share01)} of the picture is more saturated than ${print}.`;
+  if (share01 === 0) return `Every colour of the picture lies within ${print}`;
+  return `${shareInWords(share01)} of the picture is more saturated than ${print}`;
 }
 
 /** To a tenth below 10 %; never nothing where there is something, nor all where there is a rest. */

@@ -130,7 +130,7 @@ describe.skipIf(!chromiumFound.path || !canAsk)(
       const plain = await readCanvas(page, 'stage');
       await choosePaper(page, 'paper.icc');
       await sign(page)
-        .getByText(/% of the picture is more saturated than this paper\./)
+        .getByText(/% of the picture is more saturated than this paper/)
         .waitFor();
       expect(await seriousFindings(page)).toEqual([]);
       await keepScreen(page, 'gamut-fields');
