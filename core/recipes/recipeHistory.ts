@@ -206,11 +206,12 @@ function layThread(
 }
 
 /**
- * A delivered file; state, strokes and output settings are taken from the recipe. So is the photo, unless its own
- * hash is given: the file it was painted from may have other bytes by now than the recipe was begun for.
+ * A delivered file; state and strokes are taken from the recipe. So are the photo and the output settings, unless they
+ * are given: the file it was painted from may have other bytes by now than the recipe was begun for, and settings may
+ * have been asked for this file alone.
  */
 export type DeliveredFile = Pick<Delivery, 'path' | 'sha256' | 'pixelsSha256'> &
-  Partial<Pick<Delivery, 'photoSha256'>>;
+  Partial<Pick<Delivery, 'photoSha256' | 'output'>>;
 
 /**
  * Notes a delivered file. Unkept changes are kept as a state first, so that a delivery always names one.
@@ -221,10 +222,10 @@ export function noteDelivery(recipe: Recipe, file: DeliveredFile, moment: Moment
   const { maps, tightnessId } = withMap(kept);
   const delivery: Delivery = {
     photoSha256: kept.photo.sha256,
+    output: kept.work.output,
     ...file,
     stateId: kept.work.stateId,
     tightnessId,
-    output: kept.work.output,
     ...moment,
   };
   const history = currentHistory(kept);

@@ -1,6 +1,7 @@
 import { engineVersion } from '../../core/engineVersion.ts';
 import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { planBody } from '../../core/pipeline/bodyPlan.ts';
+import { defaultOutputSettings } from '../../core/recipes/outputSettings.ts';
 import { createEngine } from '../engine/paintEngine.ts';
 import { outputFormatFor } from '../files/outputFormat.ts';
 import { defaultOutputPath } from '../files/outputPath.ts';
@@ -133,10 +134,10 @@ async function paint(words: string[]): Promise<number> {
   async function keepFile({ path, depth, pixelsSha256 }: PaintedFile) {
     const { sha256 } = await fingerprintPhoto(path);
     const written = { path, sha256, pixelsSha256, photoSha256: work.read!.photo.sha256, parameters };
-    return keepPainted(stores, photoPath, work, {
-      ...written,
-      output: { ...output, format, depth, printLongEdgeMm, layers },
-    });
+    const asked = { ...output, format, depth, printLongEdgeMm, layers };
+    // A recipe that was not painted by has settings of its own, which are no part of this file.
+    const used = { ...(usedRecipe?.work.output ?? defaultOutputSettings()), ...asked };
+    return keepPainted(stores, photoPath, work, { ...written, output: used }, asked);
   }
 }
 

@@ -2,8 +2,10 @@ import { defaultPrintLongEdgeMm } from '../../core/parameters/lengths.ts';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import type { Parameters } from '../../core/parameters/table.ts';
 import { toRoman } from '../../core/presets/roman.ts';
+import type { OutputChange } from '../../core/recipes/outputSettings.ts';
 import type { Recipe } from '../../core/recipes/recipe.ts';
 import {
+  changeOutput,
   createRecipe,
   currentHistory,
   currentParameters,
@@ -89,6 +91,7 @@ async function mayHaveRecipe({ recipes }: Stores, photoPath: string): Promise<bo
 
 /**
  * Notes a painted file in the photo's recipe, which is made where there was none.
+ * @param kept settings that were asked for: they are the recipe's from now on
  * @returns where the recipe is, and what to tell
  * @throws FileError where it cannot be saved; the painting itself is there
  */
@@ -97,6 +100,7 @@ export async function keepPainted(
   photoPath: string,
   { read, look }: PaintWork,
   file: Omit<WrittenFile, 'photoSha256'>,
+  kept: OutputChange,
 ): Promise<{ path: string; remarks: string[] }> {
   const known = read ?? (await readRecipe(stores, photoPath));
   const moment = now();
@@ -106,6 +110,7 @@ export async function keepPainted(
     if (recipe.work.preset !== look.preset.name || recipe.work.stateId !== look.state.id)
       recipe = layPreset(recipe, look.preset, look.state.id, moment);
   }
-  const noted = noteWrittenFile(recipe!, photoPath, { ...file, photoSha256: known.photo.sha256 }, moment);
+  const written = { ...file, photoSha256: known.photo.sha256 };
+  const noted = noteWrittenFile(changeOutput(recipe!, kept), photoPath, written, moment);
   return saveRecipe(stores, photoPath, known, noted);
 }

@@ -113,8 +113,7 @@ export class PhotoMemories {
     const written = { ...file, photoSha256: entry.fingerprint.sha256 };
     const noted = noteWrittenFile(entry.recipe, path, written, this.moment());
     // Somebody may have gone on while the file was being painted: their work stays on the easel.
-    const laid = changeParameters(noted, currentParameters(entry.recipe));
-    this.#put(entry, { ...laid, work: { ...laid.work, output: entry.recipe.work.output } });
+    this.#put(entry, changeParameters(noted, currentParameters(entry.recipe)));
     if (!open) await entry.saver.flush();
     return viewOf(entry);
   }

@@ -3,7 +3,7 @@ import type { Parameters } from '../../core/parameters/table.ts';
 import type { Moment } from '../../core/presets/preset.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import type { Recipe } from '../../core/recipes/recipe.ts';
-import { changeOutput, changeParameters, noteDelivery } from '../../core/recipes/recipeHistory.ts';
+import { changeParameters, noteDelivery } from '../../core/recipes/recipeHistory.ts';
 
 /** A file that was written, with what it was painted from. */
 export interface WrittenFile {
@@ -13,7 +13,8 @@ export interface WrittenFile {
   /** Of the photo as it was painted. */
   photoSha256: string;
   parameters: Parameters;
-  output: Partial<OutputSettings>;
+  /** All settings it was made with; the recipe's own stay as they are. */
+  output: OutputSettings;
 }
 
 /**
@@ -27,13 +28,12 @@ export function noteWrittenFile(
   file: WrittenFile,
   moment: Moment,
 ): Recipe {
-  const { parameters, output, path, ...hashes } = file;
+  const { parameters, path, ...facts } = file;
   const place = relative(dirname(resolve(photoPath)), resolve(path));
   const isBelow = !isAbsolute(place) && place.split(sep)[0] !== '..';
-  const painted = changeOutput(changeParameters(recipe, parameters), output);
   return noteDelivery(
-    painted,
-    { ...hashes, path: isBelow ? place.split(sep).join('/') : resolve(path) },
+    changeParameters(recipe, parameters),
+    { ...facts, path: isBelow ? place.split(sep).join('/') : resolve(path) },
     moment,
   );
 }

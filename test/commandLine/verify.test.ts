@@ -53,6 +53,21 @@ describe('oxgall verify', () => {
     expect(plain.out).toMatch(/one\.png, State II: identical\n.*two\.jpg, State III: identical\n2 of 2/);
   });
 
+  it('proves files that were made with more, or with less, than their recipe asks for', async () => {
+    const folder = await copyOfKept();
+    const data = join(folder, 'own data');
+    const print = ['--crop', '1:1', '--ppi', '40', '--bleed', '2', '--profile', 'p3'];
+    await runIn(folder, ['paint', 'ferry.jpg', '--keep', '--out', 'square.tif', ...print], data);
+    await runIn(folder, ['paint', 'ferry.jpg', '--keep', '--out', 'same.jpg'], data);
+    const whole = ['--keep', '--preset', 'reed-pen', '--out', 'whole.png'];
+    await runIn(folder, ['paint', 'ferry.jpg', ...whole], data);
+    // Somebody looks at it in the meantime: the frame is the recipe's still.
+    const recipe = JSON.parse(await readFile(join(folder, 'ferry.jpg.oxgall.json'), 'utf8'));
+    expect(recipe.work.output).toMatchObject({ bleedMm: 2, cropFrame: { aspect: 1 } });
+    const { told } = await verify(folder, '.');
+    expect(told).toMatchObject({ deliveries: 5, identical: 5 });
+  });
+
   it('passes where files are elsewhere by now, and fails where one was changed', async () => {
     const folder = await copyOfKept();
     await rm(join(folder, 'one.png'));

@@ -4,6 +4,7 @@ import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import { readEvents } from '../../core/hostProtocol/eventStream.ts';
 import { fullParameters } from '../../core/presets/parametersSchema.ts';
+import { defaultOutputSettings } from '../../core/recipes/outputSettings.ts';
 import { EventHub } from '../../main/host/eventHub.ts';
 import { PhotoMemories } from '../../main/host/photoMemories.ts';
 import { startLoopbackShell } from '../shells/runningShell.ts';
@@ -69,7 +70,7 @@ describe('a delivery', () => {
         sha256: hash,
         pixelsSha256: hash,
         parameters: { ...fullParameters(statesOf(memory)[0].parameters), 'body.hold': 0.6 },
-        output: {},
+        output: defaultOutputSettings(),
       },
     );
     const { deliveries, states } = (await recipeOf(path)).histories[0];

@@ -120,6 +120,16 @@ describe('a delivery from the window', () => {
     });
   });
 
+  it('can do without the recipe’s crop, and is painted again without it', async () => {
+    await lay(cropped);
+    const { memory } = await save('whole', { cropFrame: null, isResampled: false });
+    const { recipe } = memory;
+    expect(recipe.work.output.cropFrame).toEqual(cropped.cropFrame);
+    expect(recipe.histories[0].deliveries[0].output).not.toHaveProperty('cropFrame');
+    const [{ verdict }] = await verifyDeliveries(t.engine, path, recipe.photo.sha256, recipe);
+    expect(verdict).toBe('identical');
+  });
+
   it('leaves what was changed while it was painted', async () => {
     await lay({ bleedMm: 3 });
     t.engine.pauseMs = 2;
