@@ -1,3 +1,4 @@
+import type { Rect } from '../../core/pixels/photo.ts';
 import { drawnSides } from './drawScene.ts';
 import type { Scene } from './messages.ts';
 import type { OutsideMarker } from './outsideMarker.ts';
@@ -14,7 +15,7 @@ const besidePx = 1.1;
 /** Fine slanting strokes over what print cannot show, kept until the view or the marks change. */
 export class Hatching {
   private readonly layer = new OffscreenCanvas(1, 1);
-  private readonly context = this.layer.getContext('2d')!;
+  private readonly context = this.layer.getContext('2d', { willReadFrequently: true })!;
   private pattern: { ratio: number; tile: CanvasPattern } | null = null;
   private drawnFor = '';
 
@@ -56,17 +57,33 @@ export class Hatching {
       context.beginPath();
       context.rect(rect.xPx, rect.yPx, rect.widthPx, rect.heightPx);
       context.clip();
-      for (const sheet of side === 'left' ? left! : sheets) this.layMarks(scene, sheet);
+      for (const sheet of this.seen(scene, side === 'left' ? left! : sheets, rect))
+        this.layMarks(scene, sheet);
       context.restore();
     }
     context.save();
     context.globalCompositeOperation = 'source-in';
     // The strokes lie on the picture and move with it.
     const strokes = this.strokesFor(scene.hatchRatio!);
-    strokes.setTransform(new DOMMatrix().translate(scene.view.originXPx, scene.view.originYPx));
+    const { originXPx, originYPx } = scene.view;
+    strokes.setTransform(new DOMMatrix().translate(Math.round(originXPx), Math.round(originYPx)));
     context.fillStyle = strokes;
     context.fillRect(0, 0, widthPx, heightPx);
     context.restore();
+  }
+
+  /** Without the sheets whose marks lie wholly under a finer one's: to enlarge them takes longest of all. */
+  private seen(scene: Scene, sheets: readonly PictureSheet[], side: Rect): readonly PictureSheet[] {
+    const left = Math.max(0, side.xPx);
+    const top = Math.max(0, side.yPx);
+    const right = Math.min(scene.stage.widthPx, side.xPx + side.widthPx);
+    const bottom = Math.min(scene.stage.heightPx, side.yPx + side.heightPx);
+    const lowest = sheets.findLastIndex((sheet) => {
+      const { x, y, width, height } = sheet.place(scene.view);
+      const isCovering = x <= left && y <= top && x + width >= right && y + height >= bottom;
+      return isCovering && this.marker.canvasOf(sheet) !== null;
+    });
+    return sheets.slice(Math.max(0, lowest));
   }
 
   private layMarks(scene: Scene, sheet: PictureSheet): void {
@@ -91,7 +108,7 @@ export class Hatching {
 function drawTile(ratio: number): OffscreenCanvas {
   const side = Math.round(pitchPx * ratio);
   const tile = new OffscreenCanvas(side, side);
-  const context = tile.getContext('2d')!;
+  const context = tile.getContext('2d', { willReadFrequently: true })!;
   const strokes: [colour: string, thicknessPx: number, shiftPx: number][] = [
     [besideColour, besidePx, (strokePx + besidePx) / 2],
     [strokeColour, strokePx, 0],

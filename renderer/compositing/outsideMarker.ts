@@ -139,6 +139,6 @@ function inked(marks: Uint8Array, { widthPx, heightPx }: Rect): OffscreenCanvas 
   const pixels = new ImageData(widthPx, heightPx);
   const words = new Uint32Array(pixels.data.buffer);
   for (let i = 0; i < marks.length; i++) if (marks[i]) words[i] = 0xff_00_00_00;
-  canvas.getContext('2d')!.putImageData(pixels, 0, 0);
+  canvas.getContext('2d', { willReadFrequently: true })!.putImageData(pixels, 0, 0);
   return canvas;
 }

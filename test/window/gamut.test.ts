@@ -1,6 +1,6 @@
 import { execFileSync } from 'node:child_process';
 import { existsSync } from 'node:fs';
-import { copyFile } from 'node:fs/promises';
+import { copyFile, mkdtemp, rm } from 'node:fs/promises';
 import { join } from 'node:path';
 import type { Page } from 'playwright-core';
 import sharp from 'sharp';
@@ -8,7 +8,7 @@ import { describe, expect, it } from 'vitest';
 import { seriousFindings } from './axe.ts';
 import { chromiumFound } from './chromium.ts';
 import { keepScreen, settled } from './openWindow.ts';
-import { usePhotoWindows } from './photoWindow.ts';
+import { untilSaved, usePhotoWindows } from './photoWindow.ts';
 import { countDifferent, drawn, pixelAt, readCanvas, type WindowPixels } from './readWindow.ts';
 
 /* What print can hold is asked of `transicc`, from the system's own LittleCMS tools, through a profile with tables. */
@@ -160,6 +160,74 @@ describe.skipIf(!chromiumFound.path || !canAsk)(
       await chooseColours(page, 'The photograph’s own');
       await sign(page).waitFor({ state: 'detached' });
       expect(countDifferent(await readCanvas(page, 'stage'), plainFull)).toBe(0);
+      await room.close(window);
+    });
+
+    it('follows strengths without asking the host, and is left out of the photograph beside', async () => {
+      const path = join(room.folder, 'strengths.png');
+      await writeFields(path);
+      await copyFile(cmykPath, join(room.folder, 'paper.icc'));
+      const window = await room.open({ path });
+      const { page } = window;
+      await choosePaper(page, 'paper.icc');
+      const words = sign(page).getByRole('status');
+      await words.getByText('% of the picture').waitFor();
+      const before = await words.textContent();
+      const asked: string[] = [];
+      page.on('request', (request) => {
+        if (/(paintStrata|readGamutTable|readScreenTable)$/.test(request.url())) asked.push(request.url());
+      });
+      // Neutral paper in place of paint: nothing of it lies outside.
+      await page.getByRole('button', { name: 'Body', exact: true }).click({ modifiers: ['Shift'] });
+      await page.keyboard.press('g');
+      const paper = page.getByRole('textbox', { name: 'Paper, typed' });
+      await paper.fill('100');
+      await paper.press('Enter');
+      await paper.blur();
+      await words.getByText('Every colour of the picture lies within this paper').waitFor();
+      await page.keyboard.press('Control+z');
+      await page.keyboard.press('Control+z');
+      await expect.poll(() => words.textContent()).toBe(before);
+      expect(asked).toEqual([]);
+      await page.keyboard.press('c');
+      const marked = await readCanvas(page, 'stage');
+      await page.keyboard.press('m');
+      const plain = await readCanvas(page, 'stage');
+      const place = await placeOf(page);
+      // Yellow stands in the photograph's half, a strong green in the painting's.
+      expect(hatchedShare(marked, plain, 13, place)).toBe(0);
+      expect(hatchedShare(marked, plain, 16, place)).toBeGreaterThan(0.25);
+      await room.close(window);
+    });
+
+    it('says in words when the profile is gone, and looks again', async () => {
+      const path = join(room.folder, 'gone.png');
+      await writeFields(path);
+      const paper = join(room.folder, 'paper.icc');
+      await copyFile(cmykPath, paper);
+      const dataFolder = await mkdtemp(join(room.folder, 'data-'));
+      const first = await room.open({ path, dataFolder });
+      await choosePaper(first.page, 'paper.icc');
+      await sign(first.page).getByText('% of the picture').waitFor();
+      await untilSaved(path, ({ work }) => typeof work.output.profile === 'object');
+      await room.close(first);
+      await rm(paper);
+      const window = await room.open({ path, dataFolder });
+      const { page } = window;
+      const trouble = page.getByRole('status').filter({ hasText: 'What the print cannot hold is not known' });
+      await trouble.waitFor();
+      expect(await trouble.textContent()).toContain('paper.icc');
+      expect(await seriousFindings(page)).toEqual([]);
+      await keepScreen(page, 'gamut-gone');
+      await copyFile(cmykPath, paper);
+      await page.getByRole('button', { name: 'Look again' }).click();
+      await sign(page).getByText('% of the picture').waitFor();
+      // The host's refusal itself shows in the console; nothing else may.
+      window.faults.splice(
+        0,
+        window.faults.length,
+        ...window.faults.filter((text) => !/status of/.test(text)),
+      );
       await room.close(window);
     });
   },
