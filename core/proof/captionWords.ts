@@ -1,13 +1,7 @@
-import { toRoman } from '../presets/roman.ts';
 import { type FigureKey, type FrameFigures, figureTable } from '../series/frameFigures.ts';
 
 const mmPerInch = 25.4;
 const captionFigures: readonly FigureKey[] = ['lightness', 'contrast', 'chroma', 'lineCoverage01'];
-
-/** A preset's title with the state's numeral, as under a print. */
-export function presetWords(title: string, stateNumber?: number): string {
-  return stateNumber === undefined ? title : `${title} · ${toRoman(stateNumber)}`;
-}
 
 /** A picture's size in pixels, and on paper where its resolution is known. */
 export function sizeWords(widthPx: number, heightPx: number, ppi?: number): string {

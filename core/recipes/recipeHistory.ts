@@ -1,5 +1,6 @@
 import { parseParameter } from '../parameters/parse.ts';
 import type { Parameters } from '../parameters/table.ts';
+import type { LookName } from '../presets/lookName.ts';
 import { fullParameters, type StoredParameters } from '../presets/parametersSchema.ts';
 import { latestState, type Moment, type Preset, writeMargin } from '../presets/preset.ts';
 import type { State } from '../presets/state.ts';
@@ -292,4 +293,13 @@ function requireState(history: PresetHistory, stateId: string): State {
   const state = stateById(history.states, stateId);
   if (!state) throw new RangeError(`Expected a state of ${history.title}, received the id ${stateId}`);
   return state;
+}
+
+/** What lies on the easel, for people. */
+export function lookNameOf(recipe: Recipe): LookName {
+  return {
+    title: currentHistory(recipe).title,
+    stateNumber: currentState(recipe).number,
+    isChanged: hasUnkeptChanges(recipe),
+  };
 }

@@ -86,7 +86,7 @@ async function paint(words: string[]): Promise<number> {
   starting.catch(() => undefined);
   try {
     const asked = { depth: askedDepth, quality, printLongEdgeMm, print, layers: layersKind };
-    const told = { metadata, ...describePainting(work.title, work.state) };
+    const told = { metadata, ...describePainting({ title: work.title, stateNumber: work.state }) };
     const order = { parameters, out, format, ...asked, ...told };
     const painted = await paintToFile(starting, photoPath, order, {
       onProgress: (fraction01, stage) => progress.update(0.05 + 0.95 * fraction01, stage),

@@ -2,9 +2,10 @@ import { realpath } from 'node:fs/promises';
 import { basename, join, resolve } from 'node:path';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import type { Parameters } from '../../core/parameters/table.ts';
+import type { LookName } from '../../core/presets/lookName.ts';
 import { fullParameters } from '../../core/presets/parametersSchema.ts';
 import { defaultOutputSettings, type OutputSettings } from '../../core/recipes/outputSettings.ts';
-import { currentParameters } from '../../core/recipes/recipeHistory.ts';
+import { currentParameters, lookNameOf } from '../../core/recipes/recipeHistory.ts';
 import { allMatchParts } from '../../core/series/frameMatch.ts';
 import { lookOfFrame, partsOfFrame, type SeriesDocument } from '../../core/series/seriesDocument.ts';
 import type { Shard } from '../../core/series/shards.ts';
@@ -12,6 +13,7 @@ import { FileError } from '../files/fileError.ts';
 import { letGo, readAnyPhoto } from '../painting/holdPhoto.ts';
 import type { RunOrder } from '../series/runSeries.ts';
 import { type PlannedFrame, planSeries, type SeriesPlan } from '../series/seriesPlan.ts';
+import { lookNamer } from '../store/lookNames.ts';
 import { loadSeries } from '../store/seriesFile.ts';
 import { chosenLook, readSettings } from './chosenLook.ts';
 import { commandStores, readRecipe } from './photoRecipe.ts';
@@ -64,6 +66,7 @@ export async function readSeriesTask(
     outFolder,
     frames,
     parametersOf: looks.parametersOf,
+    lookOf: looks.lookOf,
     lead: lead.name,
     leadPath: join(folder, lead.name ?? ''),
     amount01,
@@ -84,6 +87,7 @@ async function refusePhotoFolder(folder: string, outFolder: string): Promise<voi
 
 interface Looks {
   parametersOf(name: string): Parameters;
+  lookOf(name: string): LookName;
   remarks: string[];
 }
 
@@ -97,7 +101,7 @@ async function readLooks(
   const settings = readSettings(values.set ?? []);
   const isFromFile = values.preset === undefined && document !== null;
   const look = isFromFile ? null : await chosenLook(stores.presets, values.preset, []);
-  const own = new Map<string, Parameters>();
+  const own = new Map<string, { parameters: Parameters; name: LookName }>();
   const remarks: string[] = [];
   if (!values.recipes && withRecipe.length > 0)
     remarks.push(
@@ -107,16 +111,27 @@ async function readLooks(
     if (!withRecipe.includes(name)) continue;
     // A photo that cannot be read is named when its turn comes.
     const read = await readRecipe(stores, path).catch(() => null);
-    if (read?.recipe) own.set(name, currentParameters(read.recipe));
+    if (read?.recipe)
+      own.set(name, { parameters: currentParameters(read.recipe), name: lookNameOf(read.recipe) });
     remarks.push(...(read?.remarks ?? []).map((remark) => `${name}: ${remark}`));
   }
   const parametersOf = (name: string) => {
-    const base = own.get(name) ?? look?.parameters ?? fullParameters(lookOfFrame(document!, name).parameters);
+    const base =
+      own.get(name)?.parameters ??
+      look?.parameters ??
+      fullParameters(lookOfFrame(document!, name).parameters);
     return parseParameters(settings, base);
+  };
+  const nameOf = await lookNamer(stores.presets);
+  const isChanged = Object.keys(settings).length > 0;
+  const lookOf = (name: string): LookName => {
+    const named = look && { title: look.preset.title, stateNumber: look.state.number, isChanged: false };
+    const found = own.get(name)?.name ?? named ?? nameOf(lookOfFrame(document!, name));
+    return isChanged ? { ...found, isChanged } : found;
   };
   // Wrong settings are found out before anything is begun.
   parametersOf(frames[0].name);
-  return { parametersOf, remarks };
+  return { parametersOf, lookOf, remarks };
 }
 
 /** The photo that leads: as asked for, as the series file has it, or the first that can be read. */

@@ -1,7 +1,7 @@
 import { basename, dirname, extname, join } from 'node:path';
 import { parseParameters } from '../../core/parameters/parse.ts';
 import { changedOutput } from '../../core/recipes/outputSettings.ts';
-import { currentHistory, currentState } from '../../core/recipes/recipeHistory.ts';
+import { lookNameOf } from '../../core/recipes/recipeHistory.ts';
 import type { Engine } from '../engine/engineApi.ts';
 import { FileError } from '../files/fileError.ts';
 import { assertWritable, refuseOverwritingOriginal } from '../files/outputPath.ts';
@@ -71,7 +71,7 @@ export async function savePainting(
     ...fileOrderOf(output),
     parameters,
     out: target,
-    ...describePainting(currentHistory(recipe).title, currentState(recipe).number),
+    ...describePainting(lookNameOf(recipe)),
   };
   const delivered = await paint(photo, order, call, parts, {
     onProgress: report,

@@ -1,15 +1,11 @@
 import { readFile } from 'node:fs/promises';
-import { figureWords, presetWords } from '../../core/proof/captionWords.ts';
+import { lookCaption } from '../../core/presets/lookName.ts';
+import { figureWords } from '../../core/proof/captionWords.ts';
 import type { ProofCaption } from '../../core/proof/proofPage.ts';
 import { recipeFormat } from '../../core/recipes/documentFormats.ts';
 import { openDocument } from '../../core/recipes/openDocument.ts';
 import type { Recipe } from '../../core/recipes/recipe.ts';
-import {
-  currentHistory,
-  currentParameters,
-  currentState,
-  hasUnkeptChanges,
-} from '../../core/recipes/recipeHistory.ts';
+import { currentParameters, lookNameOf } from '../../core/recipes/recipeHistory.ts';
 import { type FrameFigures, figureTable } from '../../core/series/frameFigures.ts';
 import { FileError } from '../files/fileError.ts';
 import { readPhotoSize } from '../files/photoHeader.ts';
@@ -68,13 +64,13 @@ async function loggedCaption(path: string, name: string, logged?: LoggedPainting
   const plain: ProofCaption = { name, preset: '', figures: [], note: '' };
   const file = logged && (await fingerprintPhoto(path).catch(() => null));
   if (!logged || file?.sha256 !== logged.sha256) return plain;
-  const { preset, remarks } = logged;
+  const { preset = '', remarks = [] } = logged;
   const after = (logged.figures as { after?: unknown } | null | undefined)?.after;
   return {
     name,
-    preset: typeof preset === 'string' ? preset : '',
+    preset,
     figures: areFigures(after) ? [figureWords(after)] : [],
-    note: Array.isArray(remarks) ? remarks.filter((remark) => typeof remark === 'string').join(' ') : '',
+    note: remarks.join(' '),
   };
 }
 
@@ -89,7 +85,7 @@ async function paintedSource(
   recipe: Recipe,
   painter: ProofPainter,
 ): Promise<ProofSource> {
-  const caption: ProofCaption = { name, preset: presetOf(recipe), figures: [], note: '' };
+  const caption: ProofCaption = { name, preset: lookCaption(lookNameOf(recipe)), figures: [], note: '' };
   // A photo that cannot be read shows what is wrong with it when the sheet is made.
   const size = await readPhotoSize(path).catch(() => null);
   if (!size) return { picture: { path }, caption };
@@ -101,11 +97,6 @@ async function paintedSource(
   const paint = (needed: { widthPx: number; heightPx: number }, signal?: AbortSignal) =>
     painter.paint(path, look, needed, signal);
   return { picture: { path, widthPx, heightPx, paint }, caption };
-}
-
-function presetOf(recipe: Recipe): string {
-  const words = presetWords(currentHistory(recipe).title, currentState(recipe).number);
-  return hasUnkeptChanges(recipe) ? `${words}, with changes` : words;
 }
 
 async function recipeOf(photoPath: string, remarks: string[]): Promise<Recipe | null> {

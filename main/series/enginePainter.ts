@@ -27,11 +27,15 @@ export class EnginePainter implements FramePainter {
   }
 
   async #paint(job: FrameJob, options: FramePaintOptions): Promise<PaintedJob> {
-    const { photoPath, part, parameters, output, lead: wanted } = job;
+    const { photoPath, part, parameters, look, output, lead: wanted } = job;
     const lead = wanted && (await this.#leadOf(wanted, output, options.signal));
     const match =
       wanted && lead && !wanted.isItself ? { lead, amount01: wanted.amount01, parts: wanted.parts } : null;
-    const painted = await paintFrame(this.engine, { photoPath, part, parameters, output, match }, options);
+    const painted = await paintFrame(
+      this.engine,
+      { photoPath, part, parameters, look, output, match },
+      options,
+    );
     const { sha256 } = await fingerprintPhoto(part, options.signal);
     const own = wanted?.isItself && lead ? { before: lead.figures, after: lead.figures } : null;
     const { pixelsSha256, layersPath, figures, remarks } = painted;

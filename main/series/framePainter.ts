@@ -1,4 +1,5 @@
 import type { Parameters } from '../../core/parameters/table.ts';
+import type { LookName } from '../../core/presets/lookName.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import type { FrameFigures } from '../../core/series/frameFigures.ts';
 import type { MatchParts } from '../../core/series/frameMatch.ts';
@@ -15,6 +16,8 @@ export interface FrameJob {
   /** Where the painting shall be written. It gets its name once it is whole, from whoever ordered it. */
   part: string;
   parameters: Parameters;
+  /** What it is painted by, for people; the file says so. */
+  look: LookName;
   output: OutputSettings;
   /** The photo that leads; null where nothing is matched. */
   lead: FrameLead | null;

@@ -1,6 +1,7 @@
 import { readFile, stat } from 'node:fs/promises';
 import { basename, join } from 'node:path';
 import { engineVersion } from '../../core/engineVersion.ts';
+import { lookCaption } from '../../core/presets/lookName.ts';
 import { sha256Hex } from '../../core/recipes/contentId.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import { type JobParts, jobKey, jobParts, whatChanged } from '../../core/series/jobKey.ts';
@@ -91,7 +92,12 @@ export class FrameRun {
     const key = jobKey(parts);
     const part = partPath(outFolder, runLogName(shard), key, frame.outputName);
     const photo = { photoPath: path, photoSha256: sha256, widthPx, heightPx };
-    return { parts, stamp, job: { key, name, ...photo, part, parameters, output, lead, engineVersion } };
+    const look = this.order.lookOf(name);
+    return {
+      parts,
+      stamp,
+      job: { key, name, ...photo, part, parameters, look, output, lead, engineVersion },
+    };
   }
 
   async #leadOf(name: string): Promise<FrameLead | null> {
@@ -196,6 +202,8 @@ export class FrameRun {
         pixelsSha256,
         parts: { ...parts },
         figures,
+        preset: lookCaption(job.look),
+        remarks: painted.remarks,
         ...(layers && { layers: basename(layers) }),
       };
       await this.log.append({ kind: 'written', ...entry });

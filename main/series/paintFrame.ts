@@ -1,4 +1,5 @@
 import type { Parameters } from '../../core/parameters/table.ts';
+import type { LookName } from '../../core/presets/lookName.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import type { FrameFigures } from '../../core/series/frameFigures.ts';
 import {
@@ -12,6 +13,7 @@ import { assertFormatHolds } from '../files/outputFormat.ts';
 import { SpilledPixels } from '../files/spilledPixels.ts';
 import { writePicture } from '../files/writePicture.ts';
 import { type DeliveredPainting, deliverPainting } from '../painting/deliverPainting.ts';
+import { describePainting } from '../painting/describePainting.ts';
 import { holdPhoto, letGo, readAnyPhoto } from '../painting/holdPhoto.ts';
 import { prepareForPrint } from '../painting/prepareForPrint.ts';
 import { printOrderOf } from '../painting/printOrder.ts';
@@ -24,6 +26,7 @@ export interface FrameOrder {
   /** Where the painting is written, whatever its name will be. */
   part: string;
   parameters: Parameters;
+  look: LookName;
   output: OutputSettings;
   match: { lead: LeadMeasures; amount01: number; parts: MatchParts } | null;
 }
@@ -50,7 +53,7 @@ export interface FrameOptions {
  */
 export async function paintFrame(
   engine: Engine,
-  { photoPath, part, parameters, output, match: asked }: FrameOrder,
+  { photoPath, part, parameters, look, output, match: asked }: FrameOrder,
   { signal, onProgress }: FrameOptions = {},
 ): Promise<PaintedFrame> {
   const { printLongEdgeMm, format, depth, quality, layers, metadata } = output;
@@ -85,6 +88,7 @@ export async function paintFrame(
       depth,
       quality,
       metadata,
+      ...describePainting(look),
       printLongEdgeMm,
       print: { ...print, writesSize: true },
       layers: isLayered ? layers : undefined,

@@ -22,6 +22,9 @@ const fileBase = {
   /** Ids of what the job is made of. */
   parts: z.record(z.string(), z.string()),
   figures: z.unknown(),
+  /** What it was painted by, and what there was to say of it, in words; older logs lack both. */
+  preset: z.string().optional(),
+  remarks: z.array(z.string()).optional(),
 };
 
 const entrySchema = z.discriminatedUnion('kind', [

@@ -1,6 +1,7 @@
 import { lstat, mkdir, readdir, rm } from 'node:fs/promises';
 import { join } from 'node:path';
 import type { Parameters } from '../../core/parameters/table.ts';
+import type { LookName } from '../../core/presets/lookName.ts';
 import type { OutputSettings } from '../../core/recipes/outputSettings.ts';
 import type { MatchParts } from '../../core/series/frameMatch.ts';
 import { framesOfShard, type Shard } from '../../core/series/shards.ts';
@@ -26,6 +27,8 @@ export interface RunOrder {
   frames: readonly PlannedFrame[];
   /** Of a frame, by its file name. */
   parametersOf(name: string): Parameters;
+  /** What a frame is painted by, for people. */
+  lookOf(name: string): LookName;
   /** File name of the lead; null where nothing is matched. */
   lead: string | null;
   leadPath: string;

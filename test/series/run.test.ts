@@ -38,6 +38,8 @@ describe('oxgall series', () => {
       expect(frame.figures.after.lineCoverage01).toBeGreaterThan(0);
       if (frame.name === told.lead) expect(frame.figures.after).toEqual(frame.figures.before);
     }
+    const painted = (await readRunLogs(join(folder, 'out'))).filter(({ kind }) => kind === 'painted');
+    expect(painted.map(({ preset }) => preset)).toEqual(names.map(() => 'Low Water · I'));
     // The lead is painted as it would be alone, to the bit.
     const alone = await runJson(
       'paint',

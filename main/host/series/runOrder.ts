@@ -4,6 +4,8 @@ import { lookOfFrame, partsOfFrame } from '../../../core/series/seriesDocument.t
 import { outputDepth } from '../../files/outputFormat.ts';
 import type { RunOrder } from '../../series/runSeries.ts';
 import { planSeries } from '../../series/seriesPlan.ts';
+import { lookNamer } from '../../store/lookNames.ts';
+import type { PresetStore } from '../../store/presetStore.ts';
 import { Refusal } from '../refusal.ts';
 import type { WallSeries } from './wallSeries.ts';
 
@@ -14,6 +16,7 @@ import type { WallSeries } from './wallSeries.ts';
 export async function runOrderOf(
   { folder, settings }: Pick<WallSeries, 'folder' | 'settings'>,
   outFolder: string,
+  presets: PresetStore,
 ): Promise<RunOrder> {
   if (resolve(outFolder) === resolve(folder))
     throw new Refusal(
@@ -27,11 +30,13 @@ export async function runOrderOf(
   const out = new Set(leftOut);
   // A lead whose file is gone leads nobody, as on the Wall.
   const lead = frames.find(({ name }) => name === settings.lead)?.name ?? null;
+  const nameOf = await lookNamer(presets);
   return {
     folder,
     outFolder,
     frames: frames.filter(({ name }) => !out.has(name)),
     parametersOf: (name) => fullParameters(lookOfFrame(settings, name).parameters),
+    lookOf: (name) => nameOf(lookOfFrame(settings, name)),
     lead,
     leadPath: join(folder, lead ?? ''),
     amount01: match.amount01,

@@ -1,9 +1,11 @@
 import { join } from 'node:path';
-import { figureWords, presetWords } from '../../../core/proof/captionWords.ts';
+import { type LookName, lookCaption } from '../../../core/presets/lookName.ts';
+import { figureWords } from '../../../core/proof/captionWords.ts';
 import { lying, papers, readPaper } from '../../../core/proof/paper.ts';
 import { parametersWithMatch } from '../../../core/series/frameMatch.ts';
-import { lookOfFrame } from '../../../core/series/seriesDocument.ts';
+import { lookOfFrame, type SeriesLook } from '../../../core/series/seriesDocument.ts';
 import type { ProofSource } from '../../proof/proofSource.ts';
+import { lookNamer } from '../../store/lookNames.ts';
 import type { CheckedInput } from '../api/commandSchemas.ts';
 import type { FrameView, ProofMade } from '../api/seriesCommands.ts';
 import type { HostState } from '../host.ts';
@@ -40,11 +42,11 @@ export async function makeSeriesProof(
     import('../../proof/makeProof.ts'),
   ]);
   const painter = new ProofPainter(undefined, parts.loadEngine());
-  const titles = await presetTitles(parts);
+  const nameOf = await lookNamer((await parts.loadStores()).presets);
   const frames = series.view().frames.filter(({ frameId }) => !series.settings.leftOut.includes(frameId));
   const sources = frames.map((frame): ProofSource => {
     const { frameId, path, widthPx, heightPx } = frame;
-    const caption = captionOf(frame, series, titles);
+    const caption = captionOf(frame, series, nameOf);
     if (widthPx === 0) return { picture: { path }, caption };
     return {
       caption,
@@ -85,24 +87,13 @@ export async function makeSeriesProof(
   }
 }
 
-/** Title and number of each state that a preset on the shelf has, by state id. */
-async function presetTitles(parts: HostState['parts']): Promise<Map<string, string>> {
-  const { presets } = await parts.loadStores();
-  const shelf = await presets.list();
-  return new Map(
-    shelf.presets.flatMap(({ preset }) =>
-      preset.states.map((state) => [state.id, presetWords(preset.title, state.number)] as const),
-    ),
-  );
-}
-
-function captionOf(frame: FrameView, series: WallSeries, titles: ReadonlyMap<string, string>) {
+function captionOf(frame: FrameView, series: WallSeries, nameOf: (look: SeriesLook) => LookName) {
   const { measured, odd } = frame;
   const look = lookOfFrame(series.settings, frame.frameId);
   const figures = measured ? [figureWords(measured)] : [];
   return {
     name: frame.frameId,
-    preset: titles.get(look.stateId) ?? look.preset,
+    preset: lookCaption(nameOf(look)),
     figures,
     note: odd && !odd.isMatched ? odd.reason : '',
   };

@@ -67,7 +67,8 @@ export class Walls {
       import('./seriesRun.ts'),
       import('./runOrder.ts'),
     ]);
-    const order = await runOrderOf(series, outFolder);
+    const { presets } = await this.parts.loadStores();
+    const order = await runOrderOf(series, outFolder, presets);
     // Looked at last: another call may have begun one, or closed the series, meanwhile.
     this.find(seriesId);
     if (this.#runs.get(seriesId)?.isOn)
