@@ -12,7 +12,8 @@ export function GamutSign() {
     return (
       <div className="gamut-trouble" role="status">
         <p>
-          What the print cannot hold is not known. {trouble.message} {trouble.remedy}
+          What the print cannot hold is not known. {trouble.message} {trouble.remedy} Or choose other colours
+          under Print.
         </p>
         <button type="button" className="plain-button" onClick={readProfileAgain}>
           Look again

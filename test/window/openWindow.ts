@@ -31,6 +31,8 @@ export interface WindowOptions {
   /** Kept between two windows of one test; else made and removed. */
   dataFolder?: string;
   environment?: Record<string, string>;
+  /** The screen's space; sRGB unless given. */
+  screen?: 'srgb' | 'display-p3-d65';
 }
 
 /** Starts the built program without a window of its own. */
@@ -55,7 +57,7 @@ export async function openWindow(options: WindowOptions = {}): Promise<OpenWindo
     args: [
       '--disable-background-networking',
       '--disable-component-update',
-      '--force-color-profile=srgb',
+      `--force-color-profile=${options.screen ?? 'srgb'}`,
       ...(process.getuid?.() === 0 ? ['--no-sandbox'] : []),
     ],
   });

@@ -18,22 +18,32 @@ export async function drawn(page: Page): Promise<void> {
   );
 }
 
-/** Reads the picture's or the Section's canvas as it stands. */
-export async function readCanvas(page: Page, which: 'stage' | 'section'): Promise<WindowPixels> {
+/** Reads the picture's or the Section's canvas as it stands, as numbers of that space. */
+export async function readCanvas(
+  page: Page,
+  which: 'stage' | 'section',
+  space: PredefinedColorSpace = 'srgb',
+): Promise<WindowPixels> {
   await drawn(page);
-  const read = await page.evaluate((selector) => {
-    const shown = document.querySelector<HTMLCanvasElement>(selector)!;
-    const copy = document.createElement('canvas');
-    copy.width = shown.width;
-    copy.height = shown.height;
-    const context = copy.getContext('2d', { willReadFrequently: true })!;
-    context.drawImage(shown, 0, 0);
-    const { data } = context.getImageData(0, 0, copy.width, copy.height);
-    let text = '';
-    for (let at = 0; at < data.length; at += 0x8000)
-      text += String.fromCharCode(...data.subarray(at, at + 0x8000));
-    return { widthPx: copy.width, heightPx: copy.height, text: btoa(text) };
-  }, `.${which}-canvas canvas`);
+  const read = await page.evaluate(
+    ([selector, colorSpace]) => {
+      const shown = document.querySelector<HTMLCanvasElement>(selector)!;
+      const copy = document.createElement('canvas');
+      copy.width = shown.width;
+      copy.height = shown.height;
+      const context = copy.getContext('2d', {
+        willReadFrequently: true,
+        colorSpace: colorSpace as PredefinedColorSpace,
+      })!;
+      context.drawImage(shown, 0, 0);
+      const { data } = context.getImageData(0, 0, copy.width, copy.height);
+      let text = '';
+      for (let at = 0; at < data.length; at += 0x8000)
+        text += String.fromCharCode(...data.subarray(at, at + 0x8000));
+      return { widthPx: copy.width, heightPx: copy.height, text: btoa(text) };
+    },
+    [`.${which}-canvas canvas`, space],
+  );
   return {
     widthPx: read.widthPx,
     heightPx: read.heightPx,
