@@ -2,6 +2,7 @@ import { z } from 'zod';
 import { builtInPresetFileSchema } from '../presets/builtInPreset.ts';
 import { presetSchema } from '../presets/preset.ts';
 import { presetBundleSchema } from '../presets/presetBundle.ts';
+import { seriesSchema } from '../series/seriesDocument.ts';
 import { recipeSchema } from './recipe.ts';
 
 /** Base name of the shipped file → the definition it is made from. */
@@ -10,6 +11,7 @@ const definitions = {
   preset: presetSchema,
   presets: presetBundleSchema,
   'built-in-preset': builtInPresetFileSchema,
+  series: seriesSchema,
 };
 
 /**

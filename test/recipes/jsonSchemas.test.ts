@@ -2,6 +2,7 @@ import { readdirSync, readFileSync } from 'node:fs';
 import { Ajv2020 } from 'ajv/dist/2020.js';
 import { describe, expect, it } from 'vitest';
 import { jsonSchemas } from '../../core/recipes/jsonSchemas.ts';
+import { type SeriesDocument, startSeries, withOverride } from '../../core/series/seriesDocument.ts';
 import { sampleRecipe } from './sampleRecipes.ts';
 
 const at = (path: string) => new URL(`../../${path}`, import.meta.url);
@@ -108,5 +109,29 @@ describe('the shipped JSON Schemas', () => {
     expect(validate(recipe)).toBe(true);
     spoil(recipe);
     expect(validate(JSON.parse(JSON.stringify(recipe)))).toBe(false);
+  });
+
+  const sampleSeries = (): SeriesDocument => {
+    const { name, states } = readJson('test/fixtures/recipes/preset-schema-1.json');
+    const series = startSeries(['plate 1.jpg', 'plate 2.jpg'], { name, state: states[0] });
+    const overrides = withOverride([], ['plate 2.jpg'], { look: series.look, parts: series.match.parts });
+    return { ...series, leftOut: ['plate 1.jpg'], overrides };
+  };
+
+  it.each<[string, (series: SeriesDocument) => void]>([
+    ['a match of more than all', ({ match }) => Object.assign(match, { amount01: 1.01 })],
+    ['a lead that is no name', (series) => Object.assign(series, { lead: 7 })],
+    ['an override of no frame', ({ overrides }) => Object.assign(overrides[0], { frames: [] })],
+    ['a part that is not said', ({ match }) => Reflect.deleteProperty(match.parts, 'ink')],
+    ['a look without its parameters', ({ look }) => Reflect.deleteProperty(look, 'parameters')],
+    ['another format', (series) => Object.assign(series, { format: 'oxgall-recipe' })],
+    ['another schema', (series) => Object.assign(series, { schema: 2 })],
+  ])('series.schema.json refuses %s', (_, spoil) => {
+    const validate = validators.get('series.schema.json')!;
+    const series: SeriesDocument = JSON.parse(JSON.stringify(sampleSeries()));
+    expect(validate(series), JSON.stringify(validate.errors)).toBe(true);
+    expect(validate({ ...series, lead: null })).toBe(true);
+    spoil(series);
+    expect(validate(series)).toBe(false);
   });
 });
