@@ -11,7 +11,7 @@ import { runStore } from './runWork.ts';
 import { WallFrame } from './WallFrame.tsx';
 import { WallPanel } from './WallPanel.tsx';
 import { takeWallKey } from './wallKeys.ts';
-import { framesBetween, hangFrames, nearestFirst, type WallLayout } from './wallLayout.ts';
+import { framesBetween, type HungFrame, hangFrames, nearestFirst, type WallLayout } from './wallLayout.ts';
 import { chosenStore, comparedStore, wallScaleStore } from './wallStore.ts';
 
 /** Rows above and below the view that are hung as well, as a share of its height. */
@@ -39,9 +39,10 @@ function Frames({ series, settings }: { series: SeriesView; settings: SeriesSett
   const run = useStore(runStore);
   const presets = useStore(sessionStore, (session) => session?.presets);
   const [widthPx, setWidthPx] = useState(0);
+  const sizes = useSizes(series);
   const layout = useMemo(
-    () => hangFrames(series.frames, { widthPx: Math.max(widthPx, longEdgePx + 80), longEdgePx }),
-    [series.frames, widthPx, longEdgePx],
+    () => hangFrames(sizes, { widthPx: Math.max(widthPx, longEdgePx + 80), longEdgePx }),
+    [sizes, widthPx, longEdgePx],
   );
   const shown = useShown(scroller, layout, setWidthPx);
   useWantedPictures(series, settings, layout, shown, scroller, longEdgePx);
@@ -57,6 +58,7 @@ function Frames({ series, settings }: { series: SeriesView; settings: SeriesSett
     [settings.overrides],
   );
   const at = chosen.at ?? series.frames[0]?.frameId;
+  const atIndex = series.frames.findIndex(({ frameId }) => frameId === at);
   return (
     <section
       ref={scroller}
@@ -70,7 +72,7 @@ function Frames({ series, settings }: { series: SeriesView; settings: SeriesSett
       }}
     >
       <ul style={{ height: layout.heightPx }}>
-        {layout.frames.slice(shown.from, shown.to).map((place) => {
+        {hungWith(layout, shown, atIndex).map((place) => {
           const frame = series.frames[place.index];
           const override = overrides.get(frame.frameId) ?? null;
           return (
@@ -92,6 +94,27 @@ function Frames({ series, settings }: { series: SeriesView; settings: SeriesSett
       </ul>
     </section>
   );
+}
+
+/** Sizes of the frames; the same array until one of them changes, so that what is told of frames hangs nothing anew. */
+function useSizes({ frames }: SeriesView): readonly { widthPx: number; heightPx: number }[] {
+  const last = useRef<SeriesView['frames']>(frames);
+  const isSame =
+    frames.length === last.current.length &&
+    frames.every(
+      ({ widthPx, heightPx }, i) =>
+        widthPx === last.current[i].widthPx && heightPx === last.current[i].heightPx,
+    );
+  if (!isSame) last.current = frames;
+  return last.current;
+}
+
+/** The frames in view, and the one the keys are on wherever it hangs: taken down, it would lose the focus. */
+function hungWith({ frames }: WallLayout, { from, to }: { from: number; to: number }, atIndex: number) {
+  const hung = frames.slice(from, to);
+  if (atIndex >= to && atIndex < frames.length) hung.push(frames[atIndex]);
+  else if (atIndex >= 0 && atIndex < from) hung.unshift(frames[atIndex]);
+  return hung;
 }
 
 /** Which frames are hung: those in view and a little around; changes only when a row comes or goes. */
@@ -150,7 +173,10 @@ function useWantedPictures(
   }, [series.frames, settings.leftOut, layout, shown, scroller, longEdgePx]);
 }
 
-/** The frame that the keys go to is brought into view and takes the focus, if the focus is among the frames. */
+/**
+ * The frame that the keys go to is brought into view and takes the focus, if the focus is among the frames. Where
+ * frames are hung anew it stays in view if it was; whoever scrolled away from it is left in peace.
+ */
 function useFollowedKeys(
   scroller: React.RefObject<HTMLElement | null>,
   layout: WallLayout,
@@ -159,20 +185,33 @@ function useFollowedKeys(
   const at = useStore(chosenStore, (chosen) => chosen.at);
   const frames = useRef(series.frames);
   frames.current = series.frames;
+  const last = useRef({ at, layout });
+  const hadFocus = useRef(false);
   useEffect(() => {
+    const note = ({ target }: FocusEvent) => {
+      hadFocus.current = scroller.current?.contains(target as Node) ?? false;
+    };
+    document.addEventListener('focusin', note);
+    return () => document.removeEventListener('focusin', note);
+  }, [scroller]);
+  useEffect(() => {
+    const before = last.current;
+    last.current = { at, layout };
     const element = scroller.current!;
-    if (!at || !element.contains(document.activeElement)) return;
-    const place = layout.frames[frames.current.findIndex(({ frameId }) => frameId === at)];
+    // A frame that is taken down as the keys leave it leaves the focus to nobody.
+    const isLost = document.activeElement === document.body && hadFocus.current;
+    if (!at || !(isLost || element.contains(document.activeElement))) return;
+    const index = frames.current.findIndex(({ frameId }) => frameId === at);
+    const place = layout.frames[index];
     if (!place) return;
     const { scrollTop, clientHeight } = element;
+    const isIn = ({ yPx, heightPx }: HungFrame) =>
+      yPx + heightPx > scrollTop && yPx < scrollTop + clientHeight;
+    const was = before.layout.frames[index];
+    if (before.at === at && before.layout !== layout && !(was && isIn(was))) return;
     if (place.yPx - 40 < scrollTop) element.scrollTop = place.yPx - 40;
     else if (place.yPx + place.heightPx + 80 > scrollTop + clientHeight)
       element.scrollTop = place.yPx + place.heightPx + 80 - clientHeight;
-    const focus = () =>
-      element.querySelector<HTMLElement>(`[data-frame="${CSS.escape(at)}"]`)?.focus({ preventScroll: true });
-    // A row that was far away is hung with the next picture of the window.
-    focus();
-    const waiting = requestAnimationFrame(() => requestAnimationFrame(focus));
-    return () => cancelAnimationFrame(waiting);
+    element.querySelector<HTMLElement>(`[data-frame="${CSS.escape(at)}"]`)?.focus({ preventScroll: true });
   }, [at, layout, scroller]);
 }

@@ -8,33 +8,9 @@ import { seriesFileName } from '../../core/series/seriesDocument.ts';
 import { seriousFindings } from './axe.ts';
 import { chromiumFound } from './chromium.ts';
 import { keepScreen, type OpenWindow, openWindow } from './openWindow.ts';
+import { frame, hangs, writeFrames } from './wallFrames.ts';
 
 const isStrict = Boolean(process.env.OXGALL_STRICT);
-
-/** Writes small pictures of a shore under a sky; each differs from the next in its light and its waves. */
-async function writeFrames(folder: string, count: number, widthPx = 480): Promise<void> {
-  const heightPx = Math.round((widthPx * 2) / 3);
-  const pixels = new Uint8Array(widthPx * heightPx * 3);
-  for (let number = 1; number <= count; number++) {
-    for (let y = 0; y < heightPx; y++)
-      for (let x = 0; x < widthPx; x++) {
-        const wave = 18 * Math.sin(x / (7 + (number % 5)) + (y * y) / 900);
-        const light = 0.85 + 0.03 * (number % 6);
-        const isSky = y < heightPx * 0.4;
-        const at = (y * widthPx + x) * 3;
-        pixels[at] = light * (isSky ? 150 : 70 + wave);
-        pixels[at + 1] = light * (isSky ? 170 : 96 + wave);
-        pixels[at + 2] = light * (isSky ? 200 : 100 + wave);
-      }
-    const raw = { width: widthPx, height: heightPx, channels: 3 } as const;
-    await sharp(pixels, { raw })
-      .jpeg({ quality: 88 })
-      .toFile(join(folder, `plate-${number}.jpg`));
-  }
-}
-
-const frame = (page: Page, name: string) => page.locator(`[data-frame="${name}"]`);
-const hangs = (page: Page) => page.locator('.wall-print canvas.is-there').first().waitFor();
 
 describe.skipIf(!chromiumFound.path)('the Wall', () => {
   let folder: string;
@@ -78,17 +54,7 @@ describe.skipIf(!chromiumFound.path)('the Wall', () => {
   });
 
   it('changes the lead and takes it back by keys alone', { timeout: 60_000 }, async () => {
-    // Frames are hung anew while the series is still being read: the focus holds once they rest.
-    await expect
-      .poll(
-        async () => {
-          await frame(page, 'plate-1.jpg').focus();
-          await page.waitForTimeout(400);
-          return page.locator('[data-frame="plate-1.jpg"]:focus').count();
-        },
-        { timeout: 15_000 },
-      )
-      .toBe(1);
+    await frame(page, 'plate-1.jpg').focus();
     for (const next of ['plate-2.jpg', 'plate-3.jpg']) {
       await page.keyboard.press('ArrowRight');
       await page.locator(`[data-frame="${next}"]:focus`).waitFor();
@@ -99,6 +65,17 @@ describe.skipIf(!chromiumFound.path)('the Wall', () => {
     await page.keyboard.press('Control+z');
     await page.locator('.is-lead [data-frame="plate-1.jpg"]').waitFor();
     await saved({ lead: 'plate-1.jpg' });
+    await page.keyboard.press('Control+Shift+z');
+    await saved({ lead: 'plate-3.jpg' });
+    await page.keyboard.press('x');
+    await saved({ leftOut: ['plate-3.jpg'] });
+    // A lead that is left out leads on, and the Wall says so.
+    await page.getByText('plate-3.jpg leads, but is not painted.').waitFor();
+    await page.locator('.is-lead.is-out [data-frame="plate-3.jpg"]').waitFor();
+    await page.keyboard.press('Control+z');
+    await saved({ lead: 'plate-3.jpg', leftOut: [] });
+    await page.keyboard.press('Control+y');
+    await saved({ leftOut: ['plate-3.jpg'] });
   });
 
   it('leaves chosen frames out and takes them back', { timeout: 60_000 }, async () => {
@@ -178,7 +155,7 @@ describe.skipIf(!chromiumFound.path)('a wall of five hundred frames', () => {
     const folder = await mkdtemp(join(tmpdir(), 'oxgall-wall-500-'));
     const photos = join(folder, 'photos');
     await mkdir(photos);
-    await writeFrames(photos, 500, 240);
+    await writeFrames(photos, 500, { widthPx: 240 });
     const opened = await openWindow({ path: photos });
     const { page } = opened;
     try {
