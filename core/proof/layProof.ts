@@ -11,6 +11,7 @@ import {
   type TypeMeasure,
   type TypeStyle,
 } from './proofPage.ts';
+import { marksReachPt, trimMarksOf } from './trimMarks.ts';
 import { wrapText } from './wrapText.ts';
 
 /** No picture is printed with fewer pixels an inch: press practice for painterly pictures. */
@@ -20,7 +21,7 @@ const gutterPt = 6 * pointsPerMm;
 const rowGapPt = 6 * pointsPerMm;
 const narrowestCellPt = 15 * pointsPerMm;
 /** Between a picture and its caption. */
-const captionGapPt = 4;
+const plainCaptionGapPt = 4;
 const footPt = 20;
 const ruleGapPt = 12;
 /** Where no picture is, its place is shown in this shape. */
@@ -69,15 +70,17 @@ export function layProof(
     const rowOf = (tallestPt: number) =>
       numbers.map((k) => cellOf(frames[k], k, captions[k], sheet.cellPt, tallestPt));
     let row = rowOf(sheet.cellPt);
-    if (!isPageEmpty && yPt + heightOf(row) > sheet.bottomPt) {
+    if (!isPageEmpty && yPt + heightOf(row, sheet) > sheet.bottomPt) {
       turnPage();
       isPageEmpty = true;
     }
     // A row that is taller than an empty page gives up some of its pictures' height.
-    if (yPt + heightOf(row) > sheet.bottomPt)
-      row = rowOf(Math.max(1, sheet.bottomPt - yPt - captionHeightOf(row) - captionGapPt));
+    if (yPt + heightOf(row, sheet) > sheet.bottomPt)
+      row = rowOf(
+        Math.max(1, sheet.bottomPt - yPt - captionHeightOf(row) - sheet.captionGapPt - sheet.markPt),
+      );
     placeRow(pages[pages.length - 1], row, frames, yPt, sheet, type);
-    yPt += heightOf(row) + rowGapPt;
+    yPt += heightOf(row, sheet) + rowGapPt;
     isPageEmpty = false;
   }
   pages.forEach((page, k) => {
@@ -87,6 +90,10 @@ export function layProof(
 }
 
 interface Sheet {
+  /** Between a picture and its caption. */
+  captionGapPt: number;
+  /** Above a row's pictures, for their marks. */
+  markPt: number;
   widthPt: number;
   heightPt: number;
   marginPt: number;
@@ -96,7 +103,7 @@ interface Sheet {
   bottomPt: number;
 }
 
-function sheetOf({ paper, columns, marginMm }: ProofSettings): Sheet {
+function sheetOf({ paper, columns, marginMm, trimMarks = false }: ProofSettings): Sheet {
   const widthPt = paper.widthMm * pointsPerMm;
   const heightPt = paper.heightMm * pointsPerMm;
   const marginPt = marginMm * pointsPerMm;
@@ -110,11 +117,13 @@ function sheetOf({ paper, columns, marginMm }: ProofSettings): Sheet {
   // Title, a caption of all its lines, and a picture of 15 mm.
   if (bottomPt - marginPt < 150 + narrowestCellPt)
     throw new RangeError(`Expected margins that leave room for a picture, received ${marginMm} mm`);
-  return { widthPt, heightPt, marginPt, contentPt, cellPt, bottomPt };
+  const markPt = trimMarks ? marksReachPt : 0;
+  const captionGapPt = plainCaptionGapPt + markPt;
+  return { widthPt, heightPt, marginPt, contentPt, cellPt, bottomPt, captionGapPt, markPt };
 }
 
 function emptyPage({ widthPt, heightPt }: Sheet): ProofPage {
-  return { widthPt, heightPt, pictures: [], texts: [], rules: [], boxes: [] };
+  return { widthPt, heightPt, pictures: [], texts: [], rules: [], marks: [], boxes: [] };
 }
 
 /** @returns where the rows begin */
@@ -212,8 +221,8 @@ function pictureHeightOf(row: readonly Cell[]): number {
   return Math.max(...row.map((cell) => cell.heightPt));
 }
 
-function heightOf(row: readonly Cell[]): number {
-  return pictureHeightOf(row) + captionGapPt + captionHeightOf(row);
+function heightOf(row: readonly Cell[], { captionGapPt, markPt }: Sheet): number {
+  return markPt + pictureHeightOf(row) + captionGapPt + captionHeightOf(row);
 }
 
 function placeRow(
@@ -224,15 +233,18 @@ function placeRow(
   sheet: Sheet,
   type: TypeMeasure,
 ): void {
-  const standPt = topPt + pictureHeightOf(row);
+  const standPt = topPt + sheet.markPt + pictureHeightOf(row);
   row.forEach((cell, column) => {
     const xPt = sheet.marginPt + column * (sheet.cellPt + gutterPt);
     const { widthPt, heightPt } = cell;
     const place = { xPt, yPt: standPt - heightPt, widthPt, heightPt };
     const { sizePx, fault } = frames[cell.frame];
-    if (sizePx) page.pictures.push({ frame: cell.frame, sizePx, ...place });
-    else addFault(page, place, fault, type);
-    let yPt = standPt + captionGapPt;
+    if (!sizePx) addFault(page, place, fault, type);
+    else {
+      page.pictures.push({ frame: cell.frame, sizePx, ...place });
+      if (sheet.markPt > 0) page.marks.push(...trimMarksOf(place));
+    }
+    let yPt = standPt + sheet.captionGapPt;
     for (const line of cell.caption) {
       const { leadingPt } = styleTable[line.style];
       yPt += leadingPt;

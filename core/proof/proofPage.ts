@@ -34,6 +34,8 @@ export interface ProofSettings {
   title: string;
   /** As it is printed. */
   date: string;
+  /** Lines at each picture's corners, where its print will be cut. */
+  trimMarks?: boolean;
 }
 
 /** A style of type; `proofType` says which face and size it is. */
@@ -63,6 +65,7 @@ const softInk = '#5d574d';
 const rust = '#94401f';
 
 export const hairlineColour = '#b5ab99';
+export const markColour = '#000000';
 
 export const styleTable: Record<TypeStyle, StyleSpec> = {
   title: { face: 'serif', sizePt: 21, leadingPt: 25, colour: ink },
@@ -114,12 +117,21 @@ export interface PlacedRule {
   widthPt: number;
 }
 
+/** A trim mark: a short line along one axis. */
+export interface PlacedMark {
+  xPt: number;
+  yPt: number;
+  toXPt: number;
+  toYPt: number;
+}
+
 export interface ProofPage {
   widthPt: number;
   heightPt: number;
   pictures: PlacedPicture[];
   texts: PlacedText[];
   rules: PlacedRule[];
+  marks: PlacedMark[];
   /** Hairline frames in the place of pictures that cannot be shown. */
   boxes: RectPt[];
 }

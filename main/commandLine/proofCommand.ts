@@ -14,6 +14,7 @@ const options = {
   columns: { type: 'string' },
   margin: { type: 'string' },
   title: { type: 'string' },
+  'trim-marks': { type: 'boolean' },
   workers: { type: 'string' },
   json: { type: 'boolean' },
 } as const;
@@ -33,6 +34,7 @@ export const proofCommand: Command = {
     ['--columns N', 'Pictures beside one another; 3, or 4 on paper that lies, unless given.'],
     ['--margin MM', `Around the page; ${defaultMarginMm} unless given.`],
     ['--title TEXT', "The series' title; the folder's name unless given."],
+    ['--trim-marks', 'Marks at each picture where its print will be cut.'],
     ['--workers N', 'Worker threads, where photos are painted for the sheet.'],
     ['--json', 'Prints one JSON object with everything that was done.'],
   ],
@@ -54,7 +56,8 @@ async function proof(words: string[]): Promise<number> {
   const marginMm = readNumber(values.margin ?? defaultMarginMm, '--margin', 5, 100);
   const workers = values.workers === undefined ? undefined : readWhole(values.workers, '--workers', 1, 64);
   const out = values.out ?? (await firstFree(join(folder, `${name}.proof.pdf`)));
-  const order = { out, paper, columns, marginMm, title: values.title ?? name, date: new Date() };
+  const trimMarks = values['trim-marks'] === true;
+  const order = { out, paper, columns, marginMm, title: values.title ?? name, date: new Date(), trimMarks };
   // Loaded here: no other command needs typefaces and a PDF writer.
   const { folderSources } = await import('../proof/folderSources.ts');
   const { ProofPainter } = await import('../proof/proofPainter.ts');

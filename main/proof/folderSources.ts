@@ -1,5 +1,6 @@
 import { readFile } from 'node:fs/promises';
 import { lookCaption } from '../../core/presets/lookName.ts';
+import { placeFrame } from '../../core/print/printPlan.ts';
 import { figureWords } from '../../core/proof/captionWords.ts';
 import type { ProofCaption } from '../../core/proof/proofPage.ts';
 import { recipeFormat } from '../../core/recipes/documentFormats.ts';
@@ -89,11 +90,9 @@ async function paintedSource(
   // A photo that cannot be read shows what is wrong with it when the sheet is made.
   const size = await readPhotoSize(path).catch(() => null);
   if (!size) return { picture: { path }, caption };
-  const look = {
-    parameters: currentParameters(recipe),
-    printLongEdgeMm: recipe.work.output.printLongEdgeMm,
-  };
-  const { widthPx, heightPx } = size;
+  const { printLongEdgeMm, cropFrame: crop } = recipe.work.output;
+  const look = { parameters: currentParameters(recipe), printLongEdgeMm, crop };
+  const { widthPx, heightPx } = crop ? placeFrame(size, crop) : size;
   const paint = (needed: { widthPx: number; heightPx: number }, signal?: AbortSignal) =>
     painter.paint(path, look, needed, signal);
   return { picture: { path, widthPx, heightPx, paint }, caption };

@@ -1,16 +1,20 @@
 import type { Parameters } from '../../core/parameters/table.ts';
+import type { CropFrame } from '../../core/print/printPlan.ts';
 import type { ToneMap } from '../../core/series/toneMap.ts';
 import type { Engine, EnginePhoto } from '../engine/engineApi.ts';
 import { createEngine } from '../engine/paintEngine.ts';
 import { loadComposeSmall } from '../host/composeSmall.ts';
 import type { ComposeSmall } from '../host/hostParts.ts';
-import { holdPhoto, readAnyPhoto } from '../painting/holdPhoto.ts';
+import { holdPhoto } from '../painting/holdPhoto.ts';
+import { readForPrint } from '../painting/readForPrint.ts';
 import type { ProofPixels } from './proofSource.ts';
 
 /** A look that is laid on a photo for the sheet. */
 export interface ProofLook {
   parameters: Parameters;
   printLongEdgeMm: number;
+  /** What of the photo is printed; all of it unless given. */
+  crop?: CropFrame;
   /** Matches the photo to a lead. */
   toneMap?: ToneMap | null;
 }
@@ -32,11 +36,11 @@ export class ProofPainter {
    */
   async paint(
     path: string,
-    { parameters, printLongEdgeMm, toneMap }: ProofLook,
+    { parameters, printLongEdgeMm, crop, toneMap }: ProofLook,
     needed: { widthPx: number; heightPx: number },
     signal?: AbortSignal,
   ): Promise<ProofPixels> {
-    const file = await readAnyPhoto(path, { signal });
+    const file = await readForPrint(path, { printLongEdgeMm, print: { crop } }, { signal });
     const { iccProfile } = file;
     if (!this.lent) this.#engine ??= createEngine({ workers: this.workers });
     this.#compose ??= loadComposeSmall();

@@ -1,5 +1,11 @@
 import PDFDocument from 'pdfkit';
-import { hairlineColour, type ProofPage, pointsPerInch, styleTable } from '../../core/proof/proofPage.ts';
+import {
+  hairlineColour,
+  markColour,
+  type ProofPage,
+  pointsPerInch,
+  styleTable,
+} from '../../core/proof/proofPage.ts';
 import { sharp } from '../files/imageLibrary.ts';
 import { fileErrorFrom } from '../files/systemErrors.ts';
 import { UnfinishedFile } from '../files/unfinishedFile.ts';
@@ -119,6 +125,8 @@ function drawRules(pdf: Pdf, page: ProofPage): void {
       .lineTo(xPt + widthPt, yPt)
       .stroke();
   for (const { xPt, yPt, widthPt, heightPt } of page.boxes) pdf.rect(xPt, yPt, widthPt, heightPt).stroke();
+  pdf.strokeColor(markColour);
+  for (const { xPt, yPt, toXPt, toYPt } of page.marks) pdf.moveTo(xPt, yPt).lineTo(toXPt, toYPt).stroke();
 }
 
 /**

@@ -1,6 +1,6 @@
 import { basename, dirname, extname, join } from 'node:path';
 import { fewestPpi } from '../../core/proof/layProof.ts';
-import { hairlineColour, type ProofPage, pointsPerInch } from '../../core/proof/proofPage.ts';
+import { hairlineColour, markColour, type ProofPage, pointsPerInch } from '../../core/proof/proofPage.ts';
 import { sharp } from '../files/imageLibrary.ts';
 import { unlessAborted } from '../files/interruption.ts';
 import { writePicture } from '../files/writePicture.ts';
@@ -76,7 +76,7 @@ async function drawPage(
 
 type sharpRaw = { width: number; height: number; channels: 3 };
 
-/** Rules, boxes and type as an SVG without a single text element. */
+/** Rules, marks, boxes and type as an SVG without a single text element. */
 function drawing(page: ProofPage, type: ProofType, widthPx: number, heightPx: number): string {
   const stroke = `fill="none" stroke="${hairlineColour}" stroke-width="${hairlinePt}"`;
   const rules = page.rules.map(({ xPt, yPt, widthPt }) => `<path ${stroke} d="M${xPt} ${yPt}h${widthPt}"/>`);
@@ -84,11 +84,15 @@ function drawing(page: ProofPage, type: ProofType, widthPx: number, heightPx: nu
     ({ xPt, yPt, widthPt, heightPt }) =>
       `<rect ${stroke} x="${xPt}" y="${yPt}" width="${widthPt}" height="${heightPt}"/>`,
   );
+  const marks = page.marks.map(
+    ({ xPt, yPt, toXPt, toYPt }) =>
+      `<path stroke="${markColour}" stroke-width="${hairlinePt}" d="M${xPt} ${yPt}L${toXPt} ${toYPt}"/>`,
+  );
   const texts = page.texts.map(({ text, style, xPt, baselinePt }) =>
     type.outlines(text, style, xPt, baselinePt),
   );
   return (
     `<svg xmlns="http://www.w3.org/2000/svg" width="${widthPx}" height="${heightPx}" ` +
-    `viewBox="0 0 ${page.widthPt} ${page.heightPt}">${rules.join('')}${boxes.join('')}${texts.join('')}</svg>`
+    `viewBox="0 0 ${page.widthPt} ${page.heightPt}">${rules.join('')}${marks.join('')}${boxes.join('')}${texts.join('')}</svg>`
   );
 }

@@ -14,9 +14,9 @@ import { SpilledPixels } from '../files/spilledPixels.ts';
 import { writePicture } from '../files/writePicture.ts';
 import { type DeliveredPainting, deliverPainting } from '../painting/deliverPainting.ts';
 import { describePainting } from '../painting/describePainting.ts';
-import { holdPhoto, letGo, readAnyPhoto } from '../painting/holdPhoto.ts';
-import { prepareForPrint } from '../painting/prepareForPrint.ts';
+import { holdPhoto, letGo } from '../painting/holdPhoto.ts';
 import { printOrderOf } from '../painting/printOrder.ts';
+import { readForPrint } from '../painting/readForPrint.ts';
 import type { FrameMatching } from './frameMatching.ts';
 import { holdMatched, type LeadMeasures, measureLead, reviewLevel } from './matchPhoto.ts';
 
@@ -58,7 +58,7 @@ export async function paintFrame(
 ): Promise<PaintedFrame> {
   const { printLongEdgeMm, format, depth, quality, layers, metadata } = output;
   const print = printOrderOf(output);
-  const photo = await readForPrint(photoPath, output, signal);
+  const photo = await readForPrint(photoPath, { printLongEdgeMm, print }, { signal });
   const { pixels } = photo;
   const isTooLarge = pixels instanceof SpilledPixels;
   const remarks = asked && isTooLarge ? ['Too large to be matched: painted as it is.'] : [];
@@ -127,7 +127,7 @@ export async function measureLeadPhoto(
   signal?: AbortSignal,
 ): Promise<LeadMeasures | null> {
   const { printLongEdgeMm } = output;
-  const photo = await readForPrint(photoPath, output, signal);
+  const photo = await readForPrint(photoPath, { printLongEdgeMm, print: printOrderOf(output) }, { signal });
   const { pixels } = photo;
   if (pixels instanceof SpilledPixels) {
     letGo(photo);
@@ -139,17 +139,5 @@ export async function measureLeadPhoto(
     return await measureLead(engine, decoded, held, parameters, { printLongEdgeMm, signal });
   } finally {
     held.close();
-  }
-}
-
-/** Reads a photo and brings it to the print's own pixels where that is asked for. */
-async function readForPrint(photoPath: string, output: OutputSettings, signal?: AbortSignal) {
-  const photo = await readAnyPhoto(photoPath, { signal });
-  try {
-    const { printLongEdgeMm } = output;
-    return await prepareForPrint(photo, { printLongEdgeMm, ...printOrderOf(output) }, signal);
-  } catch (failure) {
-    letGo(photo);
-    throw failure;
   }
 }

@@ -223,3 +223,40 @@ describe('a sheet', () => {
     expect(() => layProof([frame(9, 9)], narrow, evenType)).toThrow(/margins that leave room/);
   });
 });
+
+describe('trim marks', () => {
+  const frames = [frame(3000, 2000), frame(2000, 3000), frame(3000, 3000), frame(4000, 1000)];
+  const [page] = layProof(frames, settings({ trimMarks: true }), evenType);
+
+  it('stand in line with the edges of each picture, eight of them, and outside of it', () => {
+    expect(page.marks).toHaveLength(8 * frames.length);
+    for (const [k, { xPt, yPt, widthPt, heightPt }] of page.pictures.entries())
+      for (const mark of page.marks.slice(8 * k, 8 * k + 8)) {
+        const isLevel = mark.yPt === mark.toYPt;
+        const along = isLevel ? [mark.xPt, mark.toXPt] : [mark.yPt, mark.toYPt];
+        const [from, to] = isLevel ? [xPt, xPt + widthPt] : [yPt, yPt + heightPt];
+        expect(along.every((at) => at < from) || along.every((at) => at > to)).toBe(true);
+        const edges = isLevel ? [yPt, yPt + heightPt] : [xPt, xPt + widthPt];
+        expect(edges).toContain(isLevel ? mark.yPt : mark.xPt);
+      }
+  });
+
+  it('meet no caption and no other picture', () => {
+    const lowest = page.marks.map(({ yPt, toYPt }) => Math.max(yPt, toYPt));
+    for (const { text, baselinePt, style } of page.texts) {
+      const above = lowest.filter(
+        (atPt) => atPt < baselinePt && atPt > baselinePt - styleTable[style].sizePt,
+      );
+      expect(above, text).toEqual([]);
+    }
+    for (const { xPt, yPt, widthPt, heightPt } of page.pictures)
+      for (const { toXPt, toYPt } of page.marks) {
+        const isInside = toXPt > xPt && toXPt < xPt + widthPt && toYPt > yPt && toYPt < yPt + heightPt;
+        expect(isInside).toBe(false);
+      }
+  });
+
+  it('are only there where they are asked for', () => {
+    expect(layProof(frames, settings(), evenType)[0].marks).toEqual([]);
+  });
+});

@@ -1,5 +1,6 @@
 import { join } from 'node:path';
 import { type LookName, lookCaption } from '../../../core/presets/lookName.ts';
+import { placeFrame } from '../../../core/print/printPlan.ts';
 import { figureWords } from '../../../core/proof/captionWords.ts';
 import { lying, papers, readPaper } from '../../../core/proof/paper.ts';
 import { parametersWithMatch } from '../../../core/series/frameMatch.ts';
@@ -44,8 +45,10 @@ export async function makeSeriesProof(
   const painter = new ProofPainter(undefined, parts.loadEngine());
   const nameOf = await lookNamer((await parts.loadStores()).presets);
   const frames = series.view().frames.filter(({ frameId }) => !series.settings.leftOut.includes(frameId));
+  const { cropFrame: crop, trimMarks = false } = series.settings.output;
   const sources = frames.map((frame): ProofSource => {
-    const { frameId, path, widthPx, heightPx } = frame;
+    const { frameId, path } = frame;
+    const { widthPx, heightPx } = crop && frame.widthPx > 0 ? placeFrame(frame, crop) : frame;
     const caption = captionOf(frame, series, nameOf);
     if (widthPx === 0) return { picture: { path }, caption };
     return {
@@ -58,7 +61,7 @@ export async function makeSeriesProof(
           const order = series.pictureOrder(frameId);
           const match = await order.match((photo) => walls.pictures.paletteOf(photo));
           const parameters = parametersWithMatch(order.parameters, match);
-          const look = { parameters, printLongEdgeMm: order.printLongEdgeMm, toneMap: match.toneMap };
+          const look = { parameters, printLongEdgeMm: order.printLongEdgeMm, crop, toneMap: match.toneMap };
           return painter.paint(path, look, needed, signal);
         },
       },
@@ -72,6 +75,7 @@ export async function makeSeriesProof(
     marginMm,
     title,
     date: new Date(),
+    trimMarks,
   };
   try {
     const made = await makeProof(sources, order, {
