@@ -255,13 +255,18 @@ function likelyLead(): string | null {
   return fit?.frameId ?? null;
 }
 
+/** Counts the words where to go: opening a photo takes a while, and the last word counts. */
+let goings = 0;
+
 /** Puts a frame on the easel, with the look it has on the Wall where it has no recipe of its own. */
 export async function openOnEasel(frameId: string): Promise<void> {
   const frame = seriesStore.get()?.frames.find((candidate) => candidate.frameId === frameId);
   const settings = currentSettings();
   if (!frame || !settings || frame.state === 'unreadable') return;
+  goings += 1;
+  const going = goings;
   if (photoStore.get()?.path !== frame.path) await openPhoto(frame.path);
-  if (photoStore.get()?.path !== frame.path) return;
+  if (photoStore.get()?.path !== frame.path || going !== goings) return;
   roomStore.set('easel');
   const look = lookOfFrame(settings, frameId);
   const offer = sessionStore.get()?.presets.find(({ name }) => name === look.preset);
@@ -285,5 +290,6 @@ export function goTo(room: 'easel' | 'wall'): void {
     if (first) void openOnEasel(first);
     return;
   }
+  goings += 1;
   roomStore.set(room);
 }

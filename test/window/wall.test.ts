@@ -119,7 +119,7 @@ describe.skipIf(!chromiumFound.path)('the Wall', () => {
 
   it('opens a frame on the easel and comes back', { timeout: 60_000 }, async () => {
     await frame(page, 'plate-3.jpg').dblclick();
-    await page.getByRole('heading', { name: 'plate-3' }).waitFor();
+    await page.getByRole('heading', { name: 'plate-3', exact: true }).waitFor();
     await page.getByRole('button', { name: 'Wall' }).click();
     await frame(page, 'plate-3.jpg').waitFor();
   });
