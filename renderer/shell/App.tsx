@@ -11,8 +11,9 @@ import { dialogStore } from '../state/panelStore.ts';
 import { openingStore, photoStore } from '../state/photoStore.ts';
 import { useStore } from '../state/store.ts';
 import { ThreadRow } from '../states/ThreadRow.tsx';
+import { ProofSheet } from '../wall/ProofSheet.tsx';
+import { RunSheet } from '../wall/RunSheet.tsx';
 import { RunStrip } from '../wall/RunStrip.tsx';
-import { ProofSheet, RunSheet } from '../wall/SeriesSheets.tsx';
 import { Wall } from '../wall/Wall.tsx';
 import { WallTop } from '../wall/WallTop.tsx';
 import { roomStore, seriesStore, settingsStore, wallSheetStore } from '../wall/wallStore.ts';
@@ -61,7 +62,7 @@ export function App() {
       {dialog === 'open' && <OpenDialog />}
       {dialog === 'openFolder' && <OpenFolderDialog />}
       {sheet === 'run' && isAtWall && <RunSheet series={series} settings={settings} />}
-      {sheet === 'proof' && isAtWall && <ProofSheet series={series} settings={settings} />}
+      {sheet === 'proof' && isAtWall && <ProofSheet series={series} />}
       {dialog === 'save' && isAtWork && <SaveDialog photo={photo} look={look} />}
       <Notices />
     </div>

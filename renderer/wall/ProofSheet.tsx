@@ -1,100 +1,20 @@
 import { useState } from 'react';
 import { newCallId } from '../../core/hostProtocol/hostCaller.ts';
-import type { SeriesSettings } from '../../core/series/seriesDocument.ts';
 import type { ProofMade, SeriesView } from '../../main/host/api/seriesCommands.ts';
 import { host, isUnwanted, type Trouble, troubleOf } from '../host/host.ts';
-import { ChooseFolder, chooseFolder } from '../saving/ChooseFolder.tsx';
+import { ChooseFolder } from '../saving/ChooseFolder.tsx';
 import { Dialog } from '../shell/Dialog.tsx';
 import { useStore } from '../state/store.ts';
 import { proofProgressStore } from './proofProgress.ts';
-import { startRun } from './runWork.ts';
+import { FewField, FolderField } from './SheetFields.tsx';
 import { wallSheetStore } from './wallStore.ts';
-import { changeSeries } from './wallWork.ts';
-
-interface SheetProps {
-  series: SeriesView;
-  settings: SeriesSettings;
-}
 
 const close = () => wallSheetStore.set('none');
-
-const formats = [
-  { value: 'png', name: 'PNG' },
-  { value: 'tiff', name: 'TIFF' },
-  { value: 'jpeg', name: 'JPEG' },
-  { value: 'webp', name: 'WebP' },
-] as const;
-
-/** Where the paintings go and what files they are. */
-export function RunSheet({ series, settings }: SheetProps) {
-  const [folder, setFolder] = useState(`${series.folder}/painted`);
-  const [isChoosing, setChoosing] = useState(false);
-  const { output, leftOut } = settings;
-  const count = series.frames.filter(
-    ({ frameId, state }) => state !== 'unreadable' && !leftOut.includes(frameId),
-  ).length;
-  if (isChoosing)
-    return (
-      <ChooseFolder
-        startPath={series.folder}
-        onChosen={(path) => {
-          setFolder(path);
-          setChoosing(false);
-        }}
-        onCancel={() => setChoosing(false)}
-      />
-    );
-  const setOutput = (change: Partial<SeriesSettings['output']>) =>
-    changeSeries({ output: { ...output, ...change } }, 'What files are made', {
-      name: 'output',
-      held: false,
-    });
-  return (
-    <Dialog title="Paint the series" className="save-dialog" onClose={close}>
-      <form
-        onSubmit={(event) => {
-          event.preventDefault();
-          void startRun(folder);
-        }}
-      >
-        <FolderField folder={folder} onChange={setFolder} showList={() => setChoosing(true)} />
-        <FewField
-          label="Format"
-          options={formats}
-          value={output.format}
-          onChange={(format) => setOutput({ format })}
-        />
-        <label className="field">
-          <span>Print, mm</span>
-          <input
-            type="number"
-            min={10}
-            max={10_000}
-            value={output.printLongEdgeMm}
-            onChange={(event) => {
-              const printLongEdgeMm = Number(event.target.value);
-              if (printLongEdgeMm >= 10 && printLongEdgeMm <= 10_000) setOutput({ printLongEdgeMm });
-            }}
-          />
-        </label>
-        <p className="save-size">
-          {count === 1 ? 'One frame' : `${count} frames`}, each named as its photograph. A photograph is never
-          painted over.
-        </p>
-        <div className="dialog-foot">
-          <button type="submit" className="ink-button" data-first disabled={count === 0}>
-            Begin
-          </button>
-        </div>
-      </form>
-    </Dialog>
-  );
-}
 
 const papers = ['A4', 'A3', 'A5', 'letter'] as const;
 
 /** A sheet of small pictures to send for approval. */
-export function ProofSheet({ series }: SheetProps) {
+export function ProofSheet({ series }: { series: SeriesView }) {
   const [folder, setFolder] = useState(series.folder);
   const [isChoosing, setChoosing] = useState(false);
   const [format, setFormat] = useState<'pdf' | 'png'>('pdf');
@@ -252,61 +172,5 @@ function ProofDone({ made }: { made: ProofMade }) {
         </button>
       </div>
     </Dialog>
-  );
-}
-
-function FolderField({
-  folder,
-  onChange,
-  showList,
-}: {
-  folder: string;
-  onChange: (path: string) => void;
-  showList: () => void;
-}) {
-  return (
-    <div className="field">
-      <span>Folder</span>
-      <span className="field-folder">
-        <span className="field-path">{folder}</span>
-        <button
-          type="button"
-          className="plain-button"
-          onClick={() => void chooseFolder(folder, onChange, showList)}
-        >
-          Change…
-        </button>
-      </span>
-    </div>
-  );
-}
-
-interface FewProps<Value extends string> {
-  label: string;
-  options: readonly { value: Value; name: string }[];
-  value: Value;
-  onChange: (value: Value) => void;
-}
-
-function FewField<Value extends string>({ label, options, value, onChange }: FewProps<Value>) {
-  return (
-    <fieldset className="field few-field">
-      <legend>{label}</legend>
-      <span className="few">
-        {options.map((option) => (
-          <label key={option.value} className="few-choice">
-            <input
-              className="unseen"
-              type="radio"
-              name={`sheet-${label}`}
-              value={option.value}
-              checked={option.value === value}
-              onChange={() => onChange(option.value)}
-            />
-            <span>{option.name}</span>
-          </label>
-        ))}
-      </span>
-    </fieldset>
   );
 }
