@@ -19,7 +19,6 @@ import { type LoadedSeries, loadSeries, saveSeries } from '../../store/seriesFil
 import type { SeriesView } from '../api/seriesCommands.ts';
 import type { EventHub } from '../eventHub.ts';
 import type { HostParts, PhotoFacts } from '../hostParts.ts';
-import { listFolder } from '../listFolder.ts';
 import { firstPresetName } from '../photoMemories.ts';
 import { describeError, Refusal } from '../refusal.ts';
 import {
@@ -31,18 +30,7 @@ import {
 } from './frameMeasuring.ts';
 import type { FramePictures, PaletteOf, PictureOrder } from './framePictures.ts';
 import { oddities } from './oddities.ts';
-
-/** One photo of the folder. */
-interface Frame {
-  frameId: string;
-  path: string;
-  stamp: string;
-  facts: PhotoFacts | null;
-  fault: string | null;
-  isMeasuring: boolean;
-  /** It cannot be measured; its painting is not the worse for it. */
-  isUnmeasurable: boolean;
-}
+import { type SeriesFrame, SeriesFrames } from './seriesFrames.ts';
 
 export interface WallParts {
   parts: Pick<HostParts, 'loadEngine' | 'loadFiles'>;
@@ -55,8 +43,6 @@ export interface WallParts {
   coming(folder: string): number;
 }
 
-/** Headers read at the same time. */
-const readersAtOnce = 4;
 /** A series is shown after this long, whether all sizes are known or not. */
 const firstAnswerMs = 120;
 const tellEveryMs = 400;
@@ -66,7 +52,7 @@ const restMs = 1200;
 /** One open series: its settings, what is known of its frames, and what is being found out. */
 export class WallSeries {
   readonly seriesId = randomUUID();
-  #frames: Frame[] = [];
+  readonly #frames: SeriesFrames;
   #document!: SeriesDocument;
   #loaded!: LoadedSeries;
   #remarks: string[] = [];
@@ -80,6 +66,7 @@ export class WallSeries {
     readonly folder: string,
     private readonly wall: WallParts,
   ) {
+    this.#frames = new SeriesFrames(folder);
     this.#measuring = new FrameMeasuring(
       wall.parts,
       {
@@ -103,7 +90,7 @@ export class WallSeries {
   }
 
   get frameIds(): string[] {
-    return this.#frames.map(({ frameId }) => frameId);
+    return this.#frames.all.map(({ frameId }) => frameId);
   }
 
   async #open(): Promise<void> {
@@ -111,7 +98,7 @@ export class WallSeries {
     this.#loaded = loaded;
     this.#remarks = [...loaded.remarks];
     await this.#list();
-    if (this.#frames.length === 0)
+    if (this.#frames.all.length === 0)
       throw new Refusal('FileError', `${this.folder} holds no photographs.`, 'Choose a folder of photos.');
     if (loaded.document) this.#document = loaded.document;
     else {
@@ -146,7 +133,7 @@ export class WallSeries {
       folder: this.folder,
       name: basename(this.folder),
       settings: settingsOf(this.#document),
-      frames: this.#frames.map((frame) => {
+      frames: this.#frames.all.map((frame) => {
         const found = known.get(frame.frameId);
         const isOver = found !== undefined || frame.isUnmeasurable || !orders.has(frame.frameId);
         return {
@@ -170,7 +157,9 @@ export class WallSeries {
       access: this.#loaded.access,
       problems: [
         ...this.#remarks.map((message) => ({ name: '', message })),
-        ...this.#frames.flatMap(({ frameId, fault }) => (fault ? [{ name: frameId, message: fault }] : [])),
+        ...this.#frames.all.flatMap(({ frameId, fault }) =>
+          fault ? [{ name: frameId, message: fault }] : [],
+        ),
       ],
       coming: this.wall.coming(this.folder),
     };
@@ -245,40 +234,20 @@ export class WallSeries {
   }
 
   async #list(): Promise<void> {
-    const { photos, truncated } = await listFolder(this.folder);
-    const earlier = new Map(this.#frames.map((frame) => [frame.frameId, frame]));
-    this.#frames = photos.map(({ name, path, sizeBytes, modifiedAt }) => {
-      const stamp = `${modifiedAt} ${sizeBytes}`;
-      const known = earlier.get(name);
-      if (known?.stamp === stamp) return known;
-      const fresh = { facts: null, fault: null, isMeasuring: false, isUnmeasurable: false };
-      return { frameId: name, path, stamp, ...fresh };
-    });
+    const { truncated } = await this.#frames.list();
     if (truncated) this.#remark(`${this.folder} holds too many files; the last ones are not shown.`);
   }
 
   async #readHeaders(): Promise<void> {
-    const files = await this.wall.parts.loadFiles();
-    const waiting = this.#frames.filter(({ facts, fault }) => !facts && !fault);
-    const readers = Array.from({ length: readersAtOnce }, async () => {
-      for (let frame = waiting.shift(); frame; frame = waiting.shift()) {
-        if (this.#closing.signal.aborted) return;
-        try {
-          frame.facts = await files.readFacts(frame.path);
-          if (!frame.facts) frame.fault = `${frame.frameId} cannot be read.`;
-        } catch (failure) {
-          frame.fault = describeError(failure, '').body.error.message;
-        }
-        this.tell();
-      }
-    });
-    await Promise.all(readers);
+    await this.#frames.readHeaders(await this.wall.parts.loadFiles(), this.#closing.signal, () =>
+      this.tell(),
+    );
     this.#measure();
   }
 
   #measure(): void {
-    if (this.#closing.signal.aborted || this.#frames.some(({ facts, fault }) => !facts && !fault)) return;
-    for (const frame of this.#frames) frame.isMeasuring = false;
+    if (this.#closing.signal.aborted || !this.#frames.areRead) return;
+    for (const frame of this.#frames.all) frame.isMeasuring = false;
     this.#measuring.start(this.#plan());
     this.tell();
   }
@@ -287,7 +256,7 @@ export class WallSeries {
   #plan(): MeasuringPlan {
     const { leftOut, lead, match, output } = this.#document;
     const out = new Set(leftOut);
-    const readable = this.#frames.flatMap((frame): MeasuringOrder[] => {
+    const readable = this.#frames.all.flatMap((frame): MeasuringOrder[] => {
       const { frameId, path, stamp, facts } = frame;
       if (!facts) return [];
       const photo = { path, stamp, facts };
@@ -302,16 +271,16 @@ export class WallSeries {
     };
   }
 
-  #knownOf({ frameId }: Frame): MeasuredFrame | null {
+  #knownOf({ frameId }: SeriesFrame): MeasuredFrame | null {
     const plan = this.#plan();
     const order = plan.frames.find((candidate) => candidate.frameId === frameId);
     return order ? this.#measuring.known(order, plan) : null;
   }
 
   /** The match before the frame was measured: its tone alone, from reduced photos. */
-  async #quickMatch(frame: Frame, facts: PhotoFacts, palette: PaletteOf): Promise<FrameMatch> {
+  async #quickMatch(frame: SeriesFrame, facts: PhotoFacts, palette: PaletteOf): Promise<FrameMatch> {
     const { lead, match } = this.#document;
-    const leading = this.#frames.find(({ frameId }) => frameId === lead);
+    const leading = this.#frames.of(lead);
     if (!leading?.facts || leading === frame || !partsOfFrame(this.#document, frame.frameId).tone)
       return noMatch;
     try {
@@ -326,10 +295,10 @@ export class WallSeries {
     }
   }
 
-  #pictureKey(frame: Frame, found: MeasuredFrame | null): string {
+  #pictureKey(frame: SeriesFrame, found: MeasuredFrame | null): string {
     const { lead, match, output } = this.#document;
     const isLead = frame.frameId === lead;
-    const leadStamp = this.#frames.find(({ frameId }) => frameId === lead)?.stamp;
+    const leadStamp = this.#frames.of(lead)?.stamp;
     const matched = isLead
       ? null
       : [lead, leadStamp, match.amount01, partsOfFrame(this.#document, frame.frameId), found !== null];
@@ -338,14 +307,14 @@ export class WallSeries {
     return createHash('sha1').update(text).digest('base64url').slice(0, 12);
   }
 
-  #find(frameId: string): Frame {
-    const frame = this.#frames.find((candidate) => candidate.frameId === frameId);
+  #find(frameId: string): SeriesFrame {
+    const frame = this.#frames.of(frameId);
     if (!frame) throw new Refusal('NotFound', `${frameId} is no longer in this series.`);
     return frame;
   }
 
-  #note(frameId: string, change: Partial<Frame>): void {
-    const frame = this.#frames.find((candidate) => candidate.frameId === frameId);
+  #note(frameId: string, change: Partial<SeriesFrame>): void {
+    const frame = this.#frames.of(frameId);
     if (frame) Object.assign(frame, change);
     this.tell();
   }
