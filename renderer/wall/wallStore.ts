@@ -2,6 +2,7 @@ import type { SeriesSettings } from '../../core/series/seriesDocument.ts';
 import type { SeriesView } from '../../main/host/api/seriesCommands.ts';
 import { createStore } from '../state/store.ts';
 import type { UndoHistory } from '../state/undoHistory.ts';
+import { hangFrames } from './wallLayout.ts';
 
 /** The two rooms. */
 export const roomStore = createStore<'easel' | 'wall'>('easel');
@@ -28,10 +29,22 @@ export const chosenStore = createStore<Chosen>(nothingChosen);
 export const wallScaleStore = createStore<number>(250);
 export const wallScales = { leastPx: 130, mostPx: 560, stepPx: 30 };
 
-/** A print scale at which a short series fills the wall, and a long one is still easy to look at. */
-export function startingScalePx(frameCount: number, wall: { widthPx: number; heightPx: number }): number {
-  const share = 0.66 * Math.sqrt((wall.widthPx * wall.heightPx) / Math.max(1, frameCount));
-  return Math.round(Math.min(440, Math.max(220, share)) / 10) * 10;
+/** Between these a series starts: smaller prints are hard to judge, larger ones leave no wall around them. */
+const startsBetween = { leastPx: 180, mostPx: 440 };
+
+/**
+ * The largest print scale at which the whole series hangs in view; a long one starts small and is scrolled through.
+ * @param sizes of its photos, upright; 0 where unknown
+ * @param wall in CSS pixels
+ */
+export function startingScalePx(
+  sizes: readonly { widthPx: number; heightPx: number }[],
+  wall: { widthPx: number; heightPx: number },
+): number {
+  const { leastPx, mostPx } = startsBetween;
+  for (let longEdgePx = mostPx; longEdgePx >= leastPx; longEdgePx -= 10)
+    if (hangFrames(sizes, { widthPx: wall.widthPx, longEdgePx }).heightPx <= wall.heightPx) return longEdgePx;
+  return 220;
 }
 
 /** Two frames that are compared at one print scale. */

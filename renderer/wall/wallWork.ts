@@ -68,8 +68,9 @@ function hang(view: SeriesView): void {
   seriesStore.set(view);
   if (before?.seriesId !== view.seriesId) {
     settingsStore.set(startHistory(view.settings));
-    const wall = { widthPx: window.innerWidth * 0.8, heightPx: window.innerHeight * 0.9 };
-    wallScaleStore.set(startingScalePx(view.frames.length + view.coming, wall));
+    const wall = { widthPx: window.innerWidth * 0.76, heightPx: window.innerHeight * 0.93 };
+    const coming = Array.from({ length: view.coming }, () => ({ widthPx: 0, heightPx: 0 }));
+    wallScaleStore.set(startingScalePx([...view.frames, ...coming], wall));
   }
   roomStore.set('wall');
   void readRun();
