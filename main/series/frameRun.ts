@@ -16,6 +16,7 @@ import { OutputPlaces, partPath } from './outputPlaces.ts';
 import { type FileEntry, type RunEntry, type RunLog, runLogName } from './runLog.ts';
 import type { RunOrder } from './runSeries.ts';
 import type { PlannedFrame } from './seriesPlan.ts';
+import { hashStrata } from './strataHash.ts';
 import type { Turns } from './turns.ts';
 
 /** What came of painting a frame. */
@@ -133,6 +134,9 @@ export class FrameRun {
     const there = await fingerprintPhoto(path).catch(() => null);
     if (!there) return because(before.kind === 'written' ? underWay : 'Its file is not there any more.');
     if (there.sha256 !== before.sha256) return because('Its file was changed by another hand.');
+    const { layers } = before;
+    if (layers && (await hashStrata(join(this.order.outFolder, layers))) === null)
+      return because('Its strata are not there any more.');
     this.#places.keep(name, path);
     const kept: FrameResult = {
       name,
@@ -189,11 +193,13 @@ export class FrameRun {
     const remarks: string[] = [];
     const { sha256, pixelsSha256, figures, layersPart } = painted;
     const { layers: kind } = this.order.output;
+    const layersSha256 = (layersPart && (await hashStrata(layersPart))) ?? undefined;
     for (;;) {
       const place = await this.#places.choose(frame);
       if (place.remark) remarks.push(place.remark);
       const { path } = place;
       const layers = kind === 'none' || !layersPart ? null : await this.#places.chooseLayers(path, kind);
+      if (layers?.remark) remarks.push(layers.remark);
       const entry = {
         name: frame.name,
         key: job.key,
@@ -204,11 +210,11 @@ export class FrameRun {
         figures,
         preset: lookCaption(job.look),
         remarks: painted.remarks,
-        ...(layers && { layers: basename(layers) }),
+        ...(layers && { layers: basename(layers.path), layersSha256 }),
       };
       await this.log.append({ kind: 'written', ...entry });
       if (!(await this.#places.place(job.part, place))) continue;
-      if (layers && layersPart) await this.#places.placeLayers(layersPart, layers);
+      if (layers && layersPart) await this.#places.placeLayers(layersPart, layers.path);
       this.#places.note(entry);
       return { entry, remarks };
     }

@@ -9,6 +9,7 @@ import { numbered, placeUnlessTaken } from '../host/placeFile.ts';
 import { fingerprintPhoto } from '../store/photoFingerprint.ts';
 import type { FileEntry, RunEntry } from './runLog.ts';
 import type { PlannedFrame } from './seriesPlan.ts';
+import { hashStrata } from './strataHash.ts';
 
 /** Where a painting goes. */
 export interface OutputPlace {
@@ -26,7 +27,8 @@ export interface OutputPlace {
 export class OutputPlaces {
   /** By path: the frame it is of, and the bytes it may have. */
   readonly #ours = new Map<string, { frame: string; hashes: Set<string> }>();
-  readonly #ownLayers = new Set<string>();
+  /** By path: the contents that strata of ours may have there. */
+  readonly #ownLayers = new Map<string, Set<string>>();
   readonly #taken = new Map<string, string>();
   readonly #planned: ReadonlyMap<string, string>;
 
@@ -41,12 +43,17 @@ export class OutputPlaces {
   }
 
   /** A file of these bytes under this name is ours from now on. */
-  note({ name, output, sha256, layers }: Pick<FileEntry, 'name' | 'output' | 'sha256' | 'layers'>): void {
+  note(entry: Pick<FileEntry, 'name' | 'output' | 'sha256' | 'layers' | 'layersSha256'>): void {
+    const { name, output, sha256, layers, layersSha256 } = entry;
     const path = join(this.folder, output);
     const known = this.#ours.get(path);
     if (known?.frame === name) known.hashes.add(sha256);
     else this.#ours.set(path, { frame: name, hashes: new Set([sha256]) });
-    if (layers !== undefined) this.#ownLayers.add(join(this.folder, layers));
+    if (layers === undefined) return;
+    const at = join(this.folder, layers);
+    const hashes = this.#ownLayers.get(at) ?? new Set();
+    if (layersSha256) hashes.add(layersSha256);
+    this.#ownLayers.set(at, hashes);
   }
 
   /** Keeps a name for the frame whose painting has it. */
@@ -116,12 +123,18 @@ export class OutputPlaces {
     }
   }
 
-  /** Where the strata of a painting go: beside it, in the place of our own earlier ones, never of others. */
-  async chooseLayers(painting: string, kind: LayersKind): Promise<string> {
+  /**
+   * Where the strata of a painting go: beside it, in the place of our own earlier ones, never of others. Where another
+   * hand has changed ours, they are put aside first.
+   */
+  async chooseLayers(painting: string, kind: LayersKind): Promise<{ path: string; remark: string | null }> {
     const wanted = layersBeside(painting, kind);
     for (let number = 1; ; number++) {
       const path = numbered(wanted, number);
-      if (this.#ownLayers.has(path) || !(await lstat(path).catch(() => null))) return path;
+      const found = await hashStrata(path);
+      const own = this.#ownLayers.get(path);
+      if (found === null || own?.has(found)) return { path, remark: null };
+      if (own) return { path, remark: await this.#putAside(path) };
     }
   }
 

@@ -19,6 +19,8 @@ const fileBase = {
   pixelsSha256: z.string(),
   /** File or folder of the strata, where they were asked for. */
   layers: z.string().optional(),
+  /** Of the strata: see `hashStrata`. */
+  layersSha256: z.string().optional(),
   /** Ids of what the job is made of. */
   parts: z.record(z.string(), z.string()),
   figures: z.unknown(),

@@ -71,6 +71,23 @@ describe('oxgall series', () => {
     expect((await readdir(join(folder, 'out'))).length).toBe(8);
   });
 
+  it('paints again where strata are gone, and puts those aside that another hand has changed', async () => {
+    const out = join(folder, 'with strata');
+    const again = (...more: string[]) =>
+      runJson('series', join(folder, 'photos'), '--out', out, '--layers', 'ora', '--resume', ...more);
+    expect((await again()).told).toMatchObject({ painted: 6 });
+    await rm(join(out, 'plate 1.ora'));
+    const mended = (await again()).told;
+    expect(mended).toMatchObject({ painted: 1, kept: 5 });
+    expect(mended.frames[0].reason).toMatch(/strata/);
+    await writeFile(join(out, 'plate 2.ora'), 'by another hand');
+    const other = (await again('--set', 'body.hold=0.5')).told;
+    expect(other).toMatchObject({ painted: 6 });
+    expect(other.frames[1].remarks.join()).toContain('plate 2.changed.ora');
+    expect(await readFile(join(out, 'plate 2.changed.ora'), 'utf8')).toBe('by another hand');
+    expect((await readdir(out)).filter((name) => name.endsWith('.ora'))).toHaveLength(7);
+  });
+
   it('is the same by shards as in one run', async () => {
     const photos = join(folder, 'photos');
     await runJson('series', photos, '--out', join(folder, 'one'));
