@@ -234,7 +234,7 @@ describe('oxgall presets and params', () => {
     expect((await run('help', 'paint')).out).toMatch(/--set KEY=VALUE/);
   });
 
-  it('give six looks that differ on a photograph', async () => {
+  it('give looks that differ on a photograph', { timeout: 240_000 }, async () => {
     const presets = JSON.parse((await run('presets', '--json')).out) as { name: string }[];
     const pictures: Buffer[] = [];
     for (const { name } of presets) {

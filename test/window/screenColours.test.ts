@@ -62,14 +62,8 @@ describe.skipIf(!chromiumFound.path || !canAsk)('colours in a real window (skipp
     await settled(page);
     // The photograph alone: what ink does to colours is none of this test's business.
     await page.keyboard.down('l');
-    const shown = await readCanvas(page, 'stage', screen === 'p3' ? 'display-p3' : 'srgb');
     const view = await page.locator('.stage-hold').getAttribute('data-view');
     const [scale, originX, originY] = view!.split(' ').map(Number);
-    const ours = fields.map((_, i) => {
-      const x = ((i % columns) + 0.5) * fieldPx;
-      const y = (Math.floor(i / columns) + 0.5) * fieldPx;
-      return pixelAt(shown, Math.round(originX + x * scale), Math.round(originY + y * scale)).slice(0, 3);
-    });
     const from = join(room.folder, 'from.icc');
     const to = join(room.folder, 'to.icc');
     await writeFile(from, photos[photo]);
@@ -77,11 +71,26 @@ describe.skipIf(!chromiumFound.path || !canAsk)('colours in a real window (skipp
     const asked = transicc(from, to, fields).map((colour) =>
       colour.map((part) => Math.min(255, Math.max(0, part))),
     );
-    const [labOurs, labAsked] = [ours, asked].map((colours) => transicc(to, '*Lab', colours));
-    const apart = labOurs.map((lab, i) =>
-      ciede2000(lab as unknown as Triple, labAsked[i] as unknown as Triple),
-    );
-    const worst = apart.indexOf(Math.max(...apart));
+    const labAsked = transicc(to, '*Lab', asked);
+    const look = async () => {
+      const shown = await readCanvas(page, 'stage', screen === 'p3' ? 'display-p3' : 'srgb');
+      const ours = fields.map((_, i) => {
+        const x = ((i % columns) + 0.5) * fieldPx;
+        const y = (Math.floor(i / columns) + 0.5) * fieldPx;
+        return pixelAt(shown, Math.round(originX + x * scale), Math.round(originY + y * scale)).slice(0, 3);
+      });
+      const labOurs = transicc(to, '*Lab', ours);
+      const apart = labOurs.map((lab, i) =>
+        ciede2000(lab as unknown as Triple, labAsked[i] as unknown as Triple),
+      );
+      return { ours, apart, worst: apart.indexOf(Math.max(...apart)) };
+    };
+    let { ours, apart, worst } = await look();
+    // A busy machine takes its time to lift the paint off.
+    for (let again = 0; again < 20 && apart[worst] > 1; again++) {
+      await page.waitForTimeout(200);
+      ({ ours, apart, worst } = await look());
+    }
     expect(apart[worst], `${fields[worst]}: ${ours[worst]} for ${asked[worst]}`).toBeLessThanOrEqual(1);
     expect(apart.reduce((sum, one) => sum + one) / apart.length).toBeLessThanOrEqual(0.3);
     await room.close(window);
