@@ -41,6 +41,8 @@ const defaultTileSize: TileSize = { widthPx: 512, heightPx: 256 };
 export interface EngineOptions {
   /** Worker threads; as many as the machine has processors unless given. */
   workers?: number;
+  /** Lets a window of the same machine go first: painting then takes what is left. */
+  givesWay?: boolean;
   /** How pictures are cut; both even. Any size gives the same pixels. */
   tileSize?: TileSize;
   /** Coarse levels of more pixels are made as they are read; any number gives the same pixels. */
@@ -57,6 +59,7 @@ export async function createEngine(options: EngineOptions = {}): Promise<Engine>
     paintWorkerUrl(),
     module,
     heap,
+    options.givesWay,
   );
   return new PaintEngine(pool, heap, kernels, options);
 }

@@ -1,10 +1,13 @@
 // A worker thread of the engine: instantiates the kernels over the shared memory and takes tiles until none is left.
+import { constants, setPriority } from 'node:os';
 import { parentPort, workerData } from 'node:worker_threads';
 import { instantiateKernels } from '../../core/kernels/module.ts';
 import { runTile } from '../../core/pipeline/runTile.ts';
 import type { JobMessage, JobReport, WorkerStart } from './poolMessages.ts';
 
-const { module, memory } = workerData as WorkerStart;
+const { module, memory, givesWay } = workerData as WorkerStart;
+// Linux has priorities of single threads, and 0 means the one that asks; elsewhere it would be the whole program.
+if (givesWay && process.platform === 'linux') setPriority(0, constants.priority.PRIORITY_BELOW_NORMAL);
 const kernels = await instantiateKernels(module, memory);
 const now = () => performance.now();
 

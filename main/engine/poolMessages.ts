@@ -4,6 +4,8 @@ import type { Job } from '../../core/pipeline/jobs.ts';
 export interface WorkerStart {
   module: WebAssembly.Module;
   memory: WebAssembly.Memory;
+  /** Lets other work of the machine go first, where the system has priorities of threads. */
+  givesWay: boolean;
 }
 
 /** One job for every worker: they share the counter at `counter` and each takes the next tile until none is left. */

@@ -39,14 +39,18 @@ export class WorkerPool {
     }
   }
 
-  /** @param workerFile the bundled worker's address */
+  /**
+   * @param workerFile the bundled worker's address
+   * @param givesWay to everything else on the machine
+   */
   static async start(
     count: number,
     workerFile: URL,
     module: WebAssembly.Module,
     heap: SharedHeap,
+    givesWay = false,
   ): Promise<WorkerPool> {
-    const workerData: WorkerStart = { module, memory: heap.memory };
+    const workerData: WorkerStart = { module, memory: heap.memory, givesWay };
     const workers = Array.from({ length: count }, () => new Worker(workerFile, { workerData }));
     await Promise.all(
       workers.map(

@@ -17,7 +17,7 @@ export function installedParts(options: {
   const workers = Math.max(1, Number(process.env.OXGALL_WORKERS) || availableParallelism());
   const loadEngine = once<Engine>(async () => {
     const { createEngine } = await import('../engine/paintEngine.ts');
-    return createEngine({ workers });
+    return createEngine({ workers, givesWay: true });
   });
   return {
     ...options,
