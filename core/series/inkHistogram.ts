@@ -61,6 +61,11 @@ const lowest = -0.4;
 /** Highest, as a multiple of the preset's own: beyond, plain dark planes would be inked over. */
 const highestFactor = 2;
 
+/** The highest ε that `thresholdForCoverage` gives: responses above it need not be told apart. */
+export function highestThreshold(own: number): number {
+  return Math.min(softPen['line.threshold'], highestFactor * own);
+}
+
 /**
  * The ink threshold that makes a frame's line coverage equal the lead's (coverage rises with the threshold).
  * @param wanted coverage of the lead, 0…1
@@ -72,8 +77,7 @@ export function thresholdForCoverage(
   wanted: number,
   parameters: Parameters,
 ): number {
-  const highest = Math.min(softPen['line.threshold'], highestFactor * parameters['line.threshold']);
-  let [low, high]: [number, number] = [lowest, highest];
+  let [low, high]: [number, number] = [lowest, highestThreshold(parameters['line.threshold'])];
   for (let round = 0; round < halvings; round++) {
     const middle = (low + high) / 2;
     if (coverageAt(histogram, middle, parameters['line.softness']) < wanted) low = middle;

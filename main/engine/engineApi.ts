@@ -24,7 +24,7 @@ export interface PaintReview {
   body(body: Uint16Array): Promise<number | null>;
   /**
    * @param responses how often each response of the line came up: see `InkHistogram`
-   * @returns the ink threshold ε to draw with
+   * @returns the ink threshold ε to draw with, at most `highestThreshold` of the parameters' own
    */
   ink(responses: readonly number[]): number;
 }

@@ -3,7 +3,7 @@ import { type BodyWindow, evenUp, type InkJob, type LineJob } from '../../core/p
 import { edgeEmphasis, type LinePlan, streamlineStepPx } from '../../core/pipeline/linePlan.ts';
 import { lineRegion, lineScratchBytes } from '../../core/pipeline/lineTile.ts';
 import type { Rect } from '../../core/pixels/photo.ts';
-import { countCoverage, softPen, softPhi } from '../../core/series/inkHistogram.ts';
+import { countCoverage, highestThreshold, softPen, softPhi } from '../../core/series/inkHistogram.ts';
 import type { HeldPhoto } from './heldPhoto.ts';
 import type { PhotoRows } from './photoRows.ts';
 import { cutIntoTiles, type TileSize } from './regions.ts';
@@ -73,8 +73,8 @@ export class LinePainter {
         shift,
         body: fromPhoto ? null : body,
         photo: fromPhoto?.picture ?? null,
-        // Where no ink can come S is not worked out: with the soft pen it can come wherever it may be asked for.
-        plan: chooseThreshold ? { ...plan, threshold: softPen['line.threshold'] } : plan,
+        // Where no ink can come S is not worked out.
+        plan: chooseThreshold ? { ...plan, threshold: highestThreshold(plan.threshold) } : plan,
         tables,
         out: field,
       };

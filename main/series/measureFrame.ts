@@ -27,7 +27,9 @@ export interface TextureAt extends Texture {
 
 /** Gathers the colours of a photo, and how crisp it is, each at a print scale that all frames share. */
 export async function measureColours(photo: DecodedPhoto): Promise<ColourMeasures> {
-  const [few, many] = await Promise.all([reducedTo(photo, paletteEdgePx), reducedTo(photo, focusEdgePx)]);
+  const many = await reducedTo(photo, focusEdgePx);
+  const { widthPx, heightPx, rgb16: pixels } = many;
+  const few = await reducedTo({ widthPx, heightPx, channels: 3, pixels }, paletteEdgePx);
   const focus = focusOf(lumaOf(many.rgb16), many.widthPx, many.heightPx);
   return { palette: paletteOf(few.rgb16), focus };
 }
