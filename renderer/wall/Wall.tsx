@@ -187,6 +187,7 @@ function useFollowedKeys(
   frames.current = series.frames;
   const last = useRef({ at, layout });
   const hadFocus = useRef(false);
+  const isPressed = usePress(scroller);
   useEffect(() => {
     const note = ({ target }: FocusEvent) => {
       hadFocus.current = scroller.current?.contains(target as Node) ?? false;
@@ -209,9 +210,31 @@ function useFollowedKeys(
       yPx + heightPx > scrollTop && yPx < scrollTop + clientHeight;
     const was = before.layout.frames[index];
     if (before.at === at && before.layout !== layout && !(was && isIn(was))) return;
+    // What the pointer presses is in view; moved away from under it, the click would be lost.
+    if (isPressed.current) return;
     if (place.yPx - 40 < scrollTop) element.scrollTop = place.yPx - 40;
     else if (place.yPx + place.heightPx + 80 > scrollTop + clientHeight)
       element.scrollTop = place.yPx + place.heightPx + 80 - clientHeight;
     element.querySelector<HTMLElement>(`[data-frame="${CSS.escape(at)}"]`)?.focus({ preventScroll: true });
-  }, [at, layout, scroller]);
+  }, [at, layout, scroller, isPressed]);
+}
+
+/** Whether the pointer is pressed on the wall. */
+function usePress(scroller: React.RefObject<HTMLElement | null>): React.RefObject<boolean> {
+  const isPressed = useRef(false);
+  useEffect(() => {
+    const press = ({ target }: Event) => {
+      isPressed.current = scroller.current?.contains(target as Node) ?? false;
+    };
+    const release = () => {
+      isPressed.current = false;
+    };
+    document.addEventListener('pointerdown', press, { capture: true });
+    for (const name of ['pointerup', 'pointercancel']) document.addEventListener(name, release);
+    return () => {
+      document.removeEventListener('pointerdown', press, { capture: true });
+      for (const name of ['pointerup', 'pointercancel']) document.removeEventListener(name, release);
+    };
+  }, [scroller]);
+  return isPressed;
 }
