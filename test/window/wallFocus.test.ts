@@ -68,6 +68,29 @@ describe.skipIf(!chromiumFound.path)('the focus on the Wall', () => {
     await expect.poll(() => isInView(page, before)).toBe(true);
   });
 
+  it('comes to a frame at the edge of the view that is pressed, which is chosen where it is', {
+    timeout: 60_000,
+  }, async () => {
+    await frame(page, 'plate-1.jpg').waitFor();
+    const edge = await page.locator('.wall-ground').evaluate((ground) => {
+      const { bottom } = ground.getBoundingClientRect();
+      const cut = [...ground.querySelectorAll<HTMLElement>('[data-frame]')].find(
+        (print) => print.getBoundingClientRect().top > bottom - 300,
+      )!;
+      ground.scrollTop += cut.getBoundingClientRect().top - (bottom - 24);
+      const { left, top } = cut.getBoundingClientRect();
+      return { name: cut.dataset.frame!, xPx: left + 30, yPx: top + 12 };
+    });
+    const before = await scrolled(page);
+    await page.mouse.move(edge.xPx, edge.yPx);
+    await page.mouse.down();
+    await page.waitForTimeout(120);
+    await page.mouse.up();
+    await expect.poll(() => frame(page, edge.name).getAttribute('aria-pressed')).toBe('true');
+    expect(await scrolled(page)).toEqual(before);
+    expect(await focused(page)).toBe(edge.name);
+  });
+
   it('waits on its frame while somebody scrolls away, and the keys go on from there', {
     timeout: 60_000,
   }, async () => {
