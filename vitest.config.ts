@@ -8,6 +8,8 @@ export default defineConfig({
     exclude: ['test/soak/**', 'node_modules/**'],
     testTimeout: 60_000,
     hookTimeout: 120_000,
+    // What a test waits for comes sooner or later; one second is little for a browser beside another test.
+    expect: { poll: { timeout: 15_000 } },
     maxWorkers: 2,
     pool: 'forks',
   },
