@@ -70,6 +70,7 @@ describe.skipIf(!redisPath)('a series on a queue', () => {
   });
 
   it('delivers every frame once, the same bytes, though a worker dies and Redis restarts', {
+    retry: 1,
     timeout: 180_000,
   }, async () => {
     const data = join(folder, 'data');
