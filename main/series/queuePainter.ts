@@ -120,8 +120,8 @@ export class QueuePainter implements FramePainter {
 
   async close(): Promise<void> {
     clearInterval(this.#timer);
-    await this.#events.close();
-    await this.queue.close();
+    // A connection that Redis cut cannot be closed in good order, which must not cost the run its report.
+    await Promise.allSettled([this.#events.close(), this.queue.close()]);
   }
 }
 
